@@ -1,0 +1,112 @@
+# SPDX-License-Identifier: GPL-3.0-or-later
+# polewright: analog stages into proved C. `make help` lists what can be made.
+
+VERSION := 0.1.0
+PREFIX  ?= /usr/local
+DESTDIR ?=
+VARIANT ?= release
+CC      := gcc
+PYTHON  := /usr/bin/python3
+JOBS    ?= 2
+
+# ---- Packages that the program, its tests and its targets need (Debian 12) ----
+
+PACKAGES_BUILD := gcc make pkg-config libgsl-dev libyaml-dev libjansson-dev libmd-dev libsndfile1-dev
+PACKAGES_RUN   := gnuplot-nox
+PACKAGES_TEST  := g++ clang libcmocka-dev python3 python3-numpy python3-scipy python3-mpmath python3-yaml \
+                  python3-jsonschema
+PACKAGES_PART  := gcc-arm-none-eabi libnewlib-arm-none-eabi qemu-system-arm qemu-system-misc \
+                  gcc-riscv64-unknown-elf picolibc-riscv64-unknown-elf gcc-avr avr-libc libsimavr-dev libelf1
+PACKAGES       := $(PACKAGES_BUILD) $(PACKAGES_RUN) $(PACKAGES_TEST) $(PACKAGES_PART)
+
+# ---- Sources ----
+
+OUT      := build/$(VARIANT)
+SOURCES  := $(sort $(wildcard generator/*/*.c))
+OBJECTS  := $(SOURCES:%.c=$(OUT)/%.o)
+MAIN     := $(OUT)/generator/main.o
+UNITS    := $(sort $(wildcard tests/unit/test_*.c))
+UNIT_BIN := $(UNITS:tests/unit/%.c=$(OUT)/unit/%)
+PROBES   := $(sort $(wildcard tests/outside/probe_*.c))
+PROBE_BIN := $(PROBES:tests/outside/%.c=$(OUT)/outside/%)
+
+WARN     := -Wall -Wextra -Wshadow -Wpointer-arith -Wstrict-prototypes -Wvla -Werror
+CFLAGS_release := -O2
+CFLAGS_debug   := -O0 -g3
+CFLAGS_san     := -O1 -g -fsanitize=address,undefined -fno-sanitize-recover=all -fno-omit-frame-pointer
+# -ffp-contract=off: the simulated float arithmetic must round every operation on its own.
+CFLAGS   := -std=gnu11 $(WARN) -ffp-contract=off $(CFLAGS_$(VARIANT)) -Igenerator -Iinclude -Iruntime \
+            -DPW_VERSION='"$(VERSION)"' -DPW_PREFIX='"$(PREFIX)"'
+LDLIBS   := -lgsl -lgslcblas -lyaml -ljansson -lmd -lsndfile -lm -lpthread
+
+.DEFAULT_GOAL := all
+.PHONY: all help deps demo check check-targets check-all bench sizes install uninstall clean debug san release tests probes
+
+# ---- Building ----
+
+all: build/polewright            ## build/polewright, the program (VARIANT=debug|san|release)
+
+build/polewright: $(OUT)/polewright
+	@mkdir -p $(@D)
+	@ln -f $< $@
+
+debug san release:               ## build/debug, build/san, build/release: a variant in a folder of its own
+	$(MAKE) VARIANT=$@ build/$@/polewright
+
+$(OUT)/polewright: $(MAIN) $(OBJECTS)
+	$(CC) $(CFLAGS) -o $@ $^ $(LDLIBS)
+
+$(OUT)/%.o: %.c Makefile
+	@mkdir -p $(@D)
+	$(CC) $(CFLAGS) -MMD -MP -c -o $@ $<
+
+$(OUT)/unit/%: tests/unit/%.c $(OBJECTS)
+	@mkdir -p $(@D)
+	$(CC) $(CFLAGS) -MMD -MP -o $@ $< $(OBJECTS) -lcmocka $(LDLIBS)
+
+$(OUT)/outside/%: tests/outside/%.c $(OBJECTS)
+	@mkdir -p $(@D)
+	$(CC) $(CFLAGS) -MMD -MP -o $@ $< $(OBJECTS) $(LDLIBS)
+
+-include $(OBJECTS:.o=.d) $(MAIN:.o=.d) $(UNIT_BIN:=.d) $(PROBE_BIN:=.d)
+
+# ---- First use ----
+
+deps:                            ## installs the Debian packages that are missing; nothing where none is
+	@missing=""; for p in $(PACKAGES); do \
+	  dpkg-query -W -f='$${Status}' $$p 2>/dev/null | grep -q 'ok installed' || missing="$$missing $$p"; done; \
+	if [ -z "$$missing" ]; then echo "deps: nothing is missing"; else \
+	  echo "deps: installing$$missing"; \
+	  sudo=; [ "$$(id -u)" = 0 ] || sudo=sudo; \
+	  $$sudo apt-get update -q && \
+	  $$sudo env DEBIAN_FRONTEND=noninteractive apt-get install -y -q --no-install-recommends $$missing; fi
+
+# ---- Tests ----
+
+tests: $(UNIT_BIN) $(PROBE_BIN)
+
+probes: $(PROBE_BIN)
+
+check: all                       ## the tests, under ten minutes on two cores
+	$(MAKE) -j$(JOBS) tests
+	$(MAKE) -j$(JOBS) VARIANT=san build/san/polewright
+	$(PYTHON) tests/run.py --jobs $(JOBS)
+
+check-all: all                   ## the tests and every target in full
+	$(MAKE) -j$(JOBS) tests
+	$(MAKE) -j$(JOBS) VARIANT=san build/san/polewright
+	$(PYTHON) tests/run.py --jobs $(JOBS) --full
+
+# ---- Measuring ----
+
+sizes: all                       ## the size of the program and of each runtime file
+	@size build/polewright; for f in runtime/*.c; do \
+	  $(CC) -std=c99 -Os -Iruntime -Iinclude -c -o $(OUT)/size.o $$f && size $(OUT)/size.o | tail -n 1; done
+
+# ---- Housekeeping ----
+
+clean:                           ## removes build/
+	rm -rf build
+
+help:                            ## this list
+	@grep -hE '^[a-z][a-zA-Z -]*:.*##' $(MAKEFILE_LIST) | sed -E 's/:[^#]*##/\t/' | expand -t 24

@@ -1,0 +1,34 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* A part that the C is made for: data read from targets/<name>/. */
+#ifndef PW_TARGET_TARGET_H
+#define PW_TARGET_TARGET_H
+
+#include <stdbool.h>
+#include "base/messages.h"
+#include "base/text.h"
+#include "base/arena.h"
+
+typedef struct pw_target {
+    const char *name, *about;
+    const char *compiler;        /* "arm-none-eabi-gcc" */
+    const char *flags;           /* core flags: "-mcpu=cortex-m4 -mthumb .." */
+    const char *emulator;        /* "" none */
+    int word_bits;               /* native register: 8, 16, 32, 64 */
+    bool has_float, has_double;  /* in hardware */
+    bool has_dsp;                /* dual 16-bit multiply-accumulate, saturation with shift */
+    bool has_long_multiply;      /* 32 x 32 -> 64 */
+    bool has_saturate;           /* one-instruction saturation */
+    bool has_vector;             /* M-profile vector unit */
+    long flash_bytes, ram_bytes; /* of the part; 0 unknown */
+    struct pw_cost_model *cost;  /* null: none (host) */
+    pw_arena arena;
+} pw_target;
+
+/* Reads targets/<name>/. PW_WRONG with a message (nearest known name) where there is no such one. */
+PW_CHECKED pw_status pw_target_read(const char *name, pw_where at, pw_target *out, pw_messages *messages);
+void pw_target_free(pw_target *target);
+
+/* The names of all targets, sorted, in arena memory; count in *n. */
+PW_CHECKED pw_status pw_target_names(pw_arena *arena, const char ***names, int *n);
+
+#endif
