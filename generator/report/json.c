@@ -287,7 +287,7 @@ static json_t *arithmetic(const pw_realisation *r)
 {
     json_t *o = json_object();
     put(o, "sample", text(pw_sample_word(r->sample)));
-    put(o, "coefficient_bits", r->coefficient_bits ? json_integer(r->coefficient_bits) : json_null());
+    put(o, "coefficient_bits", is_fixed(r) ? json_integer(r->coefficient_bits) : json_null());
     put(o, "rounding", is_fixed(r) ? text(r->truncate ? "truncate" : "nearest") : json_null());
     put(o, "overflow", is_fixed(r) ? text(r->wrap ? "wrap" : "saturate") : json_null());
     put(o, "scaling", text(pw_scaling_word(r->scaling)));
