@@ -193,6 +193,9 @@ typedef struct pw_stage {
     pw_where target_at, rate_at, name_at;
     pw_vectors_spec vectors;
     pw_spread_spec spread;       /* tolerance draws */
+    const char *const *taken;    /* the defaults that were taken, "transform.method: best", in the
+                                    order of the table of keys, ended by a null; the report lists
+                                    them. Null: none */
     char sha256[65];             /* of the bytes of the stage file */
     const char *file;            /* as messages name it */
     pw_arena arena;              /* owns every pointer above */
