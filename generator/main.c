@@ -7,6 +7,7 @@
 #include "verbs/verbs.h"
 
 static const pw_verb *const verbs[] = {
+    &pw_verb_targets,
     NULL,
 };
 

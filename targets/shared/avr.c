@@ -3,6 +3,7 @@
  * written to GPIOR2 ends the run, one to GPIOR1 makes the runner latch its cycle counter at the
  * address in r25:r24. avr-libc gives the start-up. */
 #include <avr/io.h>
+#include <stdlib.h>
 #include "part.h"
 
 void part_write(const char *text)
@@ -22,4 +23,11 @@ uint32_t part_count(void)
     register uint32_t *where __asm__("r24") = &count;
     __asm__ volatile("out %1, r24" : : "r"(where), "I"(_SFR_IO_ADDR(GPIOR1)) : "memory");
     return count;
+}
+
+/* avr-libc's start-up calls this with what main returned. */
+void exit(int status)
+{
+    part_exit(status);
+    for (;;) {}
 }

@@ -2,13 +2,11 @@
 /* Runs an AVR program on libsimavr: avr_runner MCU PROGRAM.elf
  * GPIOR0 is the console, GPIOR2 the exit status, GPIOR1 latches the cycle counter at r25:r24
  * (see targets/shared/avr.c). A crash of the core or 4e9 cycles without an end exit with 98. */
-#include <simavr/avr_ioport.h>
 #include <simavr/sim_avr.h>
 #include <simavr/sim_elf.h>
 #include <simavr/sim_io.h>
+#include <stdarg.h>
 #include <stdio.h>
-#include <stdlib.h>
-#include <string.h>
 
 enum { GPIOR0 = 0x3E, GPIOR1 = 0x4A, GPIOR2 = 0x4B };   /* data-space addresses on ATmega parts */
 
@@ -35,9 +33,16 @@ static void latch(avr_t *avr, avr_io_addr_t at, uint8_t value, void *unused)
     for (int i = 0; i < 4; i++) avr->data[where + (unsigned)i] = (uint8_t)(cycles >> 8 * i);
 }
 
+/* libsimavr tells what it loads on standard output, which is the program's. */
+static void silent(avr_t *avr, const int level, const char *format, va_list more)
+{
+    (void)avr, (void)level, (void)format, (void)more;
+}
+
 int main(int argc, char **argv)
 {
     static elf_firmware_t firmware;
+    avr_global_logger_set(silent);
     if (argc != 3 || elf_read_firmware(argv[2], &firmware)) {
         fprintf(stderr, "usage: avr_runner MCU PROGRAM.elf\n");
         return 97;
@@ -48,7 +53,6 @@ int main(int argc, char **argv)
         return 97;
     }
     avr_init(avr);
-    avr->log = LOG_ERROR;
     avr_load_firmware(avr, &firmware);
     avr_register_io_write(avr, GPIOR0, console, NULL);
     avr_register_io_write(avr, GPIOR1, latch, NULL);
