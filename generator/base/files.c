@@ -209,7 +209,7 @@ static int stands(const char *root, const char *name, char *buffer, size_t room)
 
 pw_status pw_data_path(const char *name, char *buffer, size_t room)
 {
-    static const char *const near[] = {"/../share/polewright", "/..", "/../.."};
+    static const char *const near[] = {"/../share/polewright", "/..", "/../..", "/../../.."};
     const char *told = getenv("POLEWRIGHT_DATA");
     if (told && *told && stands(told, name, buffer, room)) return PW_OK;
     char self[PATH_MAX];

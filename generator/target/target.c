@@ -170,6 +170,14 @@ static void take_settings(pw_settings *settings, pw_target *out, pw_messages *me
     complain_of_unused(settings, messages);
 }
 
+/* "cortex-m4" means cortex-m4f, though cortex-m0 is as near by letters: a beginning counts first. */
+static const char *nearest_name(const char *name, const char *const *names, int n)
+{
+    for (int i = 0; *name && i < n; i++)
+        if (!strncmp(names[i], name, strlen(name))) return names[i];
+    return pw_nearest(name, names, n);
+}
+
 static pw_status unknown_target(const char *name, pw_where at, pw_messages *messages)
 {
     pw_arena arena = {0};
@@ -177,7 +185,7 @@ static pw_status unknown_target(const char *name, pw_where at, pw_messages *mess
     int n;
     pw_status status = pw_target_names(&arena, &names, &n);
     if (!status) {
-        const char *near = pw_nearest(name, names, n);
+        const char *near = nearest_name(name, names, n);
         if (near) pw_error(messages, at, "unknown target '%s'; did you mean %s?", name, near);
         else pw_error(messages, at, "unknown target '%s'; expected one that 'polewright targets' lists", name);
         status = PW_WRONG;

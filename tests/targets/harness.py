@@ -20,7 +20,7 @@ import tap  # noqa: E402
 
 TARGETS = tap.ROOT + "/targets"
 STRICT = ["-std=c99", "-Wall", "-Wextra", "-Wconversion", "-pedantic", "-Werror", "-ffp-contract=off"]
-RUNNER = tap.ROOT + "/build/targets/avr_runner"
+RUNNER = tap.ROOT + "/build/parts/avr_runner"
 
 
 class Target:

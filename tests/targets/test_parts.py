@@ -22,7 +22,7 @@ int main(void)
 }
 """
 
-out = ROOT + "/build/targets/parts"
+out = ROOT + "/build/parts/parts"
 os.makedirs(out, exist_ok=True)
 with open(out + "/alive.c", "w", encoding="utf-8") as file:
     file.write(PROGRAM)
