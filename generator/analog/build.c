@@ -1,0 +1,103 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+#include "analog/rootlist.h"
+
+#include <math.h>
+
+#define MAX_INTEGRATORS 2
+
+/* Until the circuit's part of the station is linked in, its descriptions are refused. */
+#pragma weak pw_analog_from_circuit
+#pragma weak pw_analog_from_cell
+
+static pw_status refuse(const pw_analog_spec *spec, const char *kind, pw_messages *messages)
+{
+    pw_error(messages, spec->at, "%s is not supported by this version; "
+             "expected roots, polynomials, family or cascade", kind);
+    return PW_WRONG;
+}
+
+static pw_status check_poles(const pw_roots *part, pw_where at, pw_messages *messages)
+{
+    for (int i = 0; i < part->poles; i++)
+        if (cimag(part->pole[i]) >= 0 && !pw_roots_check_pole(part->pole[i], at, messages))
+            return PW_WRONG;
+    return PW_OK;
+}
+
+static pw_status collect(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages);
+
+/* Every member is read, so that every mistake is told. */
+static pw_status collect_cascade(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages)
+{
+    pw_status status = PW_OK;
+    *out = (pw_roots){.factor = 1};
+    for (int i = 0; i < spec->members; i++) {
+        pw_roots part;
+        pw_status one = collect(&spec->member[i], &part, messages);
+        if (one == PW_OK && !pw_roots_append(out, &part, spec->member[i].at, messages))
+            return PW_WRONG;
+        if (one > status)
+            status = one;
+    }
+    return status;
+}
+
+/* Zeros, poles and factor of one description, its poles checked; it may still be improper. */
+static pw_status collect(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages)
+{
+    pw_status status = PW_FAILED;
+    switch (spec->kind) {
+    case PW_ANALOG_ROOTS:
+        return pw_analog_from_roots(spec, out, messages);
+    case PW_ANALOG_POLYNOMIALS:
+        return pw_analog_from_polynomials(spec, out, messages);
+    case PW_ANALOG_FAMILY:
+        return pw_analog_from_family(&spec->family, out, messages);
+    case PW_ANALOG_CASCADE:
+        return collect_cascade(spec, out, messages);
+    case PW_ANALOG_CIRCUIT:
+        status = pw_analog_from_circuit ? pw_analog_from_circuit(&spec->circuit, out, messages)
+                                        : refuse(spec, "circuit", messages);
+        break;
+    case PW_ANALOG_CELL:
+        status = pw_analog_from_cell ? pw_analog_from_cell(&spec->cell, out, messages)
+                                     : refuse(spec, "cell", messages);
+        break;
+    }
+    return status == PW_OK ? check_poles(out, spec->at, messages) : status;
+}
+
+/* Where to say that there are more zeros than poles, or too many integrators. */
+static pw_where place(const pw_analog_spec *spec, bool zeros)
+{
+    if (spec->kind == PW_ANALOG_POLYNOMIALS)
+        return zeros ? spec->numerator_at : spec->denominator_at;
+    return spec->at;
+}
+
+pw_status pw_analog_build(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages)
+{
+    pw_status status = collect(spec, out, messages);
+    if (status != PW_OK)
+        return status;
+    if (out->zeros > out->poles) {
+        int more = out->zeros - out->poles;
+        pw_error(messages, place(spec, true), "%d zero%s and %d pole%s: the gain would grow without end with "
+                 "frequency; expected at least as many poles as zeros: add %s, above the frequencies that matter",
+                 out->zeros, out->zeros == 1 ? "" : "s", out->poles, out->poles == 1 ? "" : "s",
+                 more == 1 ? "a pole" : "poles");
+        status = PW_WRONG;
+    }
+    int integrators = pw_analog_integrators(out);
+    if (integrators > MAX_INTEGRATORS) {
+        pw_error(messages, place(spec, false), "%d poles at 0; expected at most %d", integrators,
+                 MAX_INTEGRATORS);
+        status = PW_WRONG;
+    }
+    if (!isfinite(out->factor) || out->factor == 0) {
+        pw_error(messages, spec->at, "the gain factor of the stage is out of range; expected roots and "
+                 "gains of a physical size");
+        status = PW_WRONG;
+    }
+    return status;
+}
