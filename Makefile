@@ -11,7 +11,8 @@ JOBS    ?= 2
 
 # ---- Packages that the program, its tests and its targets need (Debian 12) ----
 
-PACKAGES_BUILD := gcc make pkg-config libgsl-dev libyaml-dev libjansson-dev libmd-dev libsndfile1-dev
+PACKAGES_BUILD := gcc make pkg-config libgsl-dev libyaml-dev libjansson-dev libmd-dev libsndfile1-dev \
+                  libmpc-dev libmpfr-dev libgmp-dev
 PACKAGES_RUN   := gnuplot-nox
 PACKAGES_TEST  := g++ clang libcmocka-dev python3 python3-numpy python3-scipy python3-mpmath python3-yaml \
                   python3-jsonschema
@@ -37,7 +38,7 @@ CFLAGS_san     := -O1 -g -fsanitize=address,undefined -fno-sanitize-recover=all 
 # -ffp-contract=off: the simulated float arithmetic must round every operation on its own.
 CFLAGS   := -std=gnu11 $(WARN) -ffp-contract=off $(CFLAGS_$(VARIANT)) -Igenerator -Iinclude -Iruntime \
             -DPW_VERSION='"$(VERSION)"' -DPW_PREFIX='"$(PREFIX)"'
-LDLIBS   := -lgsl -lgslcblas -lyaml -ljansson -lmd -lsndfile -lm -lpthread
+LDLIBS   := -lgsl -lgslcblas -lyaml -ljansson -lmd -lsndfile -lmpc -lmpfr -lgmp -lm -lpthread
 
 .DEFAULT_GOAL := all
 .PHONY: all help deps demo check check-targets check-all bench sizes install uninstall clean debug san release tests probes

@@ -6,11 +6,13 @@
 #include "analog/model.h"
 
 typedef struct pw_error_peak { double max, at_hz; } pw_error_peak;   /* max is >= 0 */
+typedef struct pw_error_figures { pw_error_peak magnitude_db, phase_deg, delay_s; } pw_error_figures;
 
 typedef struct pw_candidate {
     pw_method method;
     pw_prewarp prewarp;
     double prewarp_hz;
+    pw_infinity zeros_at_infinity;    /* matched-z */
     bool possible;               /* impulse invariance: not with as many zeros as poles */
     double magnitude_error_db, phase_error_deg;   /* largest over the band, above the floor */
 } pw_candidate;
@@ -21,6 +23,7 @@ typedef struct pw_digital {
     pw_method method;            /* never PW_BEST: the one that was chosen */
     pw_prewarp prewarp;          /* never PW_PREWARP_DEFAULT */
     double prewarp_hz;           /* PW_PREWARP_AT */
+    pw_infinity zeros_at_infinity;    /* matched-z */
     bool gain_matched;
     double match_gain_hz;
     pw_roots z;                  /* in the z plane; output units per input unit, like the analog one.
@@ -64,6 +67,10 @@ void pw_sections_make(const pw_roots *z, bool as_listed, pw_sections *out);
 /* Fills b and a from roots and gain; exact zeros of the z plane (1, -1, 0) give exact words. */
 void pw_section_expand(pw_section *section);
 
+/* (b0 + b1/z + b2/z^2) / (a0 + a1/z + a2/z^2), and its group delay in samples at z = e^(j theta).
+ * Evaluated about the nearer of z = 1 and z = -1, so that a low corner at a high rate does not
+ * cancel. */
 double complex pw_section_at(const double b[3], const double a[3], double complex z);
+double pw_section_group_delay(const double b[3], const double a[3], double complex z);
 
 #endif

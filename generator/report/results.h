@@ -11,8 +11,6 @@ typedef struct pw_response_row {
     double analog_delay_s, digital_delay_s;
 } pw_response_row;
 
-typedef struct pw_error_figures { pw_error_peak magnitude_db, phase_deg, delay_s; } pw_error_figures;
-
 #define PW_RESPONSE_ROWS 241
 
 typedef struct pw_response {
