@@ -40,8 +40,12 @@ static void sample_models(pw_results *r)
     r->digital.prewarp = PW_PREWARP_AT;
     r->digital.prewarp_hz = 400;
     r->digital.candidates = 2;
-    r->digital.candidate[0] = (pw_candidate){PW_BILINEAR, PW_PREWARP_AT, 400, true, 0.0625, 1.25};
-    r->digital.candidate[1] = (pw_candidate){PW_IMPULSE_INVARIANT, PW_PREWARP_NONE, 0, false, NAN, NAN};
+    r->digital.candidate[0] = (pw_candidate){
+        .method = PW_BILINEAR, .prewarp = PW_PREWARP_AT, .prewarp_hz = 400, .possible = true,
+        .magnitude_error_db = 0.0625, .phase_error_deg = 1.25};
+    r->digital.candidate[1] = (pw_candidate){
+        .method = PW_IMPULSE_INVARIANT, .prewarp = PW_PREWARP_NONE, .magnitude_error_db = NAN,
+        .phase_error_deg = NAN};
 }
 
 static void sample_section(pw_results *r, int i, const double b[3], const double a[3], int order)
@@ -71,15 +75,20 @@ static void sample_words(pw_results *r)
     real->coefficient_bits = 16;
     real->scaling = PW_SCALING_L1;
     real->count = 2;
-    sample_section(r, 0, (double[]){g, 2 * g, g}, (double[]){1, -2 * creal(p[0]), creal(p[0] * p[1])}, 2);
+    sample_section(r, 0, (double[]){g, 2 * g, g},
+                   (double[]){1, -2 * creal(p[0]), creal(p[0] * p[1])}, 2);
     sample_section(r, 1, (double[]){0.1, -0.1, 0}, (double[]){1, -creal(p[2]), 0}, 1);
     real->input_peak = 0.5;
     real->input_full_scale = real->output_full_scale = 1.65;
     real->first_clip_input = 0.8;
-    real->structure_why = "feedback of the rounding error costs one add and takes 31 dB of noise away";
+    real->structure_why = "feedback of the rounding error costs one add and takes 31 dB of noise"
+                          " away";
     real->order_why = "all 2 orders tried, lowest noise taken";
-    real->noise = (pw_noise){true, 0.75, -0.5, -89.25, 89.25, 14.5, 0.25, 0, false};
-    real->limit_cycle = (pw_limit_cycle){.given = true, .bound_lsb = 3, .found_lsb = 1, .found_period = 2};
+    real->noise = (pw_noise){.given = true, .output_rms_lsb = 0.75, .output_offset_lsb = -0.5,
+                             .output_dbfs = -89.25, .snr_db = 89.25, .effective_bits = 14.5,
+                             .input_quantisation_rms_lsb = 0.25};
+    real->limit_cycle = (pw_limit_cycle){.given = true, .bound_lsb = 3, .found_lsb = 1,
+                                         .found_period = 2};
 }
 
 static void sample_nodes(pw_results *r)
@@ -89,7 +98,8 @@ static void sample_nodes(pw_results *r)
     real->node[0] = (pw_node){"section 1 output", 1, 0.625, 4.082, 1.25, false, false, NAN, NAN};
     real->node[1] = (pw_node){"section 2 output", 2, 0.5, 6.02, 1.0, false, false, NAN, NAN};
     real->node[2] = (pw_node){"section 1 accumulator", 1, 1.25, -1.938, 2.5, true, false, NAN, NAN};
-    real->node[3] = (pw_node){"section 2 accumulator", 2, INFINITY, -INFINITY, INFINITY, true, true, 812, 53000000};
+    real->node[3] = (pw_node){"section 2 accumulator", 2, INFINITY, -INFINITY, INFINITY, true, true,
+                              812, 53000000};
     real->worst_node = 2;
 }
 
@@ -105,7 +115,8 @@ static void sample_response(pw_results *r)
         pw_response_row *row = &p->row[i];
         row->hz = 0.5 * pow(3600 / 0.5, i / (double)(p->rows - 1));
         double complex a = sample_product(&r->analog, 2 * M_PI * row->hz * I);
-        double complex d = sample_product(&r->digital.z, cexp(2 * M_PI * row->hz / SAMPLE_RATE * I));
+        double complex d = sample_product(&r->digital.z,
+                                          cexp(2 * M_PI * row->hz / SAMPLE_RATE * I));
         row->analog_db = 20 * log10(cabs(a));
         row->digital_db = 20 * log10(cabs(d));
         row->analog_deg = carg(a) * 180 / M_PI;
