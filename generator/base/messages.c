@@ -53,7 +53,10 @@ void pw_warning(pw_messages *messages, pw_where at, const char *format, ...)
 static int by_place(const void *left, const void *right)
 {
     const struct pw_message *l = left, *r = right;
-    if (l->at.line != r->at.line) return l->at.line < r->at.line ? -1 : 1;
+    if (l->at.line != r->at.line) {
+        bool options = l->at.line < 0 && r->at.line < 0;   /* --set -1, -2, ..: in their order */
+        return (l->at.line < r->at.line) != options ? -1 : 1;
+    }
     if (l->at.column != r->at.column) return l->at.column < r->at.column ? -1 : 1;
     return l->order < r->order ? -1 : 1;
 }
@@ -72,7 +75,9 @@ void pw_messages_print(pw_messages *messages, FILE *to, bool errors_only)
         }
         printed++;
         const char *kind = m->error ? "" : "warning: ";
-        if (m->at.line)
+        if (m->at.line < 0 && -m->at.line <= messages->n_sets)
+            fprintf(to, "--set %s: %s%s\n", messages->sets[-m->at.line - 1], kind, m->text);
+        else if (m->at.line > 0)
             fprintf(to, "%s:%d:%d: %s%s\n", messages->file, m->at.line, m->at.column, kind, m->text);
         else
             fprintf(to, "%s: %s%s\n", messages->file, kind, m->text);

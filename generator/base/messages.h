@@ -8,13 +8,16 @@
 #include "base/status.h"
 
 /* A place in the stage file. Lines and columns count from 1, columns in characters; {0, 0} is no
- * place (a message then starts with the file's name alone). */
+ * place (a message then starts with the file's name alone). Line -k is the k-th --set option: a
+ * message then starts with "--set" and its text in place of the file. */
 typedef struct pw_where { int line, column; } pw_where;
 
 typedef struct pw_messages {
     const char *file;                    /* as messages name it: the path, or "stdin" */
     struct pw_message *list;
     int count, errors;
+    const char *const *sets;             /* the --set options; null where there are none */
+    int n_sets;
 } pw_messages;                           /* {.file = name} is empty */
 
 /* The text reads "what is wrong; what was expected", without a full stop or a newline. The same

@@ -1,0 +1,153 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Takers of single keys that are not like the others: name, target, transform, arithmetic, signal,
+ * limits, vectors. */
+#include <ctype.h>
+#include <stdio.h>
+#include <stdlib.h>
+#include <string.h>
+
+#include "base/nearest.h"
+#include "stagefile/take.h"
+
+#define LONGEST_NAME 48          /* with the longest suffix it stays within C99's 63 characters */
+
+/* ---- the name ---- */
+
+/* C11, C++20 and the alternative spellings of C++. */
+static const char *const keywords[] = {
+    "alignas", "alignof", "and", "and_eq", "asm", "auto", "bitand", "bitor", "bool", "break", "case",
+    "catch", "char", "char16_t", "char32_t", "char8_t", "class", "co_await", "co_return", "co_yield",
+    "compl", "concept", "const", "const_cast", "consteval", "constexpr", "constinit", "continue",
+    "decltype", "default", "delete", "do", "double", "dynamic_cast", "else", "enum", "explicit",
+    "export", "extern", "false", "float", "for", "friend", "goto", "if", "inline", "int", "long",
+    "main", "mutable", "namespace", "new", "noexcept", "not", "not_eq", "nullptr", "operator", "or",
+    "or_eq", "private", "protected", "public", "register", "reinterpret_cast", "requires", "restrict",
+    "return", "short", "signed", "sizeof", "static", "static_assert", "static_cast", "struct",
+    "switch", "template", "this", "thread_local", "throw", "true", "try", "typedef", "typeid",
+    "typename", "typeof", "union", "unsigned", "using", "virtual", "void", "volatile", "wchar_t",
+    "while", "xor", "xor_eq",
+};
+
+/* Why a text cannot be the name of a stage; null where it can. */
+static const char *name_fault(const char *text)
+{
+    for (const char *p = text; *p; p++)
+        if (!isalnum((unsigned char)*p) && *p != '_') return "is not a C identifier";
+    if (isdigit((unsigned char)text[0]) || !*text) return "is not a C identifier";
+    if (text[0] == '_') return "begins with '_', which C keeps for itself";
+    if (strstr(text, "__")) return "holds '__', which C++ keeps for itself";
+    if (!strncmp(text, "pw_", 3)) return "begins with 'pw_', which the runtime uses";
+    if (strlen(text) > LONGEST_NAME) return "is longer than 48 letters";
+    for (size_t i = 0; i < sizeof keywords / sizeof keywords[0]; i++)
+        if (!strcmp(text, keywords[i])) return "is a word of C or C++";
+    return NULL;
+}
+
+void pw_take_stage_name(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    pw_stage *stage = base;
+    char what[128], shown[PW_SHOWN_ROOM];
+    pw_take_place(key, node, base, 0);
+    if (node->kind != PW_TREE_SCALAR || pw_tree_is_empty(node)) {
+        pw_take_refuse(reader, key, node, NULL);
+        return;
+    }
+    const char *fault = name_fault(node->text);
+    if (!fault) {
+        stage->name = node->text;
+        return;
+    }
+    snprintf(what, sizeof what, "%s %s", pw_shown(shown, node->text), fault);
+    pw_take_refuse(reader, key, node, what);
+}
+
+void pw_take_target(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    pw_stage *stage = base;
+    if (node->kind != PW_TREE_SCALAR || pw_tree_is_empty(node)) {
+        pw_take_refuse(reader, key, node, NULL);
+        return;
+    }
+    stage->target_given = node->at.line != 0;
+    stage->target = node->text;
+    pw_take_place(key, node, base, 0);
+}
+
+/* ---- transform, arithmetic ---- */
+
+static bool is_word(const pw_tree *node)
+{
+    return node->kind == PW_TREE_SCALAR && isalpha((unsigned char)node->text[0])
+        && strcasecmp(node->text, "nan") && strncasecmp(node->text, "inf", 3);
+}
+
+void pw_take_prewarp(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    pw_transform *transform = base;
+    pw_take_place(key, node, base, 0);
+    if (is_word(node)) {
+        int index = pw_take_index(reader, key, node);
+        if (index >= 0) transform->prewarp = index == 0 ? PW_PREWARP_NONE : PW_PREWARP_EACH_SECTION;
+    } else if (pw_take_value(reader, key, node, &transform->prewarp_hz))
+        transform->prewarp = PW_PREWARP_AT;
+}
+
+void pw_take_coefficient(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    pw_arithmetic *arithmetic = base;
+    double bits;
+    pw_take_place(key, node, base, 0);
+    if (!pw_take_value(reader, key, node, &bits)) return;
+    if (bits == 16 || bits == 32) arithmetic->coefficient_bits = (int)bits;
+    else {
+        char path[PW_KEY_ROOM], shown[PW_SHOWN_ROOM];
+        pw_error(reader->messages, node->at, "%s: %s is no word length here; expected 16 bits or 32 bits",
+                 pw_key_path(path, key), pw_shown(shown, node->text));
+    }
+}
+
+/* ---- signal ---- */
+
+void pw_take_port(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    pw_port *port = (pw_port *)((char *)base + key->offset);
+    port->at = node->at;
+    port->given = node->kind == PW_TREE_MAP;
+    if (port->given) pw_take_map(reader, key->sub, node, port);
+    else pw_take_refuse(reader, key, node, NULL);
+}
+
+void pw_take_rails(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    int before = reader->messages->errors;
+    pw_take_pair(reader, key, node, base);
+    ((pw_port *)base)->has_rails = reader->messages->errors == before;
+}
+
+/* ---- limits, vectors ---- */
+
+void pw_take_band(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    int before = reader->messages->errors;
+    pw_take_pair(reader, key, node, base);
+    ((pw_limits *)base)->band_given = reader->messages->errors == before;
+}
+
+void pw_take_forbidden(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    pw_take_place(key, node, base, 0);
+    if (pw_take_index(reader, key, node) == 0) *(bool *)((char *)base + key->offset) = true;
+}
+
+void pw_take_signals(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    bool *want = (bool *)((char *)base + key->offset);
+    if (!pw_take_is_list(reader, key, node)) return;
+    for (int i = 0; i < node->count; i++) {
+        int index = pw_take_index(reader, key, node->item[i]);
+        if (index >= 0 && want[index])
+            pw_error(reader->messages, node->item[i]->at, "vectors.signals: '%s' stands twice; expected it once",
+                     key->words[index].word);
+        if (index >= 0) want[index] = true;
+    }
+}
