@@ -64,6 +64,7 @@ struct pw_key {
 typedef struct pw_key_map {
     const char *map, *help;
     bool free_names;             /* other keys than the table's may stand in it, see pw_cell */
+    bool stated;                 /* the report states the defaults of its keys that were taken */
 } pw_key_map;
 
 extern const pw_key pw_keys[];

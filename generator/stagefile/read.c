@@ -43,6 +43,8 @@ pw_status pw_stage_read(const pw_text *yaml, const char *const *sets, int n_sets
     pw_tree *root = read_tree(yaml, sets, n_sets, &out->arena, messages);
     if (root) {
         pw_reader reader = {.stage = out, .arena = &out->arena, .messages = messages};
+        reader.taken = pw_arena_take(&out->arena, (size_t)(pw_key_count + 1) * sizeof *reader.taken);
+        out->taken = reader.taken;
         pw_take_map(&reader, "", root, out);
         pw_stage_check(&reader, messages->errors == before);
     }

@@ -12,6 +12,8 @@ typedef struct pw_reader {
     pw_arena *arena;             /* the stage's */
     pw_messages *messages;
     bool poles;                  /* the list of roots being read is that of the poles */
+    const char **taken;          /* "KEY: DEFAULT", ended by a null; see pw_stage */
+    int n_taken;
 } pw_reader;
 
 /* Reads a map by the table: every key there is taken, absent ones get their defaults, unknown,

@@ -67,11 +67,11 @@ static const char *map_phrase(char *buffer, size_t room, const char *map)
 
 /* ---- unknown keys ---- */
 
-static bool has_free_names(const char *map)
+static const pw_key_map *map_named(const char *map)
 {
-    for (int i = 0; i < pw_key_map_count; i++)
-        if (!strcmp(pw_key_maps[i].map, map)) return pw_key_maps[i].free_names;
-    return false;
+    int i = 0;
+    while (strcmp(pw_key_maps[i].map, map)) i++;
+    return &pw_key_maps[i];
 }
 
 static void tell_unknown(pw_reader *reader, const char *map, const pw_tree *node, int index)
@@ -97,7 +97,7 @@ static void tell_unknown(pw_reader *reader, const char *map, const pw_tree *node
 
 static void tell_unknowns(pw_reader *reader, const char *map, const pw_tree *node)
 {
-    if (has_free_names(map)) return;
+    if (map_named(map)->free_names) return;
     for (int i = 0; i < node->count; i++) {
         if (pw_key_find(map, node->key[i])) continue;
         if (pw_key_later(map, node->key[i], NULL))
@@ -109,8 +109,17 @@ static void tell_unknowns(pw_reader *reader, const char *map, const pw_tree *nod
 
 /* ---- missing and misplaced keys ---- */
 
+/* Whether a key of the node that the table does not know most likely means this one. */
+static bool is_mistyped(const pw_key *key, const pw_tree *node)
+{
+    for (int i = 0; i < node->count; i++)
+        if (!pw_key_find(key->map, node->key[i]) && pw_nearest(node->key[i], &key->name, 1)) return true;
+    return false;
+}
+
 static void tell_missing(pw_reader *reader, const pw_key *key, const pw_tree *node)
 {
+    if (is_mistyped(key, node)) return;
     char path[PW_KEY_ROOM];
     pw_text expected = {0};
     pw_key_expected(key, &expected);
@@ -159,8 +168,21 @@ static void check_choice(pw_reader *reader, const char *map, const pw_tree *node
 
 /* ---- the map ---- */
 
-static void take_default(pw_reader *reader, const pw_key *key, void *base)
+/* Keeps "KEY: DEFAULT" for the report, once. */
+static void state_default(pw_reader *reader, const pw_key *key)
 {
+    char path[PW_KEY_ROOM];
+    const char *value = key->fallback ? key->fallback : key->otherwise;
+    if (!value || !*value || !strcmp(value, "not judged") || !map_named(key->map)->stated) return;
+    const char *line = pw_arena_print(reader->arena, "%s: %s", pw_key_path(path, key), value);
+    for (int i = 0; i < reader->n_taken; i++)
+        if (!strcmp(reader->taken[i], line)) return;
+    reader->taken[reader->n_taken++] = line;
+}
+
+static void take_default(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
+{
+    if (!node || !key->only_with || holds(key->only_with, key->map, node) == YES) state_default(reader, key);
     if (key->take == pw_take_submap && !key->needed) pw_take_submap(reader, key, NULL, base);
     if (!key->fallback) return;
     const pw_where nowhere = {0, 0};
@@ -171,7 +193,7 @@ static void take_key(pw_reader *reader, const pw_key *key, const pw_tree *node, 
 {
     const pw_tree *value = node ? pw_tree_find(node, key->name) : NULL;
     if (!value) {
-        take_default(reader, key, base);
+        take_default(reader, key, node, base);
         if (node && (key->needed || (key->needed_with && holds(key->needed_with, key->map, node) == YES)))
             tell_missing(reader, key, node);
         return;

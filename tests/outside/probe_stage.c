@@ -33,6 +33,7 @@ static void print_stage(const pw_stage *s)
     printf("band %.17g %.17g\nfloor %.17g\n", s->limits.band_hz[0], s->limits.band_hz[1], s->limits.floor_db);
     printf("vectors %d %llu\nspread %d %llu\n", s->vectors.length, (unsigned long long)s->vectors.seed, s->spread.draws,
            (unsigned long long)s->spread.seed);
+    for (const char *const *line = s->taken; *line; line++) printf("taken %s\n", *line);
     printf("target %s %d\nsha256 %s\n", s->target, s->target_given, s->sha256);
 }
 
