@@ -1,0 +1,235 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Bounds of nodes. The chain is cut where a clamp can act: what lies behind it starts anew from a
+ * signal of at most full scale, since a chain that clips is not linear any more.
+ *
+ *     |node| <= X * L1(segment input -> node) + sum over rounding sources of half step * L1
+ *
+ * with X the input's peak, or 1 behind a clamp. */
+#include "words/proof.h"
+
+#include <math.h>
+#include <stdio.h>
+#include <string.h>
+
+/* ---- rounding ---- */
+
+/* What a source can add to a node, in full scale. Rounding to nearest errs by half a step either
+ * way; truncating errs by half a step about an offset of half a step. */
+static long double source_reach(const pw_format *format, const pw_norm *norm)
+{
+    long double half = format->lsb / 2;
+    return half * (norm->l1 + (format->truncate ? fabsl(norm->dc) + 0.005L * norm->l1 : 0));
+}
+
+/* The largest amplitude of the free response of 1/A from y1 = y2 = 1. */
+static long double rest_reach(const pw_line *line)
+{
+    long double a1 = line->a[1], a2 = line->a[2], split = a1 * a1 / 4 - a2;
+    if (split < 0)
+        return hypotl(1, (a2 + a1 / 2) / sqrtl(-split)) * (1 + 1e-9L);
+    if (a1 <= 0 && a2 >= 0)
+        return 1;                /* real poles in [0, 1]: it falls from 1 */
+    return (fabsl(a1 + a2) + fabsl(a2)) * line->all_pole;
+}
+
+/* A filter that was settled starts up to half a step (coupled: in both words) from rest; where the
+ * error is fed back this can lie outside of what rounding reaches by itself. */
+static long double settle_reach(const pw_format *format, const pw_words *w, const pw_line *line)
+{
+    if (w->structure == PW_COUPLED)
+        return format->lsb * (fabsl(line->c1) + fabsl(line->c2));
+    bool inside = w->structure == PW_DIRECT_1 && fabsl(1 + line->a[1] + line->a[2]) <= 1;
+    return w->order == 0 || inside ? 0 : format->lsb / 2 * rest_reach(line);
+}
+
+static long double rounding_at(pw_proof *p, const pw_realisation *r, int from, int k, pw_place place)
+{
+    long double sum = 0;
+    for (int j = from; j <= k; j++) {
+        const pw_words *w = &r->section[j];
+        bool coupled = w->structure == PW_COUPLED;
+        for (int s = 0; s < (coupled ? PW_SOURCES : 1); s++) {
+            const pw_route *route = pw_paths_source(&p->paths, w, j, s);
+            if (s == PW_SOURCE_OUTPUT && coupled && j == k && place != PW_PLACE_OUTPUT)
+                continue;        /* rounding of y does not enter the two words */
+            sum += route->reach > k ? source_reach(&p->format, &route->norm[k - j][place]) : INFINITY;
+        }
+        long double through = 1;
+        for (int i = j + 1; i <= k; i++)
+            through *= p->paths.line[i].own;
+        if (place == PW_PLACE_OUTPUT || j < k)
+            sum += settle_reach(&p->format, w, &p->paths.line[j]) * through;
+        else
+            sum += p->format.lsb;
+        if (!coupled && w->b_fraction > w->a_fraction)
+            sum += ldexpl(p->format.lsb, -w->a_fraction - 1) * pw_paths_shift_bound(&p->paths, j, k);
+    }
+    return sum;
+}
+
+/* ---- one section of a segment ---- */
+
+typedef struct section_bound {
+    long double gain[PW_PLACES], rounding[PW_PLACES], bound[PW_PLACES];
+    bool clips;
+} section_bound;
+
+static section_bound bound_section(pw_proof *p, const pw_realisation *r, int from, long double peak,
+                                   int k)
+{
+    section_bound s = {.clips = false};
+    int places = r->section[k].structure == PW_COUPLED ? PW_PLACES : 1;
+    const pw_route *in = pw_paths_input(&p->paths, from);
+    for (int place = 0; place < places; place++) {
+        bool finite = in->reach > k;
+        s.gain[place] = finite ? in->norm[k - from][place].l1 : INFINITY;
+        s.rounding[place] = !p->format.fixed ? 0
+                          : finite ? rounding_at(p, r, from, k, place) : INFINITY;
+        s.bound[place] = peak * s.gain[place] + s.rounding[place];
+        s.clips = s.clips || !(s.bound[place] <= p->format.largest);
+    }
+    s.clips = s.clips && p->format.fixed;
+    return s;
+}
+
+/* Over every state and every input up to the given size: the accumulator of y. */
+static long double any_state(const pw_format *format, const pw_words *w, long double input)
+{
+    long double sum = 0;
+    if (w->structure == PW_COUPLED)
+        return ldexpl(fabsl((long double)w->c1) + fabsl((long double)w->c2)
+                      + fabsl((long double)w->d) * input, -w->c_fraction) + format->lsb;
+    for (int k = 0; k < 3; k++)
+        sum += fabs(w->realised_b[k]) * input + (k ? fabs(w->realised_a[k]) : 0);
+    return sum + format->lsb * (1 + abs(w->k1) + abs(w->k2));
+}
+
+/* ---- nodes ---- */
+
+static pw_node *add_node(pw_realisation *r, int section, const char *what)
+{
+    pw_node *node = &r->node[r->nodes++];
+    memset(node, 0, sizeof *node);
+    snprintf(node->name, sizeof node->name, "section %d %s", section + 1, what);
+    node->section = section + 1;
+    node->samples_to_clip = node->samples_to_clip_code = NAN;
+    return node;
+}
+
+static double outward(long double v)
+{
+    double d = (double)v;
+    return d < v ? nextafter(d, INFINITY) : d;
+}
+
+static void fill_node(const pw_format *format, pw_node *node, long double bound, long double gain)
+{
+    node->bound = outward(bound);
+    node->peak_gain = outward(gain);
+    node->headroom_db = 20 * log10(format->largest / node->bound);
+    node->can_clip = format->fixed && node->bound > format->largest;
+}
+
+static void name_nodes(pw_realisation *r)
+{
+    static const char *const inner[] = {"u1", "u2"};
+    r->nodes = 0;
+    for (int k = 0; k < r->count; k++)
+        add_node(r, k, "output");
+    for (int k = 0; k < r->count; k++) {
+        if (r->section[k].structure == PW_COUPLED)
+            for (int i = 0; i < 2; i++)
+                add_node(r, k, inner[i]);
+        else if (r->sample == PW_Q15 || r->sample == PW_Q31)
+            add_node(r, k, "accumulator");
+    }
+}
+
+static pw_node *node_of(pw_realisation *r, int section, int which)
+{
+    for (int i = 0; i < r->nodes; i++)
+        if (r->node[i].section == section + 1 && which-- == 0)
+            return &r->node[i];
+    return NULL;
+}
+
+static void record(pw_proof *p, pw_realisation *r, int k, const section_bound *s, long double input)
+{
+    const pw_words *w = &r->section[k];
+    long double out = s->bound[PW_PLACE_OUTPUT];
+    if (s->clips && !p->paths.integrates[k] && w->structure == PW_COUPLED)
+        out = fmaxl(out, any_state(&p->format, w, input));
+    fill_node(&p->format, node_of(r, k, 0), out, s->gain[PW_PLACE_OUTPUT]);
+    node_of(r, k, 0)->integrates = p->paths.integrates[k];
+    if (w->structure == PW_COUPLED) {
+        for (int i = 1; i < PW_PLACES; i++)
+            fill_node(&p->format, node_of(r, k, i), s->bound[i], s->gain[i]);
+    } else if (p->format.fixed) {
+        long double acc = s->clips ? any_state(&p->format, w, input)
+                                   : out + p->format.lsb * (p->format.truncate ? 1 : 0.5L);
+        fill_node(&p->format, node_of(r, k, 1), acc, s->gain[PW_PLACE_OUTPUT]);
+    }
+}
+
+/* ---- the walk along the chain ---- */
+
+/* Visits every section with its segment's start and input size; keep null: only the proof of
+ * cannot_clip for inputs of full scale. */
+static void walk(pw_proof *p, pw_realisation *r, long double peak, bool keep)
+{
+    long double size = peak, input = peak;
+    int from = 0;
+    for (int k = 0; k < r->count; k++) {
+        section_bound s = bound_section(p, r, from, size, k);
+        if (keep)
+            record(p, r, k, &s, fminl(input, 1));
+        else
+            r->section[k].cannot_clip = p->format.fixed && !s.clips;
+        if (keep && from == 0 && p->format.fixed)
+            for (int i = 0; i < (r->section[k].structure == PW_COUPLED ? PW_PLACES : 1); i++) {
+                double level = (double)((p->format.largest - s.rounding[i]) / s.gain[i]);
+                r->first_clip_input = fmin(r->first_clip_input, fmax(level, 0));
+            }
+        input = s.clips ? 1 : s.bound[PW_PLACE_OUTPUT];
+        if (s.clips || p->paths.integrates[k])
+            from = k + 1, size = 1;
+    }
+}
+
+static int find_worst(const pw_realisation *r)
+{
+    int worst = 0;
+    for (int i = 1; i < r->nodes; i++)
+        if (!strstr(r->node[i].name, "accumulator") && r->node[i].bound > r->node[worst].bound)
+            worst = i;
+    return worst;
+}
+
+void pw_proof_start(const pw_format *format, const pw_realisation *r, pw_proof *out)
+{
+    out->format = *format;
+    pw_paths_make(r, &out->paths);
+}
+
+void pw_proof_end(pw_proof *proof)
+{
+    pw_paths_free(&proof->paths);
+}
+
+void pw_prove(pw_proof *proof, pw_realisation *r)
+{
+    name_nodes(r);
+    r->first_clip_input = INFINITY;
+    walk(proof, r, 1, false);
+    walk(proof, r, r->input_peak, true);
+    if (r->first_clip_input >= 1)
+        r->first_clip_input = INFINITY;
+    for (int k = 0; k < r->count; k++) {
+        pw_words *w = &r->section[k];
+        bool fits = w->cannot_clip && w->a_fraction < 15;     /* |acc| <= 2^15 2^14 and a bit */
+        w->fits_32 = pw_words_fit_32(&proof->format, w)
+                  || (fits && w->structure != PW_COUPLED && proof->format.sample_bits == 16
+                      && proof->format.word_bits == 16 && w->b_fraction == w->a_fraction);
+    }
+    r->worst_node = find_worst(r);
+}

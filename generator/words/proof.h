@@ -1,0 +1,17 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Bounds on every node, and what follows from them. */
+#ifndef PW_WORDS_PROOF_H
+#define PW_WORDS_PROOF_H
+
+#include "words/paths.h"
+
+typedef struct pw_proof { pw_format format; pw_paths paths; } pw_proof;
+
+/* Between start and end the norms are kept, so that proof, noise and limit cycles share them. */
+void pw_proof_start(const pw_format *format, const pw_realisation *r, pw_proof *out);
+void pw_proof_end(pw_proof *proof);
+
+/* Fills nodes, cannot_clip, fits_32, first_clip_input and worst_node. */
+void pw_prove(pw_proof *proof, pw_realisation *r);
+
+#endif
