@@ -43,27 +43,36 @@ void pw_quantise_float(const pw_format *format, const pw_section *section, long 
                        pw_words *words);
 /* Poles strictly inside the unit circle, or one exactly at 1 in a first-order section. */
 bool pw_words_stable(const pw_words *words);
+/* Whether a pole stands at exactly 1. */
+bool pw_section_has_integrator(const pw_section *section);
 /* a_fraction as the poles alone allow it. */
 int pw_pole_fraction(const pw_format *format, const pw_section *section);
 
 /* ---- response.c ---- */
 
-typedef struct pw_grid {         /* frequencies of the band where words are judged */
+typedef struct pw_band {         /* frequencies of the band where words are judged */
     int count;
     double theta[160];           /* radians per sample */
     double hz[160];
-} pw_grid;
+} pw_band;
 
-void pw_grid_make(const pw_stage *stage, const pw_roots *z, pw_grid *out);
+void pw_band_make(const pw_stage *stage, const pw_roots *z, pw_band *out);
 /* gain * prod(z - zero) / prod(z - pole) at z = exp(j theta), without cancellation near z = 1. */
 double complex pw_ideal_response(const pw_section *section, double theta);
 double complex pw_words_response(const pw_words *words, double theta);
 /* Deviation of the realised chain from the ideal one, over the band above the floor. */
-void pw_deviation(const pw_stage *stage, const pw_grid *grid, pw_realisation *r);
+void pw_deviation(const pw_stage *stage, const pw_band *grid, pw_realisation *r);
 
 /* ---- paths.c ---- */
 
 void pw_line_of_words(const pw_words *words, pw_line *line);
+
+/* ---- scale.c ---- */
+
+/* Gains of the sections of a realisation: ideal[] monic, words not yet chosen. factor: of the
+ * whole, from sample to sample. gain[k] multiplies section k; their product is factor. */
+void pw_scale_gains(const pw_format *format, const pw_realisation *r, long double factor,
+                    long double gain[]);
 
 /* ---- order.c ---- */
 

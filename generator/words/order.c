@@ -38,6 +38,13 @@ void pw_order_sections(const pw_roots *z, bool as_listed, pw_sections *out, cons
     int left[PW_MAX_ROOTS], singles = 0;
     bool served[PW_MAX_SECTIONS] = {false};
     pw_units_make(z, as_listed, &u);
+    if (u.poles == 0) {
+        out->count = 1;
+        out->list[0] = (pw_section){.gain = 1};
+        pw_section_expand(&out->list[0]);
+        *why = "a plain gain";
+        return;
+    }
     for (int g = 0; g < u.zeros; g++) {
         left[g] = u.zero[g].count;
         singles += u.zero[g].size == 1 ? u.zero[g].count : 0;

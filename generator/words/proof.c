@@ -9,6 +9,7 @@
 
 #include <math.h>
 #include <stdio.h>
+#include <stdlib.h>
 #include <string.h>
 
 /* ---- rounding ---- */
@@ -185,15 +186,24 @@ static void walk(pw_proof *p, pw_realisation *r, long double peak, bool keep)
             record(p, r, k, &s, fminl(input, 1));
         else
             r->section[k].cannot_clip = p->format.fixed && !s.clips;
-        if (keep && from == 0 && p->format.fixed)
-            for (int i = 0; i < (r->section[k].structure == PW_COUPLED ? PW_PLACES : 1); i++) {
-                double level = (double)((p->format.largest - s.rounding[i]) / s.gain[i]);
-                r->first_clip_input = fmin(r->first_clip_input, fmax(level, 0));
-            }
         input = s.clips ? 1 : s.bound[PW_PLACE_OUTPUT];
         if (s.clips || p->paths.integrates[k])
-            from = k + 1, size = 1;
+            from = k + 1, size = p->format.fixed ? 1 : INFINITY;
     }
+}
+
+/* The input level up to which the whole chain is linear. */
+static double first_clip(pw_proof *p, const pw_realisation *r)
+{
+    double level = INFINITY;
+    for (int k = 0; k < r->count && p->format.fixed; k++) {
+        section_bound s = bound_section(p, r, 0, 1, k);
+        for (int i = 0; i < (r->section[k].structure == PW_COUPLED ? PW_PLACES : 1); i++)
+            level = fmin(level, (double)((p->format.largest - s.rounding[i]) / s.gain[i]));
+        if (p->paths.integrates[k])
+            return 0;
+    }
+    return level >= 1 ? INFINITY : fmax(level, 0);
 }
 
 static int find_worst(const pw_realisation *r)
@@ -219,11 +229,9 @@ void pw_proof_end(pw_proof *proof)
 void pw_prove(pw_proof *proof, pw_realisation *r)
 {
     name_nodes(r);
-    r->first_clip_input = INFINITY;
+    r->first_clip_input = first_clip(proof, r);
     walk(proof, r, 1, false);
     walk(proof, r, r->input_peak, true);
-    if (r->first_clip_input >= 1)
-        r->first_clip_input = INFINITY;
     for (int k = 0; k < r->count; k++) {
         pw_words *w = &r->section[k];
         bool fits = w->cannot_clip && w->a_fraction < 15;     /* |acc| <= 2^15 2^14 and a bit */

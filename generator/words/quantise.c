@@ -120,11 +120,22 @@ static bool shares_fraction(const pw_format *format, const pw_basis *basis, int 
     return least >= ldexp(1, format->word_bits == 32 ? 18 : 10);
 }
 
+bool pw_section_has_integrator(const pw_section *section)
+{
+    for (int k = 0; k < section->poles; k++)
+        if (section->pole[k] == 1)
+            return true;
+    return false;
+}
+
+/* A pole at exactly 1 stays: the words of a sum to minus one. */
 static void poles_words(const pw_section *section, pw_words *w)
 {
     w->a[0] = 0;
     for (int k = 1; k < 3; k++)
         w->a[k] = (int32_t)llrint(ldexp(section->a[k], w->a_fraction));
+    if (pw_section_has_integrator(section))
+        w->a[1] = -(1 << w->a_fraction) - w->a[2];
 }
 
 bool pw_quantise_direct(const pw_format *format, const pw_section *section, long double gain,
@@ -167,7 +178,7 @@ bool pw_words_stable(const pw_words *w)
     double a1 = w->realised_a[1], a2 = w->realised_a[2];
     if (w->order == 1)
         return fabs(a1) < 1 || a1 == -1;
-    return a2 < 1 && fabs(a1) < 1 + a2;
+    return (a2 < 1 && fabs(a1) < 1 + a2) || (a2 <= 1 && a1 == -1 - a2);
 }
 
 /* ---- floats ---- */

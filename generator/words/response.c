@@ -61,7 +61,7 @@ double complex pw_realised_at(const pw_realisation *realisation, double complex 
 
 /* ---- the grid and the deviation ---- */
 
-static void grid_add(const pw_stage *stage, pw_grid *grid, double hz)
+static void grid_add(const pw_stage *stage, pw_band *grid, double hz)
 {
     if (hz < stage->limits.band_hz[0] || hz > stage->limits.band_hz[1])
         return;
@@ -71,7 +71,7 @@ static void grid_add(const pw_stage *stage, pw_grid *grid, double hz)
     grid->theta[grid->count++] = 2 * M_PI * hz / stage->rate_hz;
 }
 
-void pw_grid_make(const pw_stage *stage, const pw_roots *z, pw_grid *out)
+void pw_band_make(const pw_stage *stage, const pw_roots *z, pw_band *out)
 {
     const double *band = stage->limits.band_hz;
     const int steps = 64;
@@ -111,7 +111,7 @@ static void keep_peak(pw_error_peak *peak, double value, double hz)
         *peak = (pw_error_peak){value, hz};
 }
 
-void pw_deviation(const pw_stage *stage, const pw_grid *grid, pw_realisation *r)
+void pw_deviation(const pw_stage *stage, const pw_band *grid, pw_realisation *r)
 {
     double largest = 0, floor = pow(10, -stage->limits.floor_db / 20);
     for (int i = 0; i < grid->count; i++)

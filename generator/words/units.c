@@ -109,14 +109,6 @@ void pw_units_make(const pw_roots *z, bool as_listed, pw_units *out)
     join_singles(out);
 }
 
-static void expand_poles(pw_section *s)
-{
-    double complex p = s->pole[0], q = s->poles == 2 ? s->pole[1] : 0;
-    s->a[0] = 1;
-    s->a[1] = -(creal(p) + creal(q));
-    s->a[2] = creal(p * q);
-}
-
 pw_section pw_units_section(const pw_units *units, int pole, int zero0, int zero1)
 {
     const pw_pole_unit *unit = &units->pole[pole];
@@ -132,7 +124,6 @@ pw_section pw_units_section(const pw_units *units, int pole, int zero0, int zero
         if (cimag(zero) != 0)
             s.zero[s.zeros++] = conj(zero);
     }
-    expand_poles(&s);
-    pw_section_numbers(&s);
+    pw_section_expand(&s);
     return s;
 }
