@@ -24,7 +24,8 @@ void pw_candidate_judge(const pw_stage *stage, const pw_roots *analog, pw_candid
                         const pw_roots *z)
 {
     pw_error_figures error;
-    pw_compare_digital(analog, z, stage->rate_hz, stage->limits.band_hz, stage->limits.floor_db, &error);
+    const pw_limits *limits = &stage->limits;
+    pw_compare_digital(analog, z, stage->rate_hz, limits->band_hz, limits->floor_db, &error);
     how->magnitude_error_db = error.magnitude_db.max;
     how->phase_error_deg = error.phase_deg.max;
 }

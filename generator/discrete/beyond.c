@@ -73,7 +73,8 @@ static void warn(const pw_stage *stage, const pw_digital *digital, double comple
     char said[PW_NUMBER_ROOM], half[PW_NUMBER_ROOM], would_do[PW_NUMBER_ROOM], becomes[160];
     double hz = cabs(s) / (2 * M_PI);
     fate(digital, stage->rate_hz, s, pole, becomes, sizeof becomes);
-    pw_warning(messages, at, "a %s at %s lies above half the rate, %s: %s; a rate above %s would hold it",
+    pw_warning(messages, at,
+               "a %s at %s lies above half the rate, %s: %s; a rate above %s would hold it",
                pole ? "pole" : "zero", pw_si(said, hz, "Hz", 4),
                pw_si(half, stage->rate_hz / 2, "Hz", 6), becomes, pw_si(would_do, 2 * hz, "Hz", 4));
 }

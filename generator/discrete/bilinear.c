@@ -8,7 +8,8 @@
  * Special cases: a real zero at s0 = c has c - s0 = 0: its factor is -2c/(z + 1), no zero.
  * Accuracy: in long double, rounded once: each part of a root to half a unit in its last place
  * where neither part of (c + s0)/(c - s0) cancels; real roots always; |z| - 1 keeps its sign.
- * Source: the trapezoidal rule as a substitution, A. Tustin, 1947; prewarping is common practice. */
+ * Source: the trapezoidal rule as a substitution, A. Tustin, 1947; prewarping is common
+ * practice. */
 #include <math.h>
 
 #include "discrete/grouping.h"

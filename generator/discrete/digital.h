@@ -6,7 +6,9 @@
 #include "analog/model.h"
 
 typedef struct pw_error_peak { double max, at_hz; } pw_error_peak;   /* max is >= 0 */
-typedef struct pw_error_figures { pw_error_peak magnitude_db, phase_deg, delay_s; } pw_error_figures;
+typedef struct pw_error_figures {
+    pw_error_peak magnitude_db, phase_deg, delay_s;
+} pw_error_figures;
 
 typedef struct pw_candidate {
     pw_method method;
@@ -26,9 +28,10 @@ typedef struct pw_digital {
     pw_infinity zeros_at_infinity;    /* matched-z */
     bool gain_matched;
     double match_gain_hz;
-    pw_roots z;                  /* in the z plane; output units per input unit, like the analog one.
-                                    fewer zeros than poles: whole-sample delays */
-    pw_candidate candidate[PW_MAX_CANDIDATES];   /* what was tried, best first; one for a named method */
+    pw_roots z;                  /* in the z plane; output units per input unit, like the analog
+                                    one. fewer zeros than poles: whole-sample delays */
+    pw_candidate candidate[PW_MAX_CANDIDATES];   /* what was tried, best first; one for a named
+                                                    method */
     int candidates;
 } pw_digital;
 

@@ -29,7 +29,8 @@ static bool frequencies_fit(const pw_stage *stage, pw_messages *messages)
     if (t->prewarp == PW_PREWARP_AT)
         fit &= below_half(stage, t->prewarp_hz, "prewarp", t->prewarp_at, messages);
     if (t->match_gain_hz.given)
-        fit &= below_half(stage, t->match_gain_hz.value, "match-gain", t->match_gain_hz.at, messages);
+        fit &= below_half(stage, t->match_gain_hz.value, "match-gain", t->match_gain_hz.at,
+                          messages);
     return fit;
 }
 
@@ -85,13 +86,14 @@ static pw_status no_form(const pw_stage *stage, const pw_roots *analog, pw_messa
 {
     if (analog->zeros == analog->poles) {
         pw_error(messages, stage->transform.method_at,
-                 "a stage with as many zeros as poles (%d) has no impulse-invariant form: its impulse "
-                 "response holds an impulse; bilinear, matched-z or step-invariant would do",
+                 "a stage with as many zeros as poles (%d) has no impulse-invariant form: its "
+                 "impulse response holds an impulse; bilinear, matched-z or step-invariant would do",
                  analog->poles);
         return PW_WRONG;
     }
-    pw_error(messages, stage->transform.method_at, "%s did not converge for these roots; another method "
-             "was expected", pw_method_word(stage->transform.method));
+    pw_error(messages, stage->transform.method_at,
+             "%s did not converge for these roots; another method was expected",
+             pw_method_word(stage->transform.method));
     return PW_FAILED;
 }
 
@@ -102,8 +104,8 @@ static pw_status match_asked(const pw_stage *stage, const pw_roots *analog, pw_d
     if (!pw_candidate_gain(stage, analog, out->candidate, out)) {
         char said[PW_NUMBER_ROOM];
         pw_error(messages, asked->given ? asked->at : stage->transform.method_at,
-                 "the gain cannot be matched at %s, where it is zero or without bound; a frequency away "
-                 "from the roots was expected", pw_si(said, out->match_gain_hz, "Hz", 6));
+                 "the gain cannot be matched at %s, where it is zero or without bound; a frequency "
+                 "away from the roots was expected", pw_si(said, out->match_gain_hz, "Hz", 6));
         return PW_WRONG;
     }
     return PW_OK;

@@ -67,8 +67,8 @@ static pw_error_peak worst(const pw_grid *grid, const comparison *c, const doubl
     return pw_grid_follow(grid, value, error_at, c);
 }
 
-void pw_compare(const pw_grid *grid, const pw_side *judge, const pw_side *truth, const pw_side *other,
-                double floor_db, pw_error_figures *out)
+void pw_compare(const pw_grid *grid, const pw_side *judge, const pw_side *truth,
+                const pw_side *other, double floor_db, pw_error_figures *out)
 {
     size_t n = (size_t)grid->count;
     double *level = pw_take(2 * n * sizeof *level), *value = level + n;

@@ -41,8 +41,8 @@ typedef struct pw_side {
  * on the grid; the judge is the analog stage. All errors are >= 0; a level error stops at
  * PW_WORST_DB. */
 #define PW_WORST_DB 400
-void pw_compare(const pw_grid *grid, const pw_side *judge, const pw_side *truth, const pw_side *other,
-                double floor_db, pw_error_figures *out);
+void pw_compare(const pw_grid *grid, const pw_side *judge, const pw_side *truth,
+                const pw_side *other, double floor_db, pw_error_figures *out);
 
 /* The same for a digital model against its analog one. */
 void pw_compare_digital(const pw_roots *analog, const pw_roots *z, double rate_hz,

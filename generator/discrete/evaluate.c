@@ -97,7 +97,8 @@ double complex pw_section_at(const double b[3], const double a[3], double comple
 
 /* -d(phase)/d(theta) of c0 + c1/z + c2/z^2 on the unit circle:
  * Re(sum k c_k z^-k / sum c_k z^-k) = 2 - Re(z P'(z)/P(z)), P = c0 z^2 + c1 z + c2. */
-static long double polynomial_delay(const double c[3], double complex z, long double side, pw_long d)
+static long double polynomial_delay(const double c[3], double complex z, long double side,
+                                    pw_long d)
 {
     long double slope = 2 * side * (long double)c[0] + c[1];
     pw_long rise = {2 * c[0] * d.re + slope, 2 * c[0] * d.im};

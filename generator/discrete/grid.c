@@ -26,7 +26,8 @@ void pw_grid_make(pw_grid *grid, double low, double high)
 {
     *grid = (pw_grid){.low = low, .high = high};
     double start = low > 0 ? low : high * 1e-6;
-    for (int i = 0; i < LOG_POINTS; i++) put(grid, start * pow(high / start, (double)i / LOG_POINTS));
+    for (int i = 0; i < LOG_POINTS; i++)
+        put(grid, start * pow(high / start, (double)i / LOG_POINTS));
     for (int i = 0; i < EVEN_POINTS; i++) put(grid, low + (high - low) * i / EVEN_POINTS);
     put(grid, high);
 }
@@ -56,7 +57,8 @@ void pw_grid_add_digital(pw_grid *grid, const pw_roots *z, double rate_hz)
     for (int i = 0; i < z->poles + z->zeros; i++) {
         double complex r = i < z->poles ? z->pole[i] : z->zero[i - z->poles];
         if (cabs(r) < 1e-6 || cimag(r) < 0) continue;
-        pw_grid_add(grid, carg(r) * rate_hz / (2 * M_PI), fabs(log(cabs(r))) * rate_hz / (2 * M_PI));
+        double hz = rate_hz / (2 * M_PI);    /* of one radian a sample */
+        pw_grid_add(grid, carg(r) * hz, fabs(log(cabs(r))) * hz);
     }
 }
 
@@ -111,7 +113,8 @@ static void climb(pw_level level, const void *context, double low, double high, 
 }
 
 /* The last place between inside (value >= 0) and outside (value < 0) that is still inside. */
-static void edge(pw_level level, const void *context, double inside, double outside, pw_error_peak *peak)
+static void edge(pw_level level, const void *context, double inside, double outside,
+                 pw_error_peak *peak)
 {
     double value = -1;
     for (int i = 0; i < 50; i++) {

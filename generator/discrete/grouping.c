@@ -63,7 +63,8 @@ static void nearest_reals(const pw_roots *analog, const pw_root_units *poles, do
 }
 
 /* The zero pair farthest from every complex pole pair: the one that real poles should take. */
-static int stranded_pair(const pw_roots *analog, const pw_root_units *zeros, const pw_root_units *poles)
+static int stranded_pair(const pw_roots *analog, const pw_root_units *zeros,
+                         const pw_root_units *poles)
 {
     int chosen = 0;
     double worst = -1;

@@ -5,7 +5,8 @@
  *     w(S) = max |H_S|^2 * mean |H_rest|^2,
  * and the noise of an order is the sum over its prefixes. A prefix counts only as a set, so the
  * least sum is found by dynamic programming over subsets up to FEW sections, and by taking the next
- * best section above that. Sections with a pole at 1 come last: what stands before them stays bounded.
+ * best section above that. Sections with a pole at 1 come last: what stands
+ * before them stays bounded.
  * Source: L. B. Jackson, Bell System Technical Journal 49 (1970), 159-184, for w. */
 #include "discrete/ordering.h"
 
@@ -34,7 +35,8 @@ static void trapezoid(const pw_grid *grid, double *weight)
 {
     double sum = 0;
     for (int k = 0; k < grid->count; k++) {
-        double before = k ? grid->hz[k - 1] : 0, after = k + 1 < grid->count ? grid->hz[k + 1] : 0.5;
+        double before = k ? grid->hz[k - 1] : 0;
+        double after = k + 1 < grid->count ? grid->hz[k + 1] : 0.5;
         weight[k] = (after - before) / 2;
         sum += weight[k];
     }

@@ -98,8 +98,8 @@ static void print_sections(const char *name, bool as_listed)
         printf("%s{\"order\": %d, ", k ? ", " : "", s->order);
         print_list("poles", s->pole, s->poles);
         print_list("zeros", s->zero, s->zeros);
-        printf("\"gain\": %.17g, \"b\": [%.17g, %.17g, %.17g], \"a\": [%.17g, %.17g, %.17g]}", s->gain,
-               s->b[0], s->b[1], s->b[2], s->a[0], s->a[1], s->a[2]);
+        printf("\"gain\": %.17g, \"b\": [%.17g, %.17g, %.17g], \"a\": [%.17g, %.17g, %.17g]}",
+               s->gain, s->b[0], s->b[1], s->b[2], s->a[0], s->a[1], s->a[2]);
     }
     printf("], ");
 }
@@ -109,8 +109,8 @@ static void print_candidates(void)
     printf("\"candidates\": [");
     for (int i = 0; i < digital.candidates; i++) {
         const pw_candidate *c = &digital.candidate[i];
-        printf("%s{\"method\": \"%s\", \"prewarp\": \"%s\", \"prewarp_hz\": %.17g, \"infinity\": %d, "
-               "\"possible\": %s, \"db\": %.17g, \"deg\": %.17g}", i ? ", " : "",
+        printf("%s{\"method\": \"%s\", \"prewarp\": \"%s\", \"prewarp_hz\": %.17g, "
+               "\"infinity\": %d, \"possible\": %s, \"db\": %.17g, \"deg\": %.17g}", i ? ", " : "",
                pw_method_word(c->method), prewarps[c->prewarp], c->prewarp_hz,
                (int)c->zeros_at_infinity, c->possible ? "true" : "false", c->magnitude_error_db,
                c->phase_error_deg);
@@ -122,9 +122,9 @@ static void print_digital(void)
 {
     print_list("poles", digital.z.pole, digital.z.poles);
     print_list("zeros", digital.z.zero, digital.z.zeros);
-    printf("\"factor\": \"%.21Lg\", \"method\": \"%s\", \"prewarp\": \"%s\", \"prewarp_hz\": %.17g, "
-           "\"matched\": %s, \"match_hz\": %.17g, ", digital.z.factor, pw_method_word(digital.method),
-           prewarps[digital.prewarp], digital.prewarp_hz, digital.gain_matched ? "true" : "false",
+    printf("\"factor\": \"%.21Lg\", \"method\": \"%s\", \"prewarp\": \"%s\", "
+           "\"prewarp_hz\": %.17g, \"matched\": %s, \"match_hz\": %.17g, ", digital.z.factor,
+           pw_method_word(digital.method), prewarps[digital.prewarp], digital.prewarp_hz, digital.gain_matched ? "true" : "false",
            digital.match_gain_hz);
     print_sections("listed", true);
     print_sections("sections", false);
