@@ -1,0 +1,91 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+#include "verbs/analysis.h"
+
+#include <stdlib.h>
+#include <string.h>
+
+#include "base/files.h"
+#include "report/judge.h"
+#include "report/response.h"
+#include "stagefile/read.h"
+#include "target/cost.h"
+
+#define LARGEST_STAGE_FILE (1 << 20)
+
+pw_status pw_analysis_tell(const pw_call *call, pw_analysis *analysis, pw_status status)
+{
+    pw_messages_print(&analysis->messages, stderr, call->quiet);
+    return status;
+}
+
+pw_status pw_analysis_read(const pw_call *call, pw_analysis *analysis)
+{
+    pw_text yaml = {0};
+    analysis->messages.file = strcmp(call->stage, "-") ? call->stage : "stdin";
+    pw_status status = pw_file_read(call->stage, LARGEST_STAGE_FILE, &yaml);
+    if (!status) {
+        const char **sets = pw_take((size_t)(call->sets + 1) * sizeof *sets);
+        int n = call->sets;
+        if (n) memcpy(sets, call->set, (size_t)n * sizeof *sets);
+        if (call->target)
+            sets[n++] = pw_arena_print(&analysis->stage.arena, "target=%s", call->target);
+        status = pw_stage_read(&yaml, sets, n, &analysis->stage, &analysis->messages);
+        free(sets);
+    }
+    pw_text_free(&yaml);
+    return pw_analysis_tell(call, analysis, status);
+}
+
+pw_status pw_analysis_model(const pw_call *call, pw_analysis *analysis)
+{
+    analysis->results.stage = &analysis->stage;
+    pw_status status = pw_analog_build(&analysis->stage.analog, &analysis->results.analog, &analysis->messages);
+    return pw_analysis_tell(call, analysis, status);
+}
+
+static pw_status realise(pw_analysis *analysis)
+{
+    const pw_stage *stage = &analysis->stage;
+    pw_results *r = &analysis->results;
+    pw_status status = pw_target_read(stage->target, stage->target_at, &r->target, &analysis->messages);
+    if (!status) status = pw_discretise(stage, &r->analog, &r->digital, &analysis->messages);
+    if (!status)
+        status = pw_realise(stage, &r->analog, &r->digital, &r->target, &r->realisation, &analysis->messages);
+    return status;
+}
+
+pw_status pw_analysis_run(const pw_call *call, pw_analysis *analysis)
+{
+    pw_status status = pw_analysis_read(call, analysis);
+    if (!status) status = pw_analysis_model(call, analysis);
+    if (!status) status = pw_analysis_tell(call, analysis, realise(analysis));
+    if (status) return status;
+    pw_results *r = &analysis->results;
+    pw_response_analyse(&analysis->stage, &r->analog, &r->digital, &r->realisation, &r->response);
+    pw_cost_estimate(&analysis->stage, &r->realisation, &r->target, &r->cost);
+    pw_judge(r);
+    return PW_OK;
+}
+
+const char *pw_analysis_directory(const pw_call *call, pw_analysis *analysis)
+{
+    if (call->directory) return call->directory;
+    return pw_arena_print(&analysis->stage.arena, "%s.out", analysis->stage.name);
+}
+
+pw_status pw_analysis_verdict(const pw_analysis *analysis)
+{
+    return analysis->results.met ? PW_OK : PW_NOT_MET;
+}
+
+void pw_analysis_free(pw_analysis *analysis)
+{
+    pw_target_free(&analysis->results.target);
+    pw_messages_free(&analysis->messages);
+    pw_stage_free(&analysis->stage);
+}
+
+void pw_say(const pw_text *text)
+{
+    fwrite(pw_text_string(text), 1, text->size, stdout);
+}
