@@ -82,6 +82,11 @@ deps:                            ## installs the Debian packages that are missin
 	  $$sudo apt-get update -q && \
 	  $$sudo env DEBIAN_FRONTEND=noninteractive apt-get install -y -q --no-install-recommends $$missing; fi
 
+demo: all                        ## builds a shipped example and says where to look
+	build/polewright build examples/winch-current/stage.yaml -o build/demo
+	@echo; echo "Look at build/demo/report.html in a browser, at build/demo/winch_current.h for the interface,"; \
+	echo "and at examples/README.md for what to do next."
+
 # ---- Tests ----
 
 tests: $(UNIT_BIN) $(PROBE_BIN)
@@ -103,6 +108,35 @@ check-all: all                   ## the tests and every target in full
 sizes: all                       ## the size of the program and of each runtime file
 	@size build/polewright; for f in runtime/*.c; do \
 	  $(CC) -std=c99 -Os -Iruntime -Iinclude -c -o $(OUT)/size.o $$f && size $(OUT)/size.o | tail -n 1; done
+
+# ---- Installing ----
+
+SHARE = $(DESTDIR)$(PREFIX)/share
+DOCS := $(OUT)/documents
+
+$(OUT)/make-documents: $(OUT)/generator/documents.o $(OBJECTS)
+	$(CC) $(CFLAGS) -o $@ $^ $(LDLIBS)
+
+documents: $(OUT)/make-documents ## build/release/documents: manual pages, completions, schema, made from the tables
+	@mkdir -p $(DOCS)
+	$(OUT)/make-documents $(DOCS)
+
+install: all documents           ## installs under PREFIX (default /usr/local), below DESTDIR where given
+	install -D -m 755 build/polewright $(DESTDIR)$(PREFIX)/bin/polewright
+	install -d $(SHARE)/polewright/runtime $(SHARE)/polewright/include
+	install -m 644 runtime/*.[ch] $(SHARE)/polewright/runtime/
+	cp -R include/polewright $(SHARE)/polewright/include/
+	cp -R targets $(SHARE)/polewright/
+	install -m 644 $(DOCS)/polewright-stage.schema.json $(SHARE)/polewright/
+	install -D -m 644 $(DOCS)/polewright.1 $(SHARE)/man/man1/polewright.1
+	install -D -m 644 $(DOCS)/polewright-stage.5 $(SHARE)/man/man5/polewright-stage.5
+	install -D -m 644 $(DOCS)/polewright.bash $(SHARE)/bash-completion/completions/polewright
+	install -D -m 644 $(DOCS)/_polewright $(SHARE)/zsh/site-functions/_polewright
+
+uninstall:                       ## removes what install put there
+	rm -f $(DESTDIR)$(PREFIX)/bin/polewright $(SHARE)/man/man1/polewright.1 $(SHARE)/man/man5/polewright-stage.5 \
+	  $(SHARE)/bash-completion/completions/polewright $(SHARE)/zsh/site-functions/_polewright
+	rm -rf $(SHARE)/polewright
 
 # ---- Housekeeping ----
 

@@ -11,41 +11,50 @@
 #include "base/arena.h"
 #include "base/nearest.h"
 
+/* The order of pw_common_options, from which getopt's codes follow. */
 enum { OPTION_SET = 256, OPTION_TARGET, OPTION_JSON, OPTION_QUIET, OPTION_VERBOSE, OPTION_COLOR,
        OPTION_HELP, OPTION_VERSION, OPTION_EXTRA };
 
-static const struct option common[] = {
-    {"set", required_argument, NULL, OPTION_SET},
-    {"target", required_argument, NULL, OPTION_TARGET},
-    {"json", no_argument, NULL, OPTION_JSON},
-    {"quiet", no_argument, NULL, OPTION_QUIET},
-    {"verbose", no_argument, NULL, OPTION_VERBOSE},
-    {"color", required_argument, NULL, OPTION_COLOR},
-    {"help", no_argument, NULL, OPTION_HELP},
-    {"version", no_argument, NULL, OPTION_VERSION},
+const pw_option pw_common_options[] = {
+    {"set", "PATH=VALUE", "override one value of the stage file; repeatable"},
+    {"target", "NAME", "the part that the C is for (see: polewright targets)"},
+    {"json", NULL, "the report as JSON on standard output, nothing else there"},
+    {"quiet", NULL, "print errors only"},
+    {"verbose", NULL, "print the full report"},
+    {"color", "WHEN", "auto, always or never"},
+    {"help", NULL, "print how the verb is used"},
+    {"version", NULL, "print the version"},
+    {NULL, NULL, NULL},
 };
-#define COMMON ((int)(sizeof common / sizeof common[0]))
+#define COMMON (OPTION_EXTRA - OPTION_SET)
+
+const char pw_exit_statuses[] =
+    "0 done and every limit met; 1 done, and some limit is not met; 2 the command line or the\n"
+    "stage file is wrong; 3 the work could not be done";
+
+static void print_options(const pw_option *option)
+{
+    for (const pw_option *o = option; o && o->name; o++) {
+        char left[64];
+        snprintf(left, sizeof left, "--%s %s", o->name, o->argument ? o->argument : "");
+        printf("  %-22s %s\n", left, o->help);
+    }
+}
 
 static void print_common_options(void)
 {
     puts("Options for every verb:\n"
-         "  -o DIR                    where files go (default ./<stage>.out)\n"
-         "  --set PATH=VALUE          override one value of the stage file; repeatable\n"
-         "  --target NAME             the part the C is for (see: polewright targets)\n"
-         "  --json                    the report as JSON on standard output, nothing else there\n"
-         "  --quiet, --verbose        less, more on the terminal\n"
-         "  --color auto|always|never\n"
-         "  --help, --version\n"
-         "\n"
-         "Exit status: 0 done and every limit met; 1 done, some limit not met; 2 the command line or\n"
-         "the stage file is wrong; 3 the work could not be done.");
+         "  -o DIR                 where files go (default ./<stage>.out)");
+    print_options(pw_common_options);
+    printf("\nExit status: %s.\n", pw_exit_statuses);
 }
 
-static void print_help(const pw_verb *const *verbs, int n)
+static void print_help(void)
 {
     puts("Usage: polewright VERB STAGE.yaml [options]\n\n"
          "Turns a described analog stage into C for a microcontroller and proves what the C does.\n\nVerbs:");
-    for (int i = 0; i < n; i++) printf("  %-10s %s\n", verbs[i]->name, verbs[i]->summary);
+    for (int i = 0; i < pw_verb_count; i++)
+        printf("  %-10s %s\n", pw_verbs[i]->name, pw_verbs[i]->summary);
     puts("\nSTAGE.yaml may be -, for standard input. 'polewright VERB --help' shows a verb's own options.\n");
     print_common_options();
     puts("\nExamples:\n  polewright show stage.yaml\n  polewright build stage.yaml -o out\n"
@@ -57,11 +66,7 @@ static void print_verb_help(const pw_verb *verb)
     printf("Usage: polewright %s %s [options]\n\n%s\n", verb->name,
            verb->needs_stage ? "STAGE.yaml" : "[STAGE.yaml]", verb->summary);
     if (verb->option) puts("\nOptions of this verb:");
-    for (const pw_option *o = verb->option; o && o->name; o++) {
-        char left[64];
-        snprintf(left, sizeof left, "--%s %s", o->name, o->argument ? o->argument : "");
-        printf("  %-25s %s\n", left, o->help);
-    }
+    print_options(verb->option);
     puts("");
     print_common_options();
     if (verb->examples) printf("\nExamples:\n%s", verb->examples);
@@ -75,13 +80,18 @@ static pw_status wrong(const char *what, const char *word, const char *nearest)
     return PW_WRONG;
 }
 
+static struct option as_getopt(const pw_option *o, int code)
+{
+    return (struct option){o->name, o->argument ? required_argument : no_argument, NULL, code};
+}
+
 static int collect_options(const pw_verb *verb, struct option *all)
 {
-    int n = COMMON;
-    memcpy(all, common, sizeof common);
+    int n = 0;
+    for (const pw_option *o = pw_common_options; o->name; o++, n++)
+        all[n] = as_getopt(o, OPTION_SET + n);
     for (const pw_option *o = verb->option; o && o->name; o++, n++)
-        all[n] = (struct option){o->name, o->argument ? required_argument : no_argument, NULL,
-                                 OPTION_EXTRA + (n - COMMON)};
+        all[n] = as_getopt(o, OPTION_SET + n);
     all[n] = (struct option){0};
     return n;
 }
@@ -94,6 +104,15 @@ static pw_status unknown_option(const char *word, const struct option *all, int 
     const char *near = strncmp(word, "--", 2) ? NULL : pw_nearest(word + 2, names, n);
     if (near) snprintf(shown, sizeof shown, "--%s", near);
     return wrong("unknown option", word, near ? shown : NULL);
+}
+
+/* getopt_long leaves in optopt the letter of an unknown short option, or the code of a flag that
+ * was given a value. */
+static pw_status refused_option(const char *word, const struct option *all, int n)
+{
+    char letter[3] = {'-', (char)optopt, 0};
+    if (optopt >= OPTION_SET) return wrong("a value was given to the flag", word, NULL);
+    return unknown_option(optopt ? letter : word, all, n);
 }
 
 static pw_status take_color(pw_call *call, const char *word)
@@ -113,11 +132,10 @@ static pw_status take_options(pw_call *call, int argc, char **argv, int *finishe
     opterr = 0;
     optind = 1;
     for (;;) {
-        int at = optind;
         int c = getopt_long(argc, argv, ":o:", all, NULL);
         if (c == -1) break;
         if (c == ':') return wrong("a value is missing after", argv[optind - 1], NULL);
-        if (c == '?') return unknown_option(argv[optopt && at < argc && argv[at][0] != '-' ? optind - 1 : at], all, n);
+        if (c == '?') return refused_option(argv[optind - 1], all, n);
         if (c >= OPTION_EXTRA) call->extra[c - OPTION_EXTRA] = optarg ? optarg : "";
         else if (c == 'o') call->directory = optarg;
         else if (c == OPTION_SET) {
@@ -152,14 +170,14 @@ static pw_status take_options(pw_call *call, int argc, char **argv, int *finishe
     return PW_OK;
 }
 
-static const pw_verb *find_verb(const pw_verb *const *verbs, int n, const char *word)
+static const pw_verb *find_verb(const char *word)
 {
     const char *names[32];
-    for (int i = 0; i < n; i++) {
-        if (!strcmp(verbs[i]->name, word)) return verbs[i];
-        names[i] = verbs[i]->name;
+    for (int i = 0; i < pw_verb_count; i++) {
+        if (!strcmp(pw_verbs[i]->name, word)) return pw_verbs[i];
+        names[i] = pw_verbs[i]->name;
     }
-    (void)wrong("unknown verb", word, pw_nearest(word, names, n));
+    (void)wrong("unknown verb", word, pw_nearest(word, names, pw_verb_count));
     return NULL;
 }
 
@@ -173,21 +191,21 @@ static pw_status finish(pw_status status)
     return status;
 }
 
-int pw_run(const pw_verb *const *verbs, int n, int argc, char **argv)
+int pw_run(int argc, char **argv)
 {
     if (argc < 2 || !strcmp(argv[1], "--help") || !strcmp(argv[1], "help")) {
         if (argc < 2) {
             fputs("polewright: a verb is missing; try: polewright --help\n", stderr);
             return PW_WRONG;
         }
-        print_help(verbs, n);
+        print_help();
         return finish(PW_OK);
     }
     if (!strcmp(argv[1], "--version")) {
         puts("polewright " PW_VERSION);
         return finish(PW_OK);
     }
-    pw_call call = {.verb = find_verb(verbs, n, argv[1])};
+    pw_call call = {.verb = find_verb(argv[1])};
     if (!call.verb) return PW_WRONG;
     call.color = isatty(STDOUT_FILENO) && !getenv("NO_COLOR");
     int finished = 0;

@@ -36,9 +36,17 @@ typedef struct pw_verb {
     const char *examples;        /* for --help, whole lines */
 } pw_verb;
 
-/* Reads the command line, runs the verb, checks that standard output took everything. */
-int pw_run(const pw_verb *const *verbs, int n, int argc, char **argv);
+/* The options that every verb takes, ended by a null name, and what the exit statuses mean. */
+extern const pw_option pw_common_options[];
+extern const char pw_exit_statuses[];
 
-extern const pw_verb pw_verb_build, pw_verb_show, pw_verb_check, pw_verb_vectors, pw_verb_targets;
+/* The verbs in the order of the help, and how many. */
+extern const pw_verb *const pw_verbs[];
+extern const int pw_verb_count;
+
+/* Reads the command line, runs the verb, checks that standard output took everything. */
+int pw_run(int argc, char **argv);
+
+extern const pw_verb pw_verb_build, pw_verb_show, pw_verb_check, pw_verb_vectors, pw_verb_targets, pw_verb_schema;
 
 #endif
