@@ -8,6 +8,9 @@ VARIANT ?= release
 CC      := gcc
 PYTHON  := /usr/bin/python3
 JOBS    ?= 2
+V       ?= 0
+Q_0     := @
+Q       := $(Q_$(V))
 
 # ---- Packages that the program, its tests and its targets need (Debian 12) ----
 
@@ -55,19 +58,23 @@ debug san release:               ## build/debug, build/san, build/release: a var
 	$(MAKE) VARIANT=$@ build/$@/polewright
 
 $(OUT)/polewright: $(MAIN) $(OBJECTS)
-	$(CC) $(CFLAGS) -o $@ $^ $(LDLIBS)
+	@echo "  link    $@"
+	$(Q)$(CC) $(CFLAGS) -o $@ $^ $(LDLIBS)
 
 $(OUT)/%.o: %.c Makefile
 	@mkdir -p $(@D)
-	$(CC) $(CFLAGS) -MMD -MP -c -o $@ $<
+	@echo "  compile $<"
+	$(Q)$(CC) $(CFLAGS) -MMD -MP -c -o $@ $<
 
 $(OUT)/unit/%: tests/unit/%.c $(OBJECTS)
 	@mkdir -p $(@D)
-	$(CC) $(CFLAGS) -MMD -MP -o $@ $< $(OBJECTS) -lcmocka $(LDLIBS)
+	@echo "  build   $@"
+	$(Q)$(CC) $(CFLAGS) -MMD -MP -o $@ $< $(OBJECTS) -lcmocka $(LDLIBS)
 
 $(OUT)/outside/%: tests/outside/%.c $(OBJECTS)
 	@mkdir -p $(@D)
-	$(CC) $(CFLAGS) -MMD -MP -o $@ $< $(OBJECTS) $(LDLIBS)
+	@echo "  build   $@"
+	$(Q)$(CC) $(CFLAGS) -MMD -MP -o $@ $< $(OBJECTS) $(LDLIBS)
 
 -include $(OBJECTS:.o=.d) $(MAIN:.o=.d) $(UNIT_BIN:=.d) $(PROBE_BIN:=.d)
 
@@ -115,7 +122,8 @@ SHARE = $(DESTDIR)$(PREFIX)/share
 DOCS := $(OUT)/documents
 
 $(OUT)/make-documents: $(OUT)/generator/documents.o $(OBJECTS)
-	$(CC) $(CFLAGS) -o $@ $^ $(LDLIBS)
+	@echo "  link    $@"
+	$(Q)$(CC) $(CFLAGS) -o $@ $^ $(LDLIBS)
 
 documents: $(OUT)/make-documents ## build/release/documents: manual pages, completions, schema, made from the tables
 	@mkdir -p $(DOCS)

@@ -1,34 +1,21 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include <stdio.h>
 
-#include "analog/cell.h"
-#include "analog/circuit_show.h"
 #include "report/show.h"
 #include "verbs/analysis.h"
 
-enum { CELLS, PLOT };
+enum { PLOT };
 
 static const pw_option options[] = {
-    {"cells", NULL, "list the kinds of cell with their parts"},
     {"plot", NULL, "add a small plot of the magnitude"},
     {NULL, NULL, NULL},
 };
 
-static pw_status show_cells(void)
-{
-    pw_text out = {0};
-    pw_cells_list(&out);
-    pw_say(&out);
-    pw_text_free(&out);
-    return PW_OK;
-}
-
 static pw_status run(const pw_call *call)
 {
     static pw_analysis analysis;
-    if (call->extra[CELLS]) return show_cells();
     if (!call->stage) {
-        fputs("polewright: show needs a stage file: polewright show STAGE.yaml (or --cells)\n", stderr);
+        fputs("polewright: show needs a stage file: polewright show STAGE.yaml\n", stderr);
         return PW_WRONG;
     }
     pw_status status = pw_analysis_read(call, &analysis);
@@ -38,7 +25,6 @@ static pw_status run(const pw_call *call)
         if (call->json) pw_show_json(&analysis.stage, &analysis.results.analog, &out);
         else {
             pw_show_text(&analysis.stage, &analysis.results.analog, call->extra[PLOT], call->color, &out);
-            pw_circuit_show(&analysis.stage, &out);
         }
         pw_say(&out);
         pw_text_free(&out);
@@ -52,5 +38,5 @@ const pw_verb pw_verb_show = {
     .run = run, .needs_stage = false, .option = options,
     .examples = "  polewright show stage.yaml\n"
                 "  polewright show stage.yaml --plot\n"
-                "  polewright show --cells\n",
+,
 };
