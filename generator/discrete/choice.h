@@ -19,7 +19,8 @@ void pw_candidate_judge(const pw_stage *stage, const pw_roots *analog, pw_candid
                         const pw_roots *z);
 
 /* Tries every candidate over limits.band; candidates sorted, best first: smallest magnitude error,
- * then phase error. out->z is the best one's, its gain not matched. False where none can be made. */
+ * then phase error. out->z is the best one's, its gain not matched. False where there is
+ * none. */
 bool pw_best(const pw_stage *stage, const pw_roots *analog, pw_digital *out);
 
 /* A warning for the roots above half the rate, at their place, that says what the chosen transform

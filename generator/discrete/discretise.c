@@ -87,7 +87,8 @@ static pw_status no_form(const pw_stage *stage, const pw_roots *analog, pw_messa
     if (analog->zeros == analog->poles) {
         pw_error(messages, stage->transform.method_at,
                  "a stage with as many zeros as poles (%d) has no impulse-invariant form: its "
-                 "impulse response holds an impulse; bilinear, matched-z or step-invariant would do",
+                 "impulse response holds an impulse; bilinear, matched-z or step-invariant would "
+                 "do",
                  analog->poles);
         return PW_WRONG;
     }

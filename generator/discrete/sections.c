@@ -2,7 +2,8 @@
 /* Sections with real coefficients.
  * Method: both groupings of the zeros (grouping.h) are ordered, and the one of less round-off noise
  * stays. The gain is spread so that the peak of the running product moves from 1 to that of the
- * whole in even steps (in decibels); the last section takes what is left, so that the product is exact.
+ * whole in even steps (in decibels); the last section takes what is left, so that the
+ * product is exact.
  * Accuracy: each coefficient from the roots in long double and rounded once; a complex zero pair on
  * the unit circle to rounding has b2 = b0 exactly, since its analog zeros stand on the axis. */
 #include <float.h>

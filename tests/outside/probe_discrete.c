@@ -124,7 +124,8 @@ static void print_digital(void)
     print_list("zeros", digital.z.zero, digital.z.zeros);
     printf("\"factor\": \"%.21Lg\", \"method\": \"%s\", \"prewarp\": \"%s\", "
            "\"prewarp_hz\": %.17g, \"matched\": %s, \"match_hz\": %.17g, ", digital.z.factor,
-           pw_method_word(digital.method), prewarps[digital.prewarp], digital.prewarp_hz, digital.gain_matched ? "true" : "false",
+           pw_method_word(digital.method), prewarps[digital.prewarp], digital.prewarp_hz,
+           digital.gain_matched ? "true" : "false",
            digital.match_gain_hz);
     print_sections("listed", true);
     print_sections("sections", false);
