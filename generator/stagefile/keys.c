@@ -92,7 +92,7 @@ const pw_key pw_keys[] = {
      .example = "{kind: rc-lowpass, R1: 10k, C1: 4n7}", .help = "A textbook circuit by name",
      .take = pw_take_cell},
     {"analog", "cascade", .forms = PW_FORM_LIST, .item_forms = PW_FORM_MAP, .sub = "analog", .least = 1,
-     .most = PW_MAX_ROOTS, .choice = 1, .example = "[{roots: {..}}, {family: {..}}]",
+     .most = PW_MAX_ROOTS, .choice = 1, .example = "[{cell: {kind: rc-lowpass, R1: 10k, C1: 4n7}}, {polynomials: {numerator: [1], denominator: [1e-3, 1]}}]",
      .help = "Several of these in a row, each buffered from the next", .take = pw_take_cascade},
 
     {"roots", "zeros", .forms = PW_FORM_LIST, .item_forms = QUANTITY | PW_FORM_PAIR_TEXT | PW_FORM_MAP,

@@ -42,9 +42,6 @@ const char *pw_dimension_sample(pw_dimension dimension);
 /* The unit as documents print it: "Hz", "dB"; "" for plain numbers. */
 const char *pw_dimension_unit(pw_dimension dimension);
 
-/* A regular expression (ECMA 262) that every text of this dimension matches; for the schema. */
-const char *pw_dimension_pattern(pw_dimension dimension);
-
 /* What a user typed, in quotes, cut to a readable length at a character. Returns buffer. */
 #define PW_SHOWN_ROOM 64
 char *pw_shown(char *buffer, const char *text);

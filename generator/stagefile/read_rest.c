@@ -7,41 +7,10 @@
 #include <string.h>
 
 #include "base/nearest.h"
+#include "stagefile/stage_name.h"
 #include "stagefile/take.h"
 
-#define LONGEST_NAME 48          /* with the longest suffix it stays within C99's 63 characters */
-
 /* ---- the name ---- */
-
-/* C11, C++20 and the alternative spellings of C++. */
-static const char *const keywords[] = {
-    "alignas", "alignof", "and", "and_eq", "asm", "auto", "bitand", "bitor", "bool", "break", "case",
-    "catch", "char", "char16_t", "char32_t", "char8_t", "class", "co_await", "co_return", "co_yield",
-    "compl", "concept", "const", "const_cast", "consteval", "constexpr", "constinit", "continue",
-    "decltype", "default", "delete", "do", "double", "dynamic_cast", "else", "enum", "explicit",
-    "export", "extern", "false", "float", "for", "friend", "goto", "if", "inline", "int", "long",
-    "main", "mutable", "namespace", "new", "noexcept", "not", "not_eq", "nullptr", "operator", "or",
-    "or_eq", "private", "protected", "public", "register", "reinterpret_cast", "requires", "restrict",
-    "return", "short", "signed", "sizeof", "static", "static_assert", "static_cast", "struct",
-    "switch", "template", "this", "thread_local", "throw", "true", "try", "typedef", "typeid",
-    "typename", "typeof", "union", "unsigned", "using", "virtual", "void", "volatile", "wchar_t",
-    "while", "xor", "xor_eq",
-};
-
-/* Why a text cannot be the name of a stage; null where it can. */
-static const char *name_fault(const char *text)
-{
-    for (const char *p = text; *p; p++)
-        if (!isalnum((unsigned char)*p) && *p != '_') return "is not a C identifier";
-    if (isdigit((unsigned char)text[0]) || !*text) return "is not a C identifier";
-    if (text[0] == '_') return "begins with '_', which C keeps for itself";
-    if (strstr(text, "__")) return "holds '__', which C++ keeps for itself";
-    if (!strncmp(text, "pw_", 3)) return "begins with 'pw_', which the runtime uses";
-    if (strlen(text) > LONGEST_NAME) return "is longer than 48 letters";
-    for (size_t i = 0; i < sizeof keywords / sizeof keywords[0]; i++)
-        if (!strcmp(text, keywords[i])) return "is a word of C or C++";
-    return NULL;
-}
 
 void pw_take_stage_name(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
 {
@@ -52,7 +21,7 @@ void pw_take_stage_name(pw_reader *reader, const pw_key *key, const pw_tree *nod
         pw_take_refuse(reader, key, node, NULL);
         return;
     }
-    const char *fault = name_fault(node->text);
+    const char *fault = pw_stage_name_fault(node->text);
     if (!fault) {
         stage->name = node->text;
         return;
