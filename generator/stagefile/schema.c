@@ -68,8 +68,9 @@ static void add_bounds(json_t *number, const pw_key *key)
 static void add_quantity(json_t *any, const pw_key *key)
 {
     pw_text text = {0};
-    bool signless = key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_NEGATIVE;
-    bool nonzero = key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_ZERO;
+    bool decibels = key->dimension == PW_DIM_RATIO;   /* 0 dB is 1, and so on */
+    bool signless = !decibels && (key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_NEGATIVE);
+    bool nonzero = !decibels && (key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_ZERO);
     json_t *number = json_pack("{s:s}", "type", "number");
     add_bounds(number, key);
     json_array_append_new(any, number);
