@@ -105,12 +105,18 @@ static void take_words(pw_kernel *k, const int32_t b[3], const int32_t a[3])
     k->words += 5;
 }
 
+/* Whether the second rounding may be added before the shift of p: (p + h 2^s) >> s = (p >> s) + h. */
+static bool folds(const facts *f)
+{
+    return f->right && f->half && f->right + f->F < 60
+        && f->b_sum * f->full + ldexp((double)f->half, f->right) + (double)f->right_half < 9.2e18;
+}
+
 /* The roundings before the shift, both at once where they fit, as two words of two bits at most. */
 static void plan_wide(pw_kernel *k, const facts *f)
 {
     pw_template_values *v = &k->values;
-    bool fold = f->right && f->half && f->right + f->F < 60
-        && f->b_sum * f->full + ldexp((double)f->half, f->right) + (double)f->right_half < 9.2e18;
+    bool fold = folds(f);
     uint64_t added = (uint64_t)f->right_half + (fold ? (uint64_t)f->half << f->right : 0);
     pw_template_set_number(v, "carry", f->half && !fold);
     pw_template_set_number(v, "far", f->right >= 32 ? f->right - 32 : 0);
@@ -161,6 +167,17 @@ static bool choose_narrow(const facts *f, const pw_target *target, pw_kernel *k)
     return true;
 }
 
+static void plan_any(pw_kernel *k, const facts *f)
+{
+    bool early = k->narrow || folds(f) || (!f->right && !f->left);
+    pw_template_set_number(&k->values, "early", f->right_half + (early ? f->half << f->right : 0));
+    pw_template_set_number(&k->values, "late", early ? 0 : f->half);
+    bool low = f->F > 0 && (!f->q15 || largest(f) < ldexp(1.0, 31 + f->F));
+    pw_template_set_number(&k->values, "low", low);
+    pw_template_set_number(&k->values, "word", k->narrow || low);
+    pw_template_set(&k->values, "signed", k->narrow ? "(int32_t)p" : "p");
+}
+
 bool pw_kernel_form(const pw_realisation *realisation, int section, pw_arena *arena, pw_kernel *out)
 {
     if (!direct(realisation, section)) return false;
@@ -168,10 +185,12 @@ bool pw_kernel_form(const pw_realisation *realisation, int section, pw_arena *ar
     int32_t b[3];
     bool narrow = fits_32(&f);
     fold_left(&f, b);
-    *out = (pw_kernel){.file = "any", .kernel = "direct", .values.arena = arena, .multiple = 1, .clamps = f.clips,
+    *out = (pw_kernel){.file = "any", .kernel = "direct", .values.arena = arena, .multiple = 2, .clamps = f.clips,
                        .narrow = narrow, .why = narrow ? "32-bit sum" : "64-bit sum"};
     set_common(&out->values, &f);
     pw_template_set_number(&out->values, "wide", !narrow);
+    pw_template_set_number(&out->values, "hide", 0);
+    plan_any(out, &f);
     take_words(out, b, f.w->a);
     return true;
 }
@@ -191,7 +210,9 @@ bool pw_kernel_choose(const pw_realisation *realisation, int section, const pw_t
         break;
     default: break;
     }
-    return pw_kernel_form(realisation, section, arena, out);
+    if (!pw_kernel_form(realisation, section, arena, out)) return false;
+    pw_template_set_number(&out->values, "hide", target->instructions != PW_ANY && !out->narrow && f.clips);
+    return true;
 }
 
 pw_status pw_kernel_text(const pw_kernel *kernel, const char *name, const char *form, pw_text *out)
