@@ -5,17 +5,6 @@
 
 #define MAX_INTEGRATORS 2
 
-/* Until the circuit's part of the station is linked in, its descriptions are refused. */
-#pragma weak pw_analog_from_circuit
-#pragma weak pw_analog_from_cell
-
-static pw_status refuse(const pw_analog_spec *spec, const char *kind, pw_messages *messages)
-{
-    pw_error(messages, spec->at, "%s is not supported by this version; "
-             "expected roots, polynomials, family or cascade", kind);
-    return PW_WRONG;
-}
-
 static pw_status check_poles(const pw_roots *part, pw_where at, pw_messages *messages)
 {
     for (int i = 0; i < part->poles; i++)
@@ -56,12 +45,10 @@ static pw_status collect(const pw_analog_spec *spec, pw_roots *out, pw_messages 
     case PW_ANALOG_CASCADE:
         return collect_cascade(spec, out, messages);
     case PW_ANALOG_CIRCUIT:
-        status = pw_analog_from_circuit ? pw_analog_from_circuit(&spec->circuit, out, messages)
-                                        : refuse(spec, "circuit", messages);
+        status = pw_analog_from_circuit(&spec->circuit, out, messages);
         break;
     case PW_ANALOG_CELL:
-        status = pw_analog_from_cell ? pw_analog_from_cell(&spec->cell, out, messages)
-                                     : refuse(spec, "cell", messages);
+        status = pw_analog_from_cell(&spec->cell, out, messages);
         break;
     }
     return status == PW_OK ? check_poles(out, spec->at, messages) : status;

@@ -38,16 +38,9 @@ static void tell_hidden(const pw_net *net, const pw_quad_roots *roots, pw_messag
     }
 }
 
-static pw_status tell_order(const pw_net *net, const pw_quad_roots *roots, pw_messages *messages)
+static pw_status tell_count(const pw_net *net, const pw_quad_roots *roots, pw_messages *messages)
 {
-    if (roots->poles <= PW_MAX_ROOTS && roots->zeros <= PW_MAX_ROOTS) {
-        if (roots->zeros <= roots->poles) return PW_OK;
-        pw_error(messages, net->circuit->at, "the circuit has %d zeros and %d poles, so that its gain "
-                 "grows without end at high frequency; expected no more zeros than poles (add a pole: "
-                 "a resistor in series with a capacitor, or an op-amp with a gain-bandwidth)",
-                 roots->zeros, roots->poles);
-        return PW_WRONG;
-    }
+    if (roots->poles <= PW_MAX_ROOTS && roots->zeros <= PW_MAX_ROOTS) return PW_OK;
     pw_error(messages, net->circuit->at, "the circuit has %d poles and %d zeros; expected at most %d "
              "of each", roots->poles, roots->zeros, PW_MAX_ROOTS);
     return PW_WRONG;
@@ -84,7 +77,7 @@ static pw_status solve(const pw_net *net, pw_roots *out, pw_quad_roots *roots, p
         return PW_FAILED;
     }
     tell_hidden(net, roots, messages);
-    status = tell_order(net, roots, messages);
+    status = tell_count(net, roots, messages);
     if (status) return status;
     if (!pw_quad_roots_round(roots, out)) {
         pw_error(messages, net->circuit->at, "the circuit's gain factor is beyond the numbers; "
