@@ -67,7 +67,7 @@ double pw_gain_place(const pw_roots *analog, const double band_hz[2])
     pw_error_peak top = pw_grid_peak(&grid, analog_level, analog);
     pw_grid_free(&grid);
     double at_zero = analog_level(analog, 0);
-    bool zero_is_as_high = isfinite(at_zero) && fabs(at_zero - top.max) <= 1.15e-4 * top.max;
+    bool zero_is_as_high = isfinite(at_zero) && fabs(at_zero - top.max) <= 1.16e-2 * top.max;
     return zero_is_as_high ? 0 : top.at_hz;
 }
 
