@@ -5,7 +5,10 @@
 #include <string.h>
 
 #include "base/files.h"
+#include "report/judge.h"
+#include "report/response.h"
 #include "stagefile/read.h"
+#include "target/cost.h"
 
 #define LARGEST_STAGE_FILE (1 << 20)
 
@@ -38,6 +41,30 @@ pw_status pw_analysis_model(const pw_call *call, pw_analysis *analysis)
     analysis->results.stage = &analysis->stage;
     pw_status status = pw_analog_build(&analysis->stage.analog, &analysis->results.analog, &analysis->messages);
     return pw_analysis_tell(call, analysis, status);
+}
+
+static pw_status realise(pw_analysis *analysis)
+{
+    const pw_stage *stage = &analysis->stage;
+    pw_results *r = &analysis->results;
+    pw_status status = pw_target_read(stage->target, stage->target_at, &r->target, &analysis->messages);
+    if (!status) status = pw_discretise(stage, &r->analog, &r->digital, &analysis->messages);
+    if (!status)
+        status = pw_realise(stage, &r->analog, &r->digital, &r->target, &r->realisation, &analysis->messages);
+    return status;
+}
+
+pw_status pw_analysis_run(const pw_call *call, pw_analysis *analysis)
+{
+    pw_status status = pw_analysis_read(call, analysis);
+    if (!status) status = pw_analysis_model(call, analysis);
+    if (!status) status = pw_analysis_tell(call, analysis, realise(analysis));
+    if (status) return status;
+    pw_results *r = &analysis->results;
+    pw_response_analyse(&analysis->stage, &r->analog, &r->digital, &r->realisation, &r->response);
+    pw_cost_estimate(&analysis->stage, &r->realisation, &r->target, &r->cost);
+    pw_judge(r);
+    return PW_OK;
 }
 
 const char *pw_analysis_directory(const pw_call *call, pw_analysis *analysis)
