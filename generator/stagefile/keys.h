@@ -47,6 +47,7 @@ struct pw_key {
     double low, high;            /* counts: both included; quantities: high included, 0: none */
     const pw_word *words;
     const char *sub;
+    const char *text;            /* what a text is: "a node"; null: "a text" */
     bool needed;                 /* there is no default */
     int choice;                  /* 1, 2: of the keys of this map with the same number exactly one
                                     stands; 0: no such bond */
@@ -56,7 +57,8 @@ struct pw_key {
     const char *fallback;        /* the default, as if it stood in the file; null: none */
     const char *otherwise;       /* the default in words, where a later step fills it in; or null */
     const char *help;            /* one line, no full stop */
-    const char *example;         /* YAML */
+    const char *example;         /* YAML; of a list: the whole list */
+    const char *item_example;    /* of a list's item; null: a sample of its dimension */
     pw_taker *take;              /* stores the value in the struct of its map .. */
     size_t offset, at;           /* .. here, and its place there (0: nowhere) */
 };
@@ -84,6 +86,9 @@ char *pw_key_path(char *buffer, const pw_key *key);
 
 /* What a key's value must be: "a frequency such as 8 kHz", "one of l1, linf, l2, none". */
 void pw_key_expected(const pw_key *key, pw_text *out);
+
+/* A key that stands for one item of the list that a key is. */
+pw_key pw_key_item(const pw_key *list);
 
 /* ---- words, in the order of their enumerations in stage.h ---- */
 

@@ -41,35 +41,45 @@ static void add_or(pw_text *out, size_t start)
     if (out->size > start) pw_text_add(out, ", or ");
 }
 
-static void add_sample(const pw_key *key, const char *phrase, pw_text *out)
+static void add_sample(pw_text *out, size_t start, const char *phrase, const char *sample)
 {
+    add_or(out, start);
     pw_text_add(out, phrase);
-    if (key->example) pw_text_print(out, " such as %s", key->example);
+    if (sample) pw_text_print(out, " such as %s", sample);
+}
+
+static void add_count(const pw_key *key, pw_text *out, size_t start)
+{
+    add_or(out, start);
+    pw_text_print(out, "a whole number%s from %.0f to ", key->forms & PW_FORM_QUANTITY ? " of bits" : "", key->low);
+    if (key->high < 1e15) pw_text_print(out, "%.0f", key->high);
+    else pw_text_add(out, "2^64 - 1");
 }
 
 void pw_key_expected(const pw_key *key, pw_text *out)
 {
     size_t start = out->size;
+    bool several = key->forms & (PW_FORM_LIST | PW_FORM_PAIR_TEXT);
+    const char *sample = several ? key->item_example : key->example;
+    if (key->forms & PW_FORM_PAIR_TEXT) {
+        add_sample(out, start, "a root", sample);
+        return;
+    }
     if (key->forms & PW_FORM_WORD) add_words(key->words, out);
     if (key->forms & PW_FORM_FLAG) pw_text_add(out, "true or false");
-    if (key->forms & PW_FORM_QUANTITY) {
-        add_or(out, start);
-        add_sample(key, pw_dimension_phrase(key->dimension), out);
-    } else if (key->forms & PW_FORM_COUNT) {
-        add_or(out, start);
-        if (key->high < 1e15) pw_text_print(out, "a whole number from %.0f to %.0f", key->low, key->high);
-        else pw_text_print(out, "a whole number from %.0f to 2^64 - 1", key->low);
-    }
-    if (key->forms & PW_FORM_TEXT) {
-        add_or(out, start);
-        add_sample(key, "a name or a text", out);
-    }
-    if (key->forms & PW_FORM_LIST) {
-        add_or(out, start);
-        add_sample(key, key->forms & PW_FORM_TEXT ? "a list of two" : "a list", out);
-    }
-    if (key->forms & (PW_FORM_MAP | PW_FORM_NAMED)) {
-        add_or(out, start);
-        add_sample(key, "a map", out);
-    }
+    if (key->forms & PW_FORM_COUNT) add_count(key, out, start);
+    else if (key->forms & PW_FORM_QUANTITY)
+        add_sample(out, start, pw_dimension_phrase(key->dimension),
+                   sample ? sample : pw_dimension_sample(key->dimension));
+    if (key->forms & PW_FORM_TEXT) add_sample(out, start, key->text ? key->text : "a text", sample);
+    if (key->forms & PW_FORM_LIST) add_sample(out, start, "a list", key->example);
+    if (key->forms & (PW_FORM_MAP | PW_FORM_NAMED)) add_sample(out, start, "a map", key->example);
+}
+
+pw_key pw_key_item(const pw_key *list)
+{
+    pw_key item = *list;
+    item.forms = list->item_forms;
+    item.example = list->item_example;
+    return item;
 }

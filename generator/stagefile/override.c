@@ -5,12 +5,16 @@
 #include <string.h>
 
 /* Where the value of one component stands in its parent; null, told, where it cannot stand. */
-static pw_tree **slot(pw_arena *arena, pw_tree *parent, const char *name, pw_where at, pw_messages *messages)
+static pw_tree **slot(pw_arena *arena, pw_tree *parent, const char *name, bool last, pw_where at,
+                      pw_messages *messages)
 {
     if (parent->kind == PW_TREE_MAP) {
         if (!pw_tree_find(parent, name)) pw_tree_put(arena, parent, name, at, pw_tree_map(arena, at));
         for (int i = 0; i < parent->count; i++)
-            if (!strcmp(parent->key[i], name)) return &parent->item[i];
+            if (!strcmp(parent->key[i], name)) {
+                if (last) parent->key_at[i] = at;
+                return &parent->item[i];
+            }
     }
     if (parent->kind == PW_TREE_LIST) {
         char *end;
@@ -36,19 +40,11 @@ static pw_tree **walk(pw_arena *arena, pw_tree *root, char *path, pw_where at, p
                      "transform.method=matched-z");
             return NULL;
         }
-        here = slot(arena, here ? *here : root, name, at, messages);
+        here = slot(arena, here ? *here : root, name, !dot, at, messages);
         if (!here) return NULL;
         if (dot && pw_tree_is_empty(*here)) *here = pw_tree_map(arena, at);
     }
     return here;
-}
-
-static void move_key(pw_tree *root, const pw_tree *value, pw_where at)
-{
-    for (int i = 0; i < root->count; i++) {
-        if (root->item[i] == value && root->kind == PW_TREE_MAP) root->key_at[i] = at;
-        move_key(root->item[i], value, at);
-    }
 }
 
 void pw_override(const char *set, pw_where at, pw_arena *arena, pw_tree *root, pw_messages *messages)
@@ -65,5 +61,4 @@ void pw_override(const char *set, pw_where at, pw_arena *arena, pw_tree *root, p
     pw_tree **place = walk(arena, root, path, at, messages);
     if (!place) return;
     *place = value;
-    move_key(root, value, at);
 }

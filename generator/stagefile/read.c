@@ -36,6 +36,8 @@ pw_status pw_stage_read(const pw_text *yaml, const char *const *sets, int n_sets
 {
     *out = (pw_stage){.name = "", .about = "", .target = "host"};
     int before = messages->errors;
+    pw_port_default(&out->input);
+    pw_port_default(&out->output);
     out->file = messages->file;
     messages->sets = sets;
     messages->n_sets = n_sets;
@@ -46,7 +48,7 @@ pw_status pw_stage_read(const pw_text *yaml, const char *const *sets, int n_sets
         reader.taken = pw_arena_take(&out->arena, (size_t)(pw_key_count + 1) * sizeof *reader.taken);
         out->taken = reader.taken;
         pw_take_map(&reader, "", root, out);
-        pw_stage_check(&reader, messages->errors == before);
+        pw_stage_check(&reader);
     }
     return messages->errors > before ? PW_WRONG : PW_OK;
 }

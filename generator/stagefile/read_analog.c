@@ -32,15 +32,16 @@ void pw_take_coefficients(pw_reader *reader, const pw_key *key, const pw_tree *n
     bool numerator = !strcmp(key->name, "numerator"), good = true, zero = true;
     pw_take_place(key, node, base, 0);
     if (!pw_take_is_list(reader, key, node)) return;
+    const pw_key item = pw_key_item(key);
     double *list = pw_arena_take(reader->arena, (size_t)node->count * sizeof *list);
     for (int i = 0; i < node->count; i++) {
-        good &= pw_take_value(reader, key, node->item[i], &list[i]);
+        good &= pw_take_value(reader, &item, node->item[i], &list[i]);
         zero &= list[i] == 0;
     }
     if (!good) return;
     if (zero) pw_take_refuse(reader, key, node, "every coefficient is 0");
     else if (list[0] == 0)
-        pw_take_refuse(reader, key, node->item[0], "the coefficient of the highest power is 0; leave it out");
+        pw_take_refuse(reader, &item, node->item[0], "the coefficient of the highest power is 0 (leave it out)");
     *(numerator ? &spec->numerator : &spec->denominator) = list;
     *(numerator ? &spec->numerators : &spec->denominators) = node->count;
 }
@@ -85,10 +86,11 @@ void pw_take_cascade(pw_reader *reader, const pw_key *key, const pw_tree *node, 
     if (!pw_take_is_list(reader, key, node)) return;
     spec->member = pw_arena_take(reader->arena, (size_t)node->count * sizeof *spec->member);
     spec->members = node->count;
+    const pw_key item = pw_key_item(key);
     for (int i = 0; i < node->count; i++) {
         spec->member[i].at = node->item[i]->at;
         if (node->item[i]->kind == PW_TREE_MAP)
             pw_take_map(reader, key->sub, node->item[i], &spec->member[i]);
-        else pw_take_refuse(reader, key, node->item[i], NULL);
+        else pw_take_refuse(reader, &item, node->item[i], NULL);
     }
 }

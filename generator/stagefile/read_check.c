@@ -1,6 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What only the whole file can show: frequencies against the rate, one side of a signal against
- * itself, structures against formats. */
+/* What only the whole file can show: frequencies against the rate, structures against formats. */
 #include <math.h>
 #include <string.h>
 
@@ -30,43 +29,13 @@ static void check_frequencies(pw_reader *reader)
         check_below_half(reader, "limits.band", stage->limits.band_hz[i], stage->limits.band_at[i]);
 }
 
-/* ---- one side of the signal ---- */
-
-static void check_rails(pw_reader *reader, const pw_port *port)
+/* A file keeps its prewarp while --set tries other methods: no more than a warning. */
+static void check_transform(pw_reader *reader)
 {
-    if (!port->has_rails) return;
-    if (port->rail[0] > port->zero || port->rail[1] < port->zero)
-        pw_error(reader->messages, port->at, "signal.output.rails: zero, %g V, is not between the rails, "
-                 "%g V and %g V; expected rails around it", port->zero, port->rail[0], port->rail[1]);
-    if (port->rail[1] <= port->low || port->rail[0] >= port->high)
-        pw_error(reader->messages, port->at, "signal.output.rails: %g V to %g V lie outside the span, %g V "
-                 "to %g V; expected rails within it", port->rail[0], port->rail[1], port->low, port->high);
-}
-
-static void check_port(pw_reader *reader, const char *side, pw_port *port, bool sound)
-{
-    port->full_scale = 1;
-    if (!port->given) {
-        port->low = -1;
-        port->high = 1;
-        port->peak = 1;
-        return;
-    }
-    if (!sound) return;
-    if (!(port->low < port->high))
-        pw_error(reader->messages, port->at, "signal.%s: high, %g, is not above low, %g; expected a span such "
-                 "as {low: 0 V, high: 3.3 V}", side, port->high, port->low);
-    else if (port->zero < port->low || port->zero > port->high)
-        pw_error(reader->messages, port->at, "signal.%s: zero, %g, is outside low to high, %g to %g; expected "
-                 "it between them", side, port->zero, port->low, port->high);
-    else {
-        port->full_scale = fmax(port->high - port->zero, port->zero - port->low);
-        if (port->peak == 0) port->peak = port->full_scale;
-        if (port->peak > port->full_scale)
-            pw_error(reader->messages, port->at, "signal.%s.peak: %g is above full scale, %g; expected less, "
-                     "or a larger span", side, port->peak, port->full_scale);
-        check_rails(reader, port);
-    }
+    const pw_transform *t = &reader->stage->transform;
+    if (t->prewarp != PW_PREWARP_DEFAULT && t->method != PW_BILINEAR && t->method != PW_BEST)
+        pw_warning(reader->messages, t->prewarp_at, "transform.prewarp has no meaning with %s; it goes with "
+                   "method: bilinear or best", pw_method_word(t->method));
 }
 
 /* ---- formats ---- */
@@ -110,12 +79,11 @@ static void fill_signals(pw_vectors_spec *vectors)
     for (int i = 0; i < PW_SIGNALS; i++) vectors->want[i] = true;
 }
 
-void pw_stage_check(pw_reader *reader, bool sound)
+void pw_stage_check(pw_reader *reader)
 {
     pw_stage *stage = reader->stage;
     check_frequencies(reader);
-    check_port(reader, "input", &stage->input, sound);
-    check_port(reader, "output", &stage->output, sound);
+    check_transform(reader);
     check_structure(reader);
     check_coefficient(reader);
     if (stage->limits.cycles.given && !stage->target_given)

@@ -4,9 +4,16 @@
 #include <stdio.h>
 #include <string.h>
 
+#include "base/nearest.h"
 #include "stagefile/take.h"
 
 /* ---- nodes ---- */
+
+/* One word, not too long to print. */
+static bool is_name(const char *text)
+{
+    return *text && !strpbrk(text, " \t\r\n") && strlen(text) < 64;
+}
 
 static const char *read_name(pw_reader *reader, const pw_key *key, const pw_tree *node)
 {
@@ -14,7 +21,7 @@ static const char *read_name(pw_reader *reader, const pw_key *key, const pw_tree
         pw_take_refuse(reader, key, node, NULL);
         return NULL;
     }
-    if (*node->text && !strpbrk(node->text, " \t\r\n") && strlen(node->text) < 64) return node->text;
+    if (is_name(node->text)) return node->text;
     char what[96], shown[PW_SHOWN_ROOM];
     snprintf(what, sizeof what, "%s is no name (one word, up to 63 bytes)", pw_shown(shown, node->text));
     pw_take_refuse(reader, key, node, what);
@@ -31,8 +38,9 @@ void pw_take_node(pw_reader *reader, const pw_key *key, const pw_tree *node, voi
 void pw_take_nodes(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
 {
     if (!pw_take_is_list(reader, key, node)) return;
+    const pw_key item = pw_key_item(key);
     for (int i = 0; i < 2; i++) {
-        const char *name = read_name(reader, key, node->item[i]);
+        const char *name = read_name(reader, &item, node->item[i]);
         pw_take_place(key, node->item[i], base, i);
         if (name) ((const char **)((char *)base + key->offset))[i] = name;
     }
@@ -96,7 +104,10 @@ void pw_take_parts(pw_reader *reader, const pw_key *key, const pw_tree *node, vo
         pw_part *part = &circuit->part[i];
         part->name = node->key[i];
         part->at = node->key_at[i];
-        if (node->item[i]->kind == PW_TREE_MAP) pw_take_map(reader, key->sub, node->item[i], part);
+        if (!is_name(part->name))
+            pw_error(reader->messages, part->at, "a part's name is one word of up to 63 bytes; expected one "
+                     "such as R1");
+        else if (node->item[i]->kind == PW_TREE_MAP) pw_take_map(reader, key->sub, node->item[i], part);
         else
             pw_error(reader->messages, node->item[i]->at, "the part %.40s %s %s; expected a map such as "
                      "{resistor: 22k, between: [in, out]}", part->name,
@@ -147,6 +158,17 @@ static pw_key value_key(const char *name)
     return key;
 }
 
+/* A name that is a mistyped key of the table rather than a part. */
+static bool is_mistyped_kind(pw_reader *reader, const pw_tree *cell, int index)
+{
+    static const char *const kind = "kind";
+    if (pw_tree_find(cell, kind) || !pw_nearest(cell->key[index], &kind, 1)) return false;
+    char shown[PW_SHOWN_ROOM];
+    pw_error(reader->messages, cell->key_at[index], "unknown key %s in cell; did you mean 'kind'?",
+             pw_shown(shown, cell->key[index]));
+    return true;
+}
+
 static void read_cell_value(pw_reader *reader, const char *name, const pw_tree *node, pw_cell_value *out)
 {
     pw_cell_form form = {0};
@@ -174,6 +196,6 @@ void pw_take_cell(pw_reader *reader, const pw_key *key, const pw_tree *node, voi
     pw_take_map(reader, key->sub, node, cell);
     cell->value = pw_arena_take(reader->arena, (size_t)node->count * sizeof *cell->value);
     for (int i = 0; i < node->count; i++)
-        if (strcmp(node->key[i], "kind"))
+        if (strcmp(node->key[i], "kind") && !is_mistyped_kind(reader, node, i))
             read_cell_value(reader, node->key[i], node->item[i], &cell->value[cell->values++]);
 }

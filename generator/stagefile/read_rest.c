@@ -1,12 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Takers of single keys that are not like the others: name, target, transform, arithmetic, signal,
+/* Takers of single keys that are not like the others: name, target, transform, arithmetic,
  * limits, vectors. */
 #include <ctype.h>
 #include <stdio.h>
-#include <stdlib.h>
 #include <string.h>
 
-#include "base/nearest.h"
 #include "stagefile/stage_name.h"
 #include "stagefile/take.h"
 
@@ -75,24 +73,6 @@ void pw_take_coefficient(pw_reader *reader, const pw_key *key, const pw_tree *no
     }
 }
 
-/* ---- signal ---- */
-
-void pw_take_port(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
-{
-    pw_port *port = (pw_port *)((char *)base + key->offset);
-    port->at = node->at;
-    port->given = node->kind == PW_TREE_MAP;
-    if (port->given) pw_take_map(reader, key->sub, node, port);
-    else pw_take_refuse(reader, key, node, NULL);
-}
-
-void pw_take_rails(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
-{
-    int before = reader->messages->errors;
-    pw_take_pair(reader, key, node, base);
-    ((pw_port *)base)->has_rails = reader->messages->errors == before;
-}
-
 /* ---- limits, vectors ---- */
 
 void pw_take_band(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
@@ -112,8 +92,9 @@ void pw_take_signals(pw_reader *reader, const pw_key *key, const pw_tree *node, 
 {
     bool *want = (bool *)((char *)base + key->offset);
     if (!pw_take_is_list(reader, key, node)) return;
+    const pw_key item = pw_key_item(key);
     for (int i = 0; i < node->count; i++) {
-        int index = pw_take_index(reader, key, node->item[i]);
+        int index = pw_take_index(reader, &item, node->item[i]);
         if (index >= 0 && want[index])
             pw_error(reader->messages, node->item[i]->at, "vectors.signals: '%s' stands twice; expected it once",
                      key->words[index].word);

@@ -158,8 +158,7 @@ static bool read_root(pw_reader *reader, const pw_key *key, const pw_tree *node,
         return true;
     }
     if (node->kind == PW_TREE_SCALAR && looks_complex(node->text)) {
-        pw_take_refuse(reader, key, node, "a complex root without its conjugate; write both as one, "
-                       "-222 \u00b1 333j");
+        pw_take_refuse(reader, key, node, "a complex root without its conjugate");
         return false;
     }
     if (!pw_take_value(reader, key, node, &real)) return false;
@@ -173,8 +172,9 @@ void pw_take_root_list(pw_reader *reader, const pw_key *key, const pw_tree *node
     int n = 0;
     reader->poles = !strcmp(key->name, "poles");
     if (!pw_take_is_list(reader, key, node)) return;
+    const pw_key item = pw_key_item(key);
     pw_root *list = pw_arena_take(reader->arena, (size_t)(node->count + 1) * sizeof *list);
-    for (int i = 0; i < node->count; i++) n += read_root(reader, key, node->item[i], &list[n]);
+    for (int i = 0; i < node->count; i++) n += read_root(reader, &item, node->item[i], &list[n]);
     *(reader->poles ? &spec->pole : &spec->zero) = list;
     *(reader->poles ? &spec->poles : &spec->zeros) = n;
 }

@@ -10,6 +10,8 @@
 
 #include "base/nearest.h"
 
+#define LONGEST_TEXT 400
+
 _Static_assert(sizeof(pw_method) == sizeof(int), "enumerations are stored as int");
 
 static void *field(const pw_key *key, void *base) { return (char *)base + key->offset; }
@@ -58,7 +60,8 @@ static const char *range_fault(const pw_key *key, double value)
     if (key->range == PW_RANGE_POSITIVE && !(value > 0)) return "is not above 0";
     if (key->range == PW_RANGE_NOT_NEGATIVE && !(value >= 0)) return "is below 0";
     if (key->range == PW_RANGE_NOT_ZERO && value == 0) return "is 0";
-    if (key->high > 0 && (key->forms & PW_FORM_COUNT) == 0 && value > key->high) return "is impossibly large";
+    if (key->high > 0 && (key->forms & PW_FORM_COUNT) == 0 && value > key->high)
+        return key->dimension == PW_DIM_FRACTION ? "is more than 90 %" : "is impossibly large";
     return NULL;
 }
 
@@ -103,8 +106,9 @@ bool pw_take_is_list(pw_reader *reader, const pw_key *key, const pw_tree *node)
         return false;
     }
     if (node->count >= key->least && node->count <= key->most) return true;
-    if (key->least == key->most) snprintf(what, sizeof what, "%d items, not %d", node->count, key->least);
-    else if (node->count < key->least) snprintf(what, sizeof what, "the list is empty");
+    if (!node->count) snprintf(what, sizeof what, "the list is empty");
+    else if (key->least == key->most)
+        snprintf(what, sizeof what, "%d item%s, not %d", node->count, node->count == 1 ? "" : "s", key->least);
     else snprintf(what, sizeof what, "%d items, more than %d", node->count, key->most);
     pw_take_refuse(reader, key, node, what);
     return false;
@@ -114,8 +118,9 @@ void pw_take_pair(pw_reader *reader, const pw_key *key, const pw_tree *node, voi
 {
     double value[2];
     if (!pw_take_is_list(reader, key, node)) return;
-    bool first = pw_take_value(reader, key, node->item[0], &value[0]);
-    bool second = pw_take_value(reader, key, node->item[1], &value[1]);
+    const pw_key item = pw_key_item(key);
+    bool first = pw_take_value(reader, &item, node->item[0], &value[0]);
+    bool second = pw_take_value(reader, &item, node->item[1], &value[1]);
     for (int i = 0; i < 2; i++) pw_take_place(key, node->item[i], base, i);
     if (!first || !second) return;
     if (value[0] >= value[1]) {
@@ -221,6 +226,10 @@ void pw_take_text(pw_reader *reader, const pw_key *key, const pw_tree *node, voi
 {
     if (node->kind != PW_TREE_SCALAR) {
         pw_take_refuse(reader, key, node, NULL);
+        return;
+    }
+    if (strlen(node->text) > LONGEST_TEXT) {
+        pw_take_refuse(reader, key, node, "the text is longer than 400 bytes");
         return;
     }
     char *line = pw_arena_copy(reader->arena, node->text), *to = line;

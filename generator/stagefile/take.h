@@ -43,8 +43,6 @@ pw_taker pw_take_count;          /* int */
 pw_taker pw_take_seed;           /* uint64_t */
 pw_taker pw_take_submap;         /* the struct of the map sub */
 
-/* read.c */
-pw_taker pw_take_stage_name, pw_take_target;
 /* read_analog.c */
 pw_taker pw_take_roots, pw_take_polynomials, pw_take_family, pw_take_cascade, pw_take_coefficients;
 /* read_roots.c */
@@ -53,8 +51,10 @@ pw_taker pw_take_root_list, pw_take_q, pw_take_gain;
 pw_taker pw_take_circuit, pw_take_cell, pw_take_node, pw_take_nodes, pw_take_current_node,
          pw_take_output, pw_take_parts, pw_take_part_value, pw_take_op_amp, pw_take_kind;
 /* read_rest.c */
-pw_taker pw_take_prewarp, pw_take_coefficient, pw_take_port, pw_take_rails, pw_take_band,
-         pw_take_forbidden, pw_take_signals;
+pw_taker pw_take_stage_name, pw_take_target, pw_take_prewarp, pw_take_coefficient, pw_take_band, pw_take_forbidden, pw_take_signals;
+/* read_signal.c */
+pw_taker pw_take_port, pw_take_rails;
+void pw_port_default(pw_port *port);   /* full scale 1 V, where the file says nothing */
 
 /* What the maps "root" and "gain" are read into. */
 typedef struct pw_root_form {
@@ -68,7 +68,6 @@ typedef struct pw_gain_form { pw_given at, is, factor; bool invert; } pw_gain_fo
 typedef struct pw_cell_form { double value, tolerance; bool normal; pw_where at; } pw_cell_form;
 
 /* read_check.c: what only the whole file can show. */
-/* sound: no error so far; checks that need whole values are left out otherwise. */
-void pw_stage_check(pw_reader *reader, bool sound);
+void pw_stage_check(pw_reader *reader);
 
 #endif

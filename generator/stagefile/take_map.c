@@ -28,6 +28,19 @@ static bool is_known_word(const pw_key *key, const char *text)
     return false;
 }
 
+/* Whether none of the keys that share a key's choice stands in a map. */
+static bool choice_is_open(const char *list, const char *map, const pw_tree *node)
+{
+    char name[48];
+    snprintf(name, sizeof name, "%.*s", (int)strcspn(list, "|"), list);
+    const pw_key *first = pw_key_find(map, name);
+    for (int i = 0; i < node->count; i++) {
+        const pw_key *key = pw_key_find(map, node->key[i]);
+        if (key && key->choice == first->choice) return false;
+    }
+    return first->choice > 0;
+}
+
 /* Whether a condition of the table holds in a map; UNKNOWN where the key it asks for is missing or
  * mistyped, which is a fault of its own. */
 static truth holds(const char *condition, const char *map, const pw_tree *node)
@@ -37,7 +50,7 @@ static truth holds(const char *condition, const char *map, const pw_tree *node)
     if (!equals) {
         for (int i = 0; i < node->count; i++)
             if (is_listed(condition, node->key[i])) return YES;
-        return NO;
+        return choice_is_open(condition, map, node) ? UNKNOWN : NO;
     }
     char name[48];
     snprintf(name, sizeof name, "%.*s", (int)(equals - condition), condition);
@@ -58,12 +71,7 @@ static const char *condition_phrase(pw_text *out, const char *condition)
     return pw_text_string(out);
 }
 
-static const char *map_phrase(char *buffer, size_t room, const char *map)
-{
-    if (!*map) return "the stage file";
-    snprintf(buffer, room, "%s", map);
-    return buffer;
-}
+static const char *map_phrase(const char *map) { return *map ? map : "the stage file"; }
 
 /* ---- unknown keys ---- */
 
@@ -74,25 +82,39 @@ static const pw_key_map *map_named(const char *map)
     return &pw_key_maps[i];
 }
 
+/* "it belongs in transform", for a key that other maps know; false where none does. */
+static bool add_home(pw_text *out, const char *name)
+{
+    const char *last = NULL;
+    int n = 0;
+    for (int i = 0; i < pw_key_count && n < 3; i++) {
+        if (strcmp(pw_keys[i].name, name) || (last && !strcmp(pw_keys[i].map, last))) continue;
+        pw_text_print(out, "%s%s", n++ ? " or " : "it belongs in ", map_phrase(pw_keys[i].map));
+        last = pw_keys[i].map;
+    }
+    return n > 0;
+}
+
+static void add_choices(pw_text *out, const char *const *known, int n)
+{
+    pw_text_add(out, n ? "expected one of " : "expected nothing more");
+    for (int i = 0; i < n; i++) pw_text_print(out, "%s%s", i ? ", " : "", known[i]);
+}
+
 static void tell_unknown(pw_reader *reader, const char *map, const pw_tree *node, int index)
 {
-    const char *known[MOST_KEYS];
-    char where[48], shown[PW_SHOWN_ROOM];
+    const char *known[MOST_KEYS] = {0};
+    char shown[PW_SHOWN_ROOM];
     int n = 0;
     for (int i = 0; i < pw_key_count && n < MOST_KEYS; i++)
         if (!strcmp(pw_keys[i].map, map) && !pw_tree_find(node, pw_keys[i].name)) known[n++] = pw_keys[i].name;
-    pw_shown(shown, node->key[index]);
-    map_phrase(where, sizeof where, map);
     const char *near = pw_nearest(node->key[index], known, n);
-    pw_text list = {0};
-    if (near) pw_text_print(&list, "did you mean '%s'?", near);
-    else {
-        pw_text_add(&list, n ? "expected one of " : "expected nothing more");
-        for (int i = 0; i < n; i++) pw_text_print(&list, "%s%s", i ? ", " : "", known[i]);
-    }
-    pw_error(reader->messages, node->key_at[index], "unknown key %s in %s; %s", shown,
-             *map ? where : "the stage file", pw_text_string(&list));
-    pw_text_free(&list);
+    pw_text hint = {0};
+    if (near) pw_text_print(&hint, "did you mean '%s'?", near);
+    else if (!add_home(&hint, node->key[index])) add_choices(&hint, known, n);
+    pw_error(reader->messages, node->key_at[index], "unknown key %s in %s; %s",
+             pw_shown(shown, node->key[index]), map_phrase(map), pw_text_string(&hint));
+    pw_text_free(&hint);
 }
 
 static void tell_unknowns(pw_reader *reader, const char *map, const pw_tree *node)
@@ -109,11 +131,14 @@ static void tell_unknowns(pw_reader *reader, const char *map, const pw_tree *nod
 
 /* ---- missing and misplaced keys ---- */
 
-/* Whether a key of the node that the table does not know most likely means this one. */
+/* Whether a key of the node that is told as unknown or misplaced most likely means this one. */
 static bool is_mistyped(const pw_key *key, const pw_tree *node)
 {
-    for (int i = 0; i < node->count; i++)
-        if (!pw_key_find(key->map, node->key[i]) && pw_nearest(node->key[i], &key->name, 1)) return true;
+    for (int i = 0; i < node->count; i++) {
+        const pw_key *other = pw_key_find(key->map, node->key[i]);
+        bool told = !other || holds(other->only_with, key->map, node) == NO;
+        if (told && pw_nearest(node->key[i], &key->name, 1)) return true;
+    }
     return false;
 }
 
@@ -143,26 +168,26 @@ static void tell_misplaced(pw_reader *reader, const pw_key *key, const pw_tree *
 static void check_choice(pw_reader *reader, const char *map, const pw_tree *node, int choice)
 {
     const pw_key *found = NULL;
-    bool open = false;
-    char where[48];
+    bool open = false, mistyped = false;
     pw_text names = {0};
     for (int i = 0; i < pw_key_count; i++) {
         const pw_key *key = &pw_keys[i];
         if (strcmp(key->map, map) || key->choice != choice) continue;
         if (holds(key->only_with, map, node) == YES) open = true;
+        mistyped |= is_mistyped(key, node);
         pw_text_print(&names, "%s%s", names.size ? ", " : "", key->name);
     }
     for (int i = 0; i < node->count; i++) {
         const pw_key *key = pw_key_find(map, node->key[i]);
         if (!key || key->choice != choice) continue;
         if (found)
-            pw_error(reader->messages, node->key_at[i], "%s beside %s; expected exactly one of %s",
-                     key->name, found->name, pw_text_string(&names));
+            pw_error(reader->messages, node->key_at[i], "%s: %s beside %s; expected exactly one of %s",
+                     map_phrase(map), key->name, found->name, pw_text_string(&names));
         found = key;
     }
-    if (!found && open)
-        pw_error(reader->messages, node->at, "%s lacks its kind; expected exactly one of %s",
-                 map_phrase(where, sizeof where, map), pw_text_string(&names));
+    if (!found && open && !mistyped)
+        pw_error(reader->messages, node->at, "%s: a key is missing; expected exactly one of %s",
+                 map_phrase(map), pw_text_string(&names));
     pw_text_free(&names);
 }
 

@@ -76,7 +76,7 @@ const char *pw_unit_phrase(pw_unit_kind kind)
         [PW_UNIT_NONE] = "a number with a prefix that means nothing here", [PW_UNIT_HZ] = "a frequency",
         [PW_UNIT_RAD_S] = "a frequency", [PW_UNIT_SECOND] = "a time", [PW_UNIT_VOLT] = "a voltage",
         [PW_UNIT_AMPERE] = "a current", [PW_UNIT_OHM] = "a resistance", [PW_UNIT_FARAD] = "a capacitance",
-        [PW_UNIT_HENRY] = "an inductance", [PW_UNIT_SIEMENS] = "a conductance", [PW_UNIT_DB] = "decibels",
+        [PW_UNIT_HENRY] = "an inductance", [PW_UNIT_SIEMENS] = "a conductance", [PW_UNIT_DB] = "in decibels",
         [PW_UNIT_PERCENT] = "a percentage", [PW_UNIT_DEGREE] = "an angle", [PW_UNIT_BIT] = "a number of bits",
         [PW_UNIT_BYTE] = "a size",
     };
