@@ -142,9 +142,9 @@ static pw_wide residuals(const pw_wide *c, int n, const pw_factor *factor, int f
     return most;
 }
 
-bool pw_factors_fit(const pw_wide *c, int n, pw_factor *factor, int factors, pw_wide tolerance)
+pw_wide pw_factors_fit(const pw_wide *c, int n, pw_factor *factor, int factors)
 {
-    pw_wide (*a)[N + 1] = pw_take(sizeof *a * N), weight[N + 1], x[N], most = 0;
+    pw_wide (*a)[N + 1] = pw_take(sizeof *a * N), weight[N + 1], x[N], most = INFINITY;
     bool good = true;
     for (int round = 0; round < ROUNDS && good; round++) {
         int columns = 0;
@@ -163,5 +163,5 @@ bool pw_factors_fit(const pw_wide *c, int n, pw_factor *factor, int factors, pw_
         most = residuals(c, n, factor, factors, weight, 0, a);
     }
     free(a);
-    return good && most <= tolerance;
+    return most;
 }

@@ -27,9 +27,9 @@ typedef struct pw_factor {
 int pw_factors_find(const pw_wide *c, int n, const pw_wide_complex *root, pw_factor *out);
 
 /* Fits the factors to the coefficients by least squares (Gauss-Newton on the pejorative manifold,
- * Zeng 2005), each equation weighted by the coefficient of prod(s + |root|). True where the
- * largest weighted residual is then at most tolerance; the factors are the fitted ones. */
-bool pw_factors_fit(const pw_wide *c, int n, pw_factor *factor, int factors, pw_wide tolerance);
+ * Zeng 2005), each equation weighted by the coefficient of prod(s + |root|). Returns the largest
+ * weighted residual; infinity where the fit broke down and the factors mean nothing. */
+pw_wide pw_factors_fit(const pw_wide *c, int n, pw_factor *factor, int factors);
 
 /* The upper root, or the real one, of a factor. */
 pw_wide_complex pw_factor_root(const pw_factor *factor);
