@@ -12,19 +12,21 @@ typedef enum error_kind { MAGNITUDE, PHASE, DELAY } error_kind;
 typedef struct comparison {
     const pw_side *judge, *truth, *other;
     double least;                /* of the judge's magnitude */
+    double bottom;               /* levels below count as this */
     error_kind kind;
 } comparison;
 
-static double level_error(double complex truth, double complex other)
+static double level_error(double complex truth, double complex other, double bottom)
 {
-    double from = cabs(truth), to = cabs(other);
+    double from = fmax(cabs(truth), bottom), to = fmax(cabs(other), bottom);
     if (from == to) return 0;
     if (from == 0 || to == 0 || !isfinite(from) || !isfinite(to)) return PW_WORST_DB;
     return fmin(fabs(20 * log10(to / from)), PW_WORST_DB);
 }
 
-static double phase_error(double complex truth, double complex other)
+static double phase_error(double complex truth, double complex other, double bottom)
 {
+    if (cabs(truth) < bottom || cabs(other) < bottom) return 0;
     double complex turn = other * conj(truth / cabs(truth));
     if (!(cabs(turn) > 0) || !isfinite(cabs(turn))) return 0;   /* no phase at a zero or a pole */
     return fabs(carg(turn)) * 180 / M_PI;
@@ -32,8 +34,8 @@ static double phase_error(double complex truth, double complex other)
 
 static double error_of(const comparison *c, double hz, double complex truth, double complex other)
 {
-    if (c->kind == MAGNITUDE) return level_error(truth, other);
-    if (c->kind == PHASE) return phase_error(truth, other);
+    if (c->kind == MAGNITUDE) return level_error(truth, other, c->bottom);
+    if (c->kind == PHASE) return phase_error(truth, other, c->bottom);
     return fabs(c->other->delay(c->other->context, hz) - c->truth->delay(c->truth->context, hz));
 }
 
@@ -77,8 +79,11 @@ void pw_compare(const pw_grid *grid, const pw_side *judge, const pw_side *truth,
     double top = pw_grid_follow(grid, level, judged_level, judge).max;
     sample_side(truth, grid, truths);
     sample_side(other, grid, others);
-    comparison c = {judge, truth, other, top * pow(10, -floor_db / 20), MAGNITUDE};
-    if (!isfinite(c.least)) c.least = 0;
+    comparison c = {.judge = judge, .truth = truth, .other = other, .kind = MAGNITUDE};
+    if (isfinite(top)) {
+        c.least = top * pow(10, -floor_db / 20);
+        c.bottom = top * pow(10, -2 * floor_db / 20);
+    }
     out->magnitude_db = worst(grid, &c, level, truths, others, value);
     c.kind = PHASE;
     out->phase_deg = worst(grid, &c, level, truths, others, value);
