@@ -41,8 +41,8 @@ bool pw_quantise_direct(const pw_format *format, const pw_section *section, long
                         pw_words *words);
 void pw_quantise_float(const pw_format *format, const pw_section *section, long double gain,
                        pw_words *words);
-/* Poles strictly inside the unit circle, or one exactly at 1 in a first-order section. */
-bool pw_words_stable(const pw_words *words);
+/* Poles strictly inside the unit circle, but for those of the section that stand at exactly 1. */
+bool pw_words_stable(const pw_section *section, const pw_words *words);
 /* Whether a pole stands at exactly 1. */
 bool pw_section_has_integrator(const pw_section *section);
 /* a_fraction as the poles alone allow it. */
@@ -54,15 +54,14 @@ typedef struct pw_band {         /* frequencies of the band where words are judg
     int count;
     double theta[160];           /* radians per sample */
     double hz[160];
+    double level[160];           /* magnitude of the model here, of its largest in the band */
+    bool judged[160];            /* it is above the floor here */
 } pw_band;
 
 void pw_band_make(const pw_stage *stage, const pw_roots *z, pw_band *out);
 /* gain * prod(z - zero) / prod(z - pole) at z = exp(j theta), without cancellation near z = 1. */
 double complex pw_ideal_response(const pw_section *section, double theta);
 double complex pw_words_response(const pw_words *words, double theta);
-/* Deviation of the realised chain from the ideal one, over the band above the floor. */
-void pw_deviation(const pw_stage *stage, const pw_band *grid, pw_realisation *r);
-
 /* ---- paths.c ---- */
 
 void pw_line_of_words(const pw_words *words, pw_line *line);

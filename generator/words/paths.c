@@ -94,11 +94,8 @@ static pw_line direct_source(const pw_line *line, long double k1, long double k2
     return s;
 }
 
-const pw_route *pw_paths_source(pw_paths *paths, const pw_words *w, int section, pw_source source)
+pw_line pw_paths_source_line(const pw_paths *paths, const pw_words *w, int section, pw_source source)
 {
-    pw_route *route = &paths->source[section][source];
-    if (route->norm)
-        return route;
     pw_line s = paths->line[section];
     if (source != PW_SOURCE_OUTPUT) {
         s.g1 = source == PW_SOURCE_U1, s.g2 = source == PW_SOURCE_U2, s.d = 0;
@@ -109,14 +106,28 @@ const pw_route *pw_paths_source(pw_paths *paths, const pw_words *w, int section,
         bool shaped = w->structure == PW_DIRECT_1_SHAPED;
         s = direct_source(&s, shaped ? w->k1 : 0, shaped ? w->k2 : 0);
     }
-    run(paths, section, &s, route);
+    return s;
+}
+
+const pw_route *pw_paths_source(pw_paths *paths, const pw_words *w, int section, pw_source source)
+{
+    pw_route *route = &paths->source[section][source];
+    if (!route->norm) {
+        pw_line s = pw_paths_source_line(paths, w, section, source);
+        run(paths, section, &s, route);
+    }
     return route;
+}
+
+pw_line pw_paths_shift_line(const pw_paths *paths, int section)
+{
+    return direct_source(&paths->line[section], 0, 0);
 }
 
 const pw_route *pw_paths_shift(pw_paths *paths, int section)
 {
     if (!paths->shift[section].norm) {
-        pw_line s = direct_source(&paths->line[section], 0, 0);
+        pw_line s = pw_paths_shift_line(paths, section);
         run(paths, section, &s, &paths->shift[section]);
     }
     return &paths->shift[section];

@@ -43,6 +43,21 @@ static long double settle_reach(const pw_format *format, const pw_words *w, cons
     return w->order == 0 || inside ? 0 : format->lsb / 2 * rest_reach(line);
 }
 
+static long double settle_at(pw_proof *p, const pw_realisation *r, int from, int k, pw_place place)
+{
+    long double sum = 0;
+    for (int j = from; j <= k; j++) {
+        long double through = 1;
+        for (int i = j + 1; i <= k; i++)
+            through *= p->paths.line[i].own;
+        if (place == PW_PLACE_OUTPUT || j < k)
+            sum += settle_reach(&p->format, &r->section[j], &p->paths.line[j]) * through;
+        else
+            sum += p->format.lsb;
+    }
+    return sum;
+}
+
 static long double rounding_at(pw_proof *p, const pw_realisation *r, int from, int k, pw_place place)
 {
     long double sum = 0;
@@ -55,17 +70,18 @@ static long double rounding_at(pw_proof *p, const pw_realisation *r, int from, i
                 continue;        /* rounding of y does not enter the two words */
             sum += route->reach > k ? source_reach(&p->format, &route->norm[k - j][place]) : INFINITY;
         }
-        long double through = 1;
-        for (int i = j + 1; i <= k; i++)
-            through *= p->paths.line[i].own;
-        if (place == PW_PLACE_OUTPUT || j < k)
-            sum += settle_reach(&p->format, w, &p->paths.line[j]) * through;
-        else
-            sum += p->format.lsb;
         if (!coupled && w->b_fraction > w->a_fraction)
             sum += ldexpl(p->format.lsb, -w->a_fraction - 1) * pw_paths_shift_bound(&p->paths, j, k);
     }
     return sum;
+}
+
+long double pw_proof_rounding(pw_proof *proof, const pw_realisation *r, int section)
+{
+    for (int k = 0; k <= section; k++)
+        if (proof->paths.integrates[k])
+            return INFINITY;
+    return rounding_at(proof, r, 0, section, PW_PLACE_OUTPUT);
 }
 
 /* ---- one section of a segment ---- */
@@ -85,7 +101,8 @@ static section_bound bound_section(pw_proof *p, const pw_realisation *r, int fro
         bool finite = in->reach > k;
         s.gain[place] = finite ? in->norm[k - from][place].l1 : INFINITY;
         s.rounding[place] = !p->format.fixed ? 0
-                          : finite ? rounding_at(p, r, from, k, place) : INFINITY;
+                          : finite ? rounding_at(p, r, from, k, place) + settle_at(p, r, from, k, place)
+                          : INFINITY;
         s.bound[place] = peak * s.gain[place] + s.rounding[place];
         s.clips = s.clips || !(s.bound[place] <= p->format.largest);
     }

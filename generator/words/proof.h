@@ -14,4 +14,8 @@ void pw_proof_end(pw_proof *proof);
 /* Fills nodes, cannot_clip, fits_32, first_clip_input and worst_node. */
 void pw_prove(pw_proof *proof, pw_realisation *r);
 
+/* >= what rounding alone can keep up at the output of a section (from 0), of full scale; INFINITY
+ * behind or in an integrator. */
+long double pw_proof_rounding(pw_proof *proof, const pw_realisation *r, int section);
+
 #endif

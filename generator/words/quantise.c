@@ -167,7 +167,7 @@ bool pw_quantise_direct(const pw_format *format, const pw_section *section, long
     return false;
 }
 
-bool pw_words_stable(const pw_words *w)
+bool pw_words_stable(const pw_section *section, const pw_words *w)
 {
     if (w->order == 0)
         return true;
@@ -176,9 +176,9 @@ bool pw_words_stable(const pw_words *w)
         return r < (__int128)1 << (2 * w->a_fraction);
     }
     double a1 = w->realised_a[1], a2 = w->realised_a[2];
-    if (w->order == 1)
-        return fabs(a1) < 1 || a1 == -1;
-    return (a2 < 1 && fabs(a1) < 1 + a2) || (a2 <= 1 && a1 == -1 - a2);
+    if (pw_section_has_integrator(section))
+        return a2 <= 1 && a1 == -1 - a2;
+    return a2 < 1 && fabs(a1) < 1 + a2;
 }
 
 /* ---- floats ---- */

@@ -112,6 +112,9 @@ typedef struct pw_realisation {
     pw_limit_cycle limit_cycle;
     int worst_node;              /* index of the node nearest to its clamp */
     const char *structure_why;   /* one sentence; "" where the user named it */
+    int enough_bits;             /* coefficient word length that keeps word_magnitude_db within
+                                    limits.magnitude (0.5 dB where not given): coefficient_bits where
+                                    it does, else the shortest that would; 0: none up to 32 bits */
     const char *order_why;       /* how the order was found */
     pw_error_peak word_magnitude_db, word_phase_deg;   /* realised against ideal over the band */
 } pw_realisation;

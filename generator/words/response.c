@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-#include "words/inner.h"
+#include "words/job.h"
 
 #include <complex.h>
 #include <math.h>
@@ -71,6 +71,30 @@ static void grid_add(const pw_stage *stage, pw_band *grid, double hz)
     grid->theta[grid->count++] = 2 * M_PI * hz / stage->rate_hz;
 }
 
+static double log_model(const pw_roots *z, double theta)
+{
+    double complex step = less_one(theta);
+    double sum = 0;
+    for (int k = 0; k < z->zeros; k++)
+        sum += log(cabs(step + (1 - z->zero[k])));
+    for (int k = 0; k < z->poles; k++)
+        sum -= log(cabs(step + (1 - z->pole[k])));
+    return sum;
+}
+
+static void judge(const pw_stage *stage, const pw_roots *z, pw_band *band)
+{
+    double size[160], largest = -INFINITY;
+    for (int i = 0; i < band->count; i++) {
+        size[i] = log_model(z, band->theta[i]);
+        largest = fmax(largest, size[i]);
+    }
+    for (int i = 0; i < band->count; i++) {
+        band->level[i] = exp(size[i] - largest);
+        band->judged[i] = size[i] >= largest - stage->limits.floor_db * M_LN10 / 20;
+    }
+}
+
 void pw_band_make(const pw_stage *stage, const pw_roots *z, pw_band *out)
 {
     const double *band = stage->limits.band_hz;
@@ -87,22 +111,7 @@ void pw_band_make(const pw_stage *stage, const pw_roots *z, pw_band *out)
             grid_add(stage, out, (angle + width) * hz);
         }
     }
-}
-
-static double complex chain_ideal(const pw_realisation *r, double theta)
-{
-    double complex h = r->input_full_scale / r->output_full_scale;
-    for (int k = 0; k < r->count; k++)
-        h *= pw_ideal_response(&r->ideal[k], theta);
-    return h;
-}
-
-static double complex chain_words(const pw_realisation *r, double theta)
-{
-    double complex h = 1;
-    for (int k = 0; k < r->count; k++)
-        h *= pw_words_response(&r->section[k], theta);
-    return h;
+    judge(stage, z, out);
 }
 
 static void keep_peak(pw_error_peak *peak, double value, double hz)
@@ -111,18 +120,46 @@ static void keep_peak(pw_error_peak *peak, double value, double hz)
         *peak = (pw_error_peak){value, hz};
 }
 
-void pw_deviation(const pw_stage *stage, const pw_band *grid, pw_realisation *r)
+static double complex section_ratio(const pw_job *job, int k, double theta)
 {
-    double largest = 0, floor = pow(10, -stage->limits.floor_db / 20);
-    for (int i = 0; i < grid->count; i++)
-        largest = fmax(largest, cabs(chain_ideal(r, grid->theta[i])));
-    r->word_magnitude_db = r->word_phase_deg = (pw_error_peak){0, grid->count ? grid->hz[0] : 0};
-    for (int i = 0; i < grid->count; i++) {
-        double complex ideal = chain_ideal(r, grid->theta[i]);
-        if (cabs(ideal) < floor * largest)
+    return pw_words_response(&job->out->section[k], theta)
+         / ((double)job->gain[k] * pw_ideal_response(&job->out->ideal[k], theta));
+}
+
+double pw_section_bend(const pw_job *job, int k)
+{
+    double worst = 0;
+    for (int i = 0; i < job->band.count; i++)
+        if (job->band.judged[i])
+            worst = fmax(worst, job->band.level[i] * cabs(section_ratio(job, k, job->band.theta[i]) - 1));
+    return 20 / M_LN10 * worst;
+}
+
+double pw_bend(const pw_job *job)
+{
+    double worst = 0;
+    for (int i = 0; i < job->band.count; i++) {
+        double complex ratio = 1;
+        for (int k = 0; k < job->out->count; k++)
+            ratio *= section_ratio(job, k, job->band.theta[i]);
+        if (job->band.judged[i])
+            worst = fmax(worst, job->band.level[i] * cabs(ratio - 1));
+    }
+    return 20 / M_LN10 * worst;
+}
+
+void pw_deviation_monic(pw_job *job)
+{
+    const pw_band *band = &job->band;
+    pw_error_peak *magnitude = &job->out->word_magnitude_db, *phase = &job->out->word_phase_deg;
+    *magnitude = *phase = (pw_error_peak){0, band->count ? band->hz[0] : 0};
+    for (int i = 0; i < band->count; i++) {
+        if (!band->judged[i])
             continue;
-        double complex ratio = chain_words(r, grid->theta[i]) / ideal;
-        keep_peak(&r->word_magnitude_db, fabs(20 * log10(cabs(ratio))), grid->hz[i]);
-        keep_peak(&r->word_phase_deg, fabs(carg(ratio)) * 180 / M_PI, grid->hz[i]);
+        double complex ratio = 1;
+        for (int k = 0; k < job->out->count; k++)
+            ratio *= section_ratio(job, k, band->theta[i]);
+        keep_peak(magnitude, fabs(20 * log10(cabs(ratio))), band->hz[i]);
+        keep_peak(phase, fabs(carg(ratio)) * 180 / M_PI, band->hz[i]);
     }
 }
