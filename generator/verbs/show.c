@@ -1,19 +1,32 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include <stdio.h>
 
+#include "analog/cell.h"
+#include "analog/sensitivity.h"
 #include "report/show.h"
 #include "verbs/analysis.h"
 
-enum { PLOT };
+enum { PLOT, CELLS };
 
 static const pw_option options[] = {
     {"plot", NULL, "add a small plot of the magnitude"},
+    {"cells", NULL, "list the textbook cells with their parts and a small diagram of each"},
     {NULL, NULL, NULL},
 };
+
+static pw_status list_cells(void)
+{
+    pw_text out = {0};
+    pw_cells_list(&out);
+    pw_say(&out);
+    pw_text_free(&out);
+    return PW_OK;
+}
 
 static pw_status run(const pw_call *call)
 {
     static pw_analysis analysis;
+    if (call->extra[CELLS]) return list_cells();
     if (!call->stage) {
         fputs("polewright: show needs a stage file: polewright show STAGE.yaml\n", stderr);
         return PW_WRONG;
@@ -25,6 +38,7 @@ static pw_status run(const pw_call *call)
         if (call->json) pw_show_json(&analysis.stage, &analysis.results.analog, &out);
         else {
             pw_show_text(&analysis.stage, &analysis.results.analog, call->extra[PLOT], call->color, &out);
+            pw_circuit_show(&analysis.stage, &out);
         }
         pw_say(&out);
         pw_text_free(&out);
@@ -38,5 +52,6 @@ const pw_verb pw_verb_show = {
     .run = run, .needs_stage = false, .option = options,
     .examples = "  polewright show stage.yaml\n"
                 "  polewright show stage.yaml --plot\n"
+                "  polewright show --cells\n"
 ,
 };
