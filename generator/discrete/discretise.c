@@ -93,30 +93,47 @@ static pw_status no_form(const pw_stage *stage, const pw_roots *analog, pw_messa
         return PW_WRONG;
     }
     pw_error(messages, stage->transform.method_at,
-             "%s did not converge for these roots; another method was expected",
+             "%s found no form for these roots; another method was expected",
              pw_method_word(stage->transform.method));
     return PW_FAILED;
 }
 
-static pw_status match_asked(const pw_stage *stage, const pw_roots *analog, pw_digital *out,
-                             pw_messages *messages)
+static bool no_match(const pw_stage *stage, double hz, pw_messages *messages)
 {
     const pw_given *asked = &stage->transform.match_gain_hz;
-    if (!pw_candidate_gain(stage, analog, out->candidate, out)) {
-        char said[PW_NUMBER_ROOM];
-        pw_error(messages, asked->given ? asked->at : stage->transform.method_at,
-                 "the gain cannot be matched at %s, where it is zero or without bound; a frequency "
-                 "away from the roots was expected", pw_si(said, out->match_gain_hz, "Hz", 6));
-        return PW_WRONG;
-    }
-    return PW_OK;
+    char said[PW_NUMBER_ROOM];
+    pw_error(messages, asked->given ? asked->at : stage->transform.method_at,
+             "the gain cannot be matched at %s, where it is zero or without bound; a frequency away "
+             "from the roots was expected", pw_si(said, hz, "Hz", 6));
+    return false;
+}
+
+/* The analog side of a match that the user asked for, before anything is made. */
+static bool match_can_be(const pw_stage *stage, const pw_roots *analog, pw_messages *messages)
+{
+    const pw_given *asked = &stage->transform.match_gain_hz;
+    if (!asked->given) return true;
+    double level = cabs(pw_analog_at(analog, asked->value));
+    if (level > 0 && isfinite(level)) return true;
+    return no_match(stage, asked->value, messages);
+}
+
+static void warn_unused_prewarp(const pw_stage *stage, pw_messages *messages)
+{
+    const pw_transform *t = &stage->transform;
+    if (t->prewarp == PW_PREWARP_DEFAULT || t->prewarp == PW_PREWARP_NONE) return;
+    if (t->method == PW_BILINEAR || t->method == PW_BEST) return;
+    pw_warning(messages, t->prewarp_at, "prewarp does nothing for %s; it belongs to bilinear and best",
+               pw_method_word(t->method));
 }
 
 pw_status pw_discretise(const pw_stage *stage, const pw_roots *analog, pw_digital *out,
                         pw_messages *messages)
 {
     memset(out, 0, sizeof *out);
-    if (!frequencies_fit(stage, messages)) return PW_WRONG;
+    if (!frequencies_fit(stage, messages) || !match_can_be(stage, analog, messages))
+        return PW_WRONG;
+    warn_unused_prewarp(stage, messages);
     if (stage->transform.method == PW_BEST) {
         if (!pw_best(stage, analog, out)) return no_form(stage, analog, messages);
     } else {
@@ -130,8 +147,10 @@ pw_status pw_discretise(const pw_stage *stage, const pw_roots *analog, pw_digita
     out->prewarp = chosen->prewarp;
     out->prewarp_hz = chosen->prewarp_hz;
     out->zeros_at_infinity = chosen->zeros_at_infinity;
-    pw_status status = match_asked(stage, analog, out, messages);
-    if (status != PW_OK) return status;
+    if (!pw_candidate_gain(stage, analog, chosen, out)) {
+        no_match(stage, out->match_gain_hz, messages);
+        return PW_WRONG;
+    }
     if (!poles_inside(stage, analog, &out->z, messages)) return PW_WRONG;
     pw_candidate_judge(stage, analog, out->candidate, &out->z);
     pw_warn_beyond(stage, analog, out, messages);

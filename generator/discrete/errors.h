@@ -16,6 +16,7 @@ void pw_grid_make(pw_grid *grid, double low, double high);
 void pw_grid_add_analog(pw_grid *grid, const pw_roots *analog);
 void pw_grid_add_digital(pw_grid *grid, const pw_roots *z, double rate_hz);
 void pw_grid_add(pw_grid *grid, double hz, double half_width);
+void pw_grid_put(pw_grid *grid, double hz);  /* this one alone; outside low..high it is left out */
 void pw_grid_sort(pw_grid *grid);            /* after the last add: sorted, each once */
 void pw_grid_free(pw_grid *grid);
 

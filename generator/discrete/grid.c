@@ -9,10 +9,10 @@
 
 #define LOG_POINTS 300
 #define EVEN_POINTS 200
-#define FOLLOWED 16              /* local peaks that are followed */
+#define FOLLOWED 10              /* local peaks that are followed */
 #define GOLDEN 0.6180339887498949
 
-static void put(pw_grid *grid, double hz)
+void pw_grid_put(pw_grid *grid, double hz)
 {
     if (!(hz >= grid->low && hz <= grid->high)) return;
     if (grid->count == grid->room) {
@@ -27,9 +27,9 @@ void pw_grid_make(pw_grid *grid, double low, double high)
     *grid = (pw_grid){.low = low, .high = high};
     double start = low > 0 ? low : high * 1e-6;
     for (int i = 0; i < LOG_POINTS; i++)
-        put(grid, start * pow(high / start, (double)i / LOG_POINTS));
-    for (int i = 0; i < EVEN_POINTS; i++) put(grid, low + (high - low) * i / EVEN_POINTS);
-    put(grid, high);
+        pw_grid_put(grid, start * pow(high / start, (double)i / LOG_POINTS));
+    for (int i = 0; i < EVEN_POINTS; i++) pw_grid_put(grid, low + (high - low) * i / EVEN_POINTS);
+    pw_grid_put(grid, high);
 }
 
 void pw_grid_add(pw_grid *grid, double hz, double half_width)
@@ -37,8 +37,8 @@ void pw_grid_add(pw_grid *grid, double hz, double half_width)
     static const double step[] = {0, 0.05, 0.2, 0.5, 1, 2, 4, 10};
     double width = fmax(half_width, hz * 1e-5);
     for (size_t i = 0; i < sizeof step / sizeof step[0]; i++) {
-        put(grid, hz - step[i] * width);
-        put(grid, hz + step[i] * width);
+        pw_grid_put(grid, hz - step[i] * width);
+        pw_grid_put(grid, hz + step[i] * width);
     }
 }
 
@@ -93,7 +93,7 @@ static void climb(pw_level level, const void *context, double low, double high, 
 {
     double left = high - GOLDEN * (high - low), right = low + GOLDEN * (high - low);
     double at_left = level(context, left), at_right = level(context, right);
-    for (int i = 0; i < 36 && right > left; i++) {
+    for (int i = 0; i < 26 && right > left; i++) {
         if (at_left >= at_right) {
             high = right;
             right = left;

@@ -23,9 +23,9 @@ static inline long double pw_long_square(pw_long a) { return a.re * a.re + a.im 
 
 static inline pw_long pw_long_over(pw_long a, pw_long b)
 {
-    long double size = pw_long_square(b);
+    long double scale = 1 / pw_long_square(b);   /* one slow division instead of two */
     pw_long top = pw_long_times(a, (pw_long){b.re, -b.im});
-    return (pw_long){top.re / size, top.im / size};
+    return (pw_long){top.re * scale, top.im * scale};
 }
 
 #endif

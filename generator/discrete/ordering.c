@@ -22,8 +22,8 @@
 static void circle_grid(const pw_roots *z, pw_grid *grid)
 {
     *grid = (pw_grid){.low = 0.5e-4, .high = 0.5};           /* of the rate */
-    for (int i = 0; i < 64; i++) pw_grid_add(grid, 0.5 * pow(10, -i / 16.0), 0);
-    for (int i = 1; i < 160; i++) pw_grid_add(grid, 0.5 * i / 160, 0);
+    for (int i = 0; i < 80; i++) pw_grid_put(grid, 0.5 * pow(10, -i / 20.0));
+    for (int i = 1; i < 200; i++) pw_grid_put(grid, 0.5 * i / 200);
     pw_roots poles = *z;
     poles.zeros = 0;
     pw_grid_add_digital(grid, &poles, 1);

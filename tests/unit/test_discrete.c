@@ -46,7 +46,8 @@ static void exact_roots_make_exact_words(void **state)
     (void)state;
     for (int i = 0; i < 1000; i++) {
         double gain = exp(0.01 * i - 5);
-        pw_section s = {.order = 2, .poles = 2, .zeros = 2, .gain = gain, .zero = {-1, -1}, .pole = {1, 1}};
+        pw_section s = {.order = 2, .poles = 2, .zeros = 2, .gain = gain, .zero = {-1, -1},
+                        .pole = {1, 1}};
         pw_section_expand(&s);
         assert_true(s.b[0] == gain && s.b[1] == 2 * gain && s.b[2] == gain);
         assert_true(s.a[0] == 1 && s.a[1] == -2 && s.a[2] == 1);
@@ -62,7 +63,8 @@ static void exact_roots_make_exact_words(void **state)
 static void missing_zeros_are_delays(void **state)
 {
     (void)state;
-    pw_section s = {.order = 2, .poles = 2, .zeros = 1, .gain = 3, .zero = {0.25}, .pole = {0.5, -0.5}};
+    pw_section s = {.order = 2, .poles = 2, .zeros = 1, .gain = 3, .zero = {0.25},
+                    .pole = {0.5, -0.5}};
     pw_section_expand(&s);
     assert_true(s.b[0] == 0 && s.b[1] == 3 && s.b[2] == -0.75);
     assert_true(s.a[1] == 0 && s.a[2] == -0.25);
@@ -71,7 +73,8 @@ static void missing_zeros_are_delays(void **state)
     assert_true(s.b[0] == 0 && s.b[1] == 0 && s.b[2] == 3);
     pw_section first = {.order = 1, .poles = 1, .zeros = 1, .gain = 2, .zero = {-1}, .pole = {1}};
     pw_section_expand(&first);
-    assert_true(first.b[0] == 2 && first.b[1] == 2 && first.b[2] == 0 && first.a[1] == -1 && first.a[2] == 0);
+    assert_true(first.b[0] == 2 && first.b[1] == 2 && first.b[2] == 0);
+    assert_true(first.a[1] == -1 && first.a[2] == 0);
 }
 
 /* ---- responses at the ends ---- */
@@ -128,7 +131,8 @@ static void a_fast_root_is_told_where_it_stands(void **state)
     pw_analog_spec member = {.kind = PW_ANALOG_ROOTS, .at = {2, 3}, .pole = pole, .poles = 2,
                              .zero = zero, .zeros = 1};
     pw_stage stage = stage_at(8000, PW_BILINEAR);
-    stage.analog = (pw_analog_spec){.kind = PW_ANALOG_CASCADE, .at = {1, 1}, .member = &member, .members = 1};
+    stage.analog = (pw_analog_spec){.kind = PW_ANALOG_CASCADE, .at = {1, 1}, .member = &member,
+                                    .members = 1};
     warned(&stage, &analog, &text);
     assert_non_null(strstr(text, "stage.yaml:3:9: warning: a zero at 11.14 kHz lies above"));
     assert_non_null(strstr(text, "stage.yaml:4:15: warning: a pole at 14.32 kHz lies above"));
@@ -230,10 +234,12 @@ static void the_table_covers_the_band(void **state)
     assert_true(response.row[response.rows - 1].hz < 4000);
     for (int i = 0; i < response.rows; i++) {
         const pw_response_row *row = &response.row[i];
-        double complex h = pw_analog_at(&analog, row->hz);
-        assert_float_equal(row->analog_db, 20 * log10(cabs(h)), 1e-9);
-        assert_float_equal(row->digital_db, 20 * log10(cabs(pw_digital_at(&digital.z, 8000, row->hz))), 1e-9);
-        assert_float_equal(row->digital_delay_s, pw_digital_group_delay(&digital.z, 8000, row->hz), 1e-13);
+        double analog_db = 20 * log10(cabs(pw_analog_at(&analog, row->hz)));
+        double digital_db = 20 * log10(cabs(pw_digital_at(&digital.z, 8000, row->hz)));
+        double delay = pw_digital_group_delay(&digital.z, 8000, row->hz);
+        assert_float_equal(row->analog_db, analog_db, 1e-9);
+        assert_float_equal(row->digital_db, digital_db, 1e-9);
+        assert_float_equal(row->digital_delay_s, delay, 1e-13);
         assert_true(fabs(row->digital_deg) <= 180 && isfinite(row->analog_deg));
     }
 }
