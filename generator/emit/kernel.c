@@ -76,6 +76,8 @@ static void set_common(pw_template_values *v, const facts *f)
     pw_template_set(v, "attribute", "");
     pw_template_set_number(v, "q15", f->q15);
     pw_template_set_number(v, "bytes", f->q15 ? 2 : 4);
+    pw_template_set_number(v, "log_bytes", f->q15 ? 1 : 2);
+    pw_template_set_number(v, "half_bit", f->half ? f->F - 1 : 0);
     pw_template_set(v, "load", f->q15 ? "ldrsh" : "ldr");
     pw_template_set(v, "store", f->q15 ? "strh" : "str");
     pw_template_set_number(v, "clips", f->clips);
@@ -136,6 +138,23 @@ static bool choose_armv7(const facts *given, pw_kernel *k)
     set_common(&k->values, &f);
     take_words(k, b, f.w->a);
     plan_wide(k, &f);
+    return true;
+}
+
+static bool choose_armv6(const facts *given, pw_kernel *k)
+{
+    facts f = *given;
+    int32_t b[3];
+    bool narrow = fits_32(&f);
+    fold_left(&f, b);
+    if (f.F == 0 || f.left > 31 || f.right == 32) return false;
+    if (f.q15 && largest(&f) >= ldexp(1.0, 31 + f.F)) return false;
+    *k = (pw_kernel){.file = "armv6-m", .kernel = narrow ? "narrow" : "wide", .values = k->values, .multiple = 2,
+                     .clamps = f.clips, .narrow = narrow,
+                     .why = narrow ? "32-bit sum" : "64-bit sum of products of halves"};
+    set_common(&k->values, &f);
+    pw_template_set_number(&k->values, "far", f.right >= 32 ? f.right - 32 : 0);
+    take_words(k, b, f.w->a);
     return true;
 }
 
@@ -207,6 +226,9 @@ bool pw_kernel_choose(const pw_realisation *realisation, int section, const pw_t
     case PW_ARMV8_1_M:
         if (fits_32(&f)) return choose_narrow(&f, target, out);
         if (choose_armv7(&f, out)) return true;
+        break;
+    case PW_ARMV6_M:
+        if (choose_armv6(&f, out)) return true;
         break;
     default: break;
     }
