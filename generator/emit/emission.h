@@ -1,0 +1,82 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What the files of emit/ share: the emission under way, and the kernels that write sections.
+ *
+ * A kernel is a row of functions that write the code items of one section. For each section the
+ * first kernel that fits is taken, in the order of kernels.c: those for a target's instructions
+ * first, the portable ones last. To add kernels for a target, write an array of pw_kernel in a file of
+ * its own, end it with a row without a name, and name it in kernels.c. */
+#ifndef PW_EMIT_EMISSION_H
+#define PW_EMIT_EMISSION_H
+
+#include "emit/code.h"
+#include "report/results.h"
+
+typedef struct pw_emission {
+    const pw_results *results;
+    const pw_realisation *r;
+    const pw_target *target;
+    const char *stage;           /* its name */
+    const char *type;            /* of a sample: "int16_t", "int32_t", "float", "double" */
+    const char *family;          /* "q15", "q31", "f32", "f64" */
+    int bits;                    /* of a sample: 16, 32; 0 for floats */
+    bool fixed, standalone;
+    bool single;                 /* float32 */
+    bool integrates;             /* a section does: settle is reset */
+    bool counts;                 /* a clamp is left somewhere, so that there is something to count */
+    const struct pw_kernel *kernel[PW_MAX_SECTIONS];
+    pw_arena *arena;
+} pw_emission;
+
+typedef struct pw_kernel {
+    const char *name;            /* for the comment above a section: "direct-1, 64-bit accumulator" */
+    bool (*fits)(const pw_emission *e, const pw_words *w);
+    /* Members of the state struct. */
+    void (*fields)(const pw_emission *e, const pw_words *w, pw_code *in);
+    /* Named constants, at file scope. */
+    void (*constants)(const pw_emission *e, const pw_words *w, pw_code *in);
+    /* Functions that it needs, at file scope; once a file, by pw_once on file. null: none. */
+    void (*helpers)(const pw_emission *e, const pw_words *w, pw_code *file);
+    /* The body of "static @ $_section_#($_state *s, @ x)", which returns y. null: has block instead. */
+    void (*step)(const pw_emission *e, const pw_words *w, pw_code *body);
+    /* Statements that take the section over the n samples at IN to out, in a scope that has s, in,
+     * out, n; in is the text of the input pointer: "in" for the first section, "out" after it.
+     * null: the block loops over step. */
+    void (*block)(const pw_emission *e, const pw_words *w, const char *in, pw_code *body);
+    /* The body of "static @ $_settle_#($_state *s, @ x)": the state (all zero before) as if x had
+     * been there for ever; returns y. */
+    void (*settle)(const pw_emission *e, const pw_words *w, pw_code *body);
+    /* The member that holds word k of the simulation's state (x1 x2 y1 y2 e1 e2, or u1 u2), with #;
+     * null where the section keeps no such word. */
+    const char *(*member)(const pw_words *w, int k);
+} pw_kernel;
+
+/* Sets everything up; kernels are chosen. */
+void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena);
+
+extern const pw_kernel pw_kernels_runtime[], pw_kernels_fixed[], pw_kernels_float[];
+
+/* ---- what kernels share ---- */
+
+/* Whether the clamps of this section may be left out: proved for any input, also beyond the peak. */
+bool pw_clamp_is_needless(const pw_emission *e, const pw_words *w);
+
+/* The largest magnitude that the accumulator of a direct section can reach for any samples and any
+ * state, half a step included. */
+double pw_direct_reach(const pw_emission *e, const pw_words *w);
+
+/* "b0 = 0.0470924" with the ideal value where it differs. */
+const char *pw_word_note(const pw_emission *e, const char *name, double realised);
+
+/* "at most 1.07e+09 < 2^30 for any samples": the reach of an accumulator, as a note. */
+const char *pw_reach_note(const pw_emission *e, double reach);
+
+/* The proved bound of a node of this section, as a phrase for a note; "" where there is none. */
+const char *pw_bound_note(const pw_emission *e, int section, const char *node);
+
+/* ---- the parts of a file ---- */
+
+void pw_story(const pw_emission *e, pw_code *comment);           /* what the header opens with */
+void pw_emit_converters(const pw_emission *e, pw_code *header, pw_code *source);
+const char *pw_build_line(const pw_emission *e);
+
+#endif

@@ -1,0 +1,272 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* <stage>.h and <stage>.c, and the runtime files that go with them. */
+#include "emit/emit.h"
+
+#include <string.h>
+
+#include "emit/emission.h"
+#include "simulate/simulate.h"
+
+/* An include guard: the stage's name in capitals. */
+static const char *guard_of(const pw_emission *e)
+{
+    char *guard = pw_arena_print(e->arena, "%s_H", e->stage);
+    for (char *c = guard; *c; c++)
+        if (*c >= 'a' && *c <= 'z') *c = (char)(*c - 'a' + 'A');
+    return guard;
+}
+
+static void extern_c(pw_code *file, bool opens)
+{
+    pw_directive(file, "#ifdef __cplusplus");
+    if (opens) pw_say(file, "extern \"C\" {");
+    else pw_say(file, "}");
+    pw_directive(file, "#endif");
+}
+
+static bool has_state(const pw_emission *e)
+{
+    for (int k = 0; k < e->r->count; k++)
+        for (int i = 0; i < 6; i++)
+            if (e->kernel[k]->member(&e->r->section[k], i)) return true;
+    return e->counts;
+}
+
+static void state_struct(const pw_emission *e, pw_code *file)
+{
+    pw_code *comment = pw_comment(file);
+    pw_prose(comment, "The state of one channel. Reset it, or settle it, before its first sample.");
+    pw_code *members = pw_block(file, "typedef struct", " $_state;");
+    for (int k = 0; k < e->r->count; k++)
+        e->kernel[k]->fields(e, &e->r->section[k], pw_section_group(members, k + 1));
+    if (e->counts) pw_say_with(members, "uint32_t clipped;", "see $_clipped");
+    if (!has_state(e)) pw_say_with(members, "char none;", "a gain keeps nothing");
+}
+
+static void prototypes(const pw_emission *e, pw_code *file)
+{
+    pw_say_with(file, "void $_reset($_state *s);", "at rest, as if 0 had been there for ever");
+    pw_say_with(file, "@ $_step($_state *s, @ x);", "one sample");
+    pw_say_with(file, "void $_block($_state *s, const @ *in, @ *out, size_t n);", "in may be out");
+    pw_blank(file);
+    pw_code *comment = pw_comment(file);
+    if (e->integrates)
+        pw_prose(comment, "This stage integrates: no steady state goes with a constant input, so settle does what reset does.");
+    else if (e->fixed)
+        pw_prose(comment, "The state as if x had been there for ever, so that a filter starts without a thump. Also clears the count of clips.");
+    else
+        pw_prose(comment, "The state as if x had been there for ever, so that a filter starts without a thump.");
+    pw_say(file, "void $_settle($_state *s, @ x);");
+    if (!e->fixed) return;
+    pw_blank(file);
+    pw_comment_line(file, e->counts
+        ? (e->r->wrap ? "How many times a node wrapped since reset, modulo 2^32."
+                      : "How many times a node clipped since reset, modulo 2^32.")
+        : "How many times a node clipped since reset: always 0, no node can.");
+    pw_say(file, "uint32_t $_clipped(const $_state *s);");
+}
+
+static void header_file(const pw_emission *e, pw_code *header)
+{
+    const char *guard = guard_of(e);
+    pw_comment_line(header, "SPDX-License-Identifier: 0BSD");
+    pw_story(e, pw_comment(header));
+    pw_directive(header, pw_arena_print(e->arena, "#ifndef %s", guard));
+    pw_directive(header, pw_arena_print(e->arena, "#define %s", guard));
+    pw_blank(header);
+    pw_directive(header, "#include <stddef.h>");
+    pw_directive(header, "#include <stdint.h>");
+    if (!e->standalone) {
+        pw_blank(header);
+        pw_directive(header, pw_arena_print(e->arena, "#include \"pw_%s.h\"", e->family));
+        pw_blank(header);
+        pw_directive(header, "#if PW_RUNTIME_FORMAT != 1");
+        pw_directive(header, "#error \"$ was made for format 1 of the runtime: build it again, or take the pw_ files that were made with it\"");
+        pw_directive(header, "#endif");
+    }
+    pw_blank(header);
+    extern_c(header, true);
+    pw_blank(header);
+    state_struct(e, header);
+    pw_blank(header);
+    prototypes(e, header);
+}
+
+static void close_header(pw_code *header)
+{
+    pw_blank(header);
+    extern_c(header, false);
+    pw_directive(header, "#endif");
+}
+
+/* What standalone code asks of the machine; the runtime has its own checks. */
+static void machine_checks(const pw_emission *e, pw_code *file)
+{
+    if (!e->standalone) return;
+    if (e->fixed) {
+        pw_directive(file, "#if !defined(INT16_MAX) || !defined(INT32_MAX) || !defined(INT64_MAX)");
+        pw_directive(file, "#error \"$ needs int16_t, int32_t and int64_t: use a compiler with C99's <stdint.h>\"");
+        pw_directive(file, "#endif");
+        pw_say(file, "typedef char $_needs_a_compiler_whose_right_shift_is_arithmetic"
+                     "[((int32_t)-3 >> 1) == -2 && ((int64_t)-3 >> 1) == -2 ? 1 : -1];");
+    } else if (e->single) {
+        pw_say(file, "typedef char $_needs_an_ieee_float_of_32_bits_use_sample_q15_or_q31"
+                     "[sizeof(float) == 4 && FLT_MANT_DIG == 24 ? 1 : -1];");
+    } else {
+        pw_say(file, "typedef char $_needs_a_double_of_64_bits_use_sample_float32_or_q31"
+                     "[sizeof(double) == 8 && DBL_MANT_DIG == 53 ? 1 : -1];");
+    }
+}
+
+static void sections(const pw_emission *e, pw_code *file)
+{
+    for (int k = 0; k < e->r->count; k++) {
+        const pw_words *w = &e->r->section[k];
+        const pw_kernel *kernel = e->kernel[k];
+        if (kernel->helpers) kernel->helpers(e, w, file);
+    }
+    for (int k = 0; k < e->r->count; k++) {
+        const pw_words *w = &e->r->section[k];
+        const pw_kernel *kernel = e->kernel[k];
+        pw_code *group = pw_section_group(file, k + 1);
+        pw_blank(group);
+        pw_comment_line(group, pw_arena_print(e->arena, "---- Section %d: %s, order %d ----", k + 1,
+                                              e->standalone ? kernel->name : pw_structure_word(w->structure), w->order));
+        pw_blank(group);
+        kernel->constants(e, w, group);
+        if (kernel->step) {
+            pw_blank(group);
+            kernel->step(e, w, pw_function(group, "static inline @ $_section_#($_state *s, @ x)"));
+        }
+        if (!e->integrates) {
+            pw_blank(group);
+            kernel->settle(e, w, pw_function(group, "static @ $_settle_#($_state *s, @ x)"));
+        }
+    }
+}
+
+static bool all_step(const pw_emission *e)
+{
+    for (int k = 0; k < e->r->count; k++)
+        if (!e->kernel[k]->step || e->kernel[k]->block) return false;
+    return true;
+}
+
+/* Sample by sample: every section has a step. The block works on a copy of the state, so that the
+ * compiler may keep it in registers though out might point into it. */
+static void stepping(const pw_emission *e, pw_code *file)
+{
+    pw_blank(file);
+    pw_code *f = pw_function(file, "static inline @ $_cascade($_state *s, @ x)");
+    for (int k = 0; k < e->r->count; k++) pw_say(pw_section_group(f, k + 1), "x = $_section_#(s, x);");
+    pw_say(f, "return x;");
+    pw_blank(file);
+    f = pw_function(file, "@ $_step($_state *s, @ x)");
+    pw_say(f, "return $_cascade(s, x);");
+    pw_blank(file);
+    f = pw_function(file, "void $_block($_state *s, const @ *in, @ *out, size_t n)");
+    pw_say(f, "$_state local = *s;");
+    pw_say(f, "size_t i;");
+    pw_say(f, "for (i = 0; i < n; i++) out[i] = $_cascade(&local, in[i]);");
+    pw_say(f, "*s = local;");
+}
+
+/* Section by section over the block; a step is a block of one. */
+static void blocking(const pw_emission *e, pw_code *file)
+{
+    pw_blank(file);
+    pw_code *f = pw_function(file, "void $_block($_state *s, const @ *in, @ *out, size_t n)");
+    bool needs_s = has_state(e) && (e->fixed || e->r->section[0].order > 0 || e->r->count > 1);
+    if (!needs_s) pw_say(f, "(void)s;");
+    for (int k = 0; k < e->r->count; k++) {
+        const pw_words *w = &e->r->section[k];
+        pw_code *group = pw_section_group(f, k + 1);
+        const char *in = k == 0 ? "in" : "out";
+        if (e->kernel[k]->block) {
+            e->kernel[k]->block(e, w, in, group);
+        } else {
+            pw_code *loop = pw_block(group, "for (size_t i = 0; i < n; i++)", "");
+            pw_say(loop, pw_arena_print(e->arena, "out[i] = $_section_#(s, %s[i]);", in));
+        }
+    }
+    pw_blank(file);
+    f = pw_function(file, "@ $_step($_state *s, @ x)");
+    pw_say(f, "$_block(s, &x, &x, 1);");
+    pw_say(f, "return x;");
+}
+
+static void interface(const pw_emission *e, pw_code *file)
+{
+    pw_blank(file);
+    pw_code *f = pw_function(file, "void $_reset($_state *s)");
+    pw_say(f, "memset(s, 0, sizeof *s);");
+    if (all_step(e)) stepping(e, file);
+    else blocking(e, file);
+    pw_blank(file);
+    f = pw_function(file, "void $_settle($_state *s, @ x)");
+    pw_say(f, "$_reset(s);");
+    if (e->integrates) pw_say(f, "(void)x;");
+    for (int k = 0; k < e->r->count && !e->integrates; k++) {
+        bool last = k == e->r->count - 1;
+        pw_say(pw_section_group(f, k + 1), last ? "(void)$_settle_#(s, x);" : "x = $_settle_#(s, x);");
+    }
+    if (!e->fixed) return;
+    pw_blank(file);
+    f = pw_function(file, "uint32_t $_clipped(const $_state *s)");
+    if (!e->counts) pw_say(f, "(void)s;");
+    pw_say(f, e->counts ? "return s->clipped;" : "return 0;");
+}
+
+static void source_file(const pw_emission *e, pw_code *source)
+{
+    pw_comment_line(source, "SPDX-License-Identifier: 0BSD");
+    pw_code *comment = pw_comment(source);
+    pw_prose(comment, "Made by polewright %s; the story is in %s.h. Build: %s", PW_VERSION, e->stage, pw_build_line(e));
+    pw_directive(source, "#include \"$.h\"");
+    pw_blank(source);
+    if (e->standalone && !e->fixed) pw_directive(source, "#include <float.h>");
+    pw_directive(source, "#include <string.h>");
+    pw_blank(source);
+    machine_checks(e, source);
+    sections(e, source);
+    interface(e, source);
+}
+
+static pw_status copy_file(const char *shipped, const char *name, pw_fileset *out)
+{
+    char path[4096];
+    pw_text text = {0};
+    pw_status status = pw_data_path(shipped, path, sizeof path);
+    if (status == PW_OK) status = pw_file_read(path, 1 << 20, &text);
+    if (status == PW_OK) pw_text_add_bytes(pw_fileset_add(out, name), text.data, text.size);
+    pw_text_free(&text);
+    return status == PW_OK ? PW_OK : PW_FAILED;
+}
+
+static pw_status copy_runtime(const pw_emission *e, pw_fileset *out)
+{
+    const char *header = pw_arena_print(e->arena, "pw_%s.h", e->family);
+    const char *source = pw_arena_print(e->arena, "pw_%s.c", e->family);
+    pw_status status = copy_file("include/polewright/pw_runtime.h", "pw_runtime.h", out);
+    if (status == PW_OK && e->fixed) status = copy_file("runtime/pw_fixed.h", "pw_fixed.h", out);
+    if (status == PW_OK) status = copy_file(pw_arena_print(e->arena, "runtime/%s", header), header, out);
+    if (status == PW_OK) status = copy_file(pw_arena_print(e->arena, "runtime/%s", source), source, out);
+    return status;
+}
+
+pw_status pw_emit_c(const pw_results *results, pw_fileset *out)
+{
+    pw_arena arena = {0};
+    pw_emission e;
+    pw_emission_begin(&e, results, &arena);
+    pw_code *header = pw_code_file(&arena, e.stage, e.type), *source = pw_code_file(&arena, e.stage, e.type);
+    header_file(&e, header);
+    source_file(&e, source);
+    pw_emit_converters(&e, header, source);
+    close_header(header);
+    pw_code_render(header, pw_fileset_add(out, pw_arena_print(&arena, "%s.h", e.stage)));
+    pw_code_render(source, pw_fileset_add(out, pw_arena_print(&arena, "%s.c", e.stage)));
+    pw_status status = e.standalone ? PW_OK : copy_runtime(&e, out);
+    pw_arena_free(&arena);
+    return status;
+}

@@ -1,0 +1,90 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Which kernel writes which section, and what kernels share. */
+#include <math.h>
+#include <stdio.h>
+#include <string.h>
+
+#include "emit/emission.h"
+#include "simulate/simulate.h"
+
+/* In order of preference. */
+static const pw_kernel *const tables[] = {
+    pw_kernels_runtime,
+    pw_kernels_fixed,
+    pw_kernels_float,
+};
+
+static const pw_kernel *choose(const pw_emission *e, const pw_words *w)
+{
+    for (size_t t = 0; t < sizeof tables / sizeof tables[0]; t++)
+        for (const pw_kernel *kernel = tables[t]; kernel->name; kernel++)
+            if (kernel->fits(e, w)) return kernel;
+    return NULL;
+}
+
+void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena)
+{
+    static const char *const type[] = {"float", "double", "int32_t", "int16_t"};
+    static const char *const family[] = {"f32", "f64", "q31", "q15"};
+    static const int bits[] = {0, 0, 32, 16};
+    const pw_realisation *r = &results->realisation;
+    *e = (pw_emission){
+        .results = results, .r = r, .target = &results->target, .stage = results->stage->name,
+        .type = type[r->sample], .family = family[r->sample], .bits = bits[r->sample],
+        .fixed = bits[r->sample] > 0, .standalone = results->stage->arithmetic.standalone,
+        .single = r->sample == PW_FLOAT32, .arena = arena,
+    };
+    for (int k = 0; k < r->count; k++) {
+        e->kernel[k] = choose(e, &r->section[k]);
+        e->integrates = e->integrates || pw_section_integrates(&r->section[k], e->fixed);
+        e->counts = e->counts || !pw_clamp_is_needless(e, &r->section[k]);
+    }
+    e->counts = e->fixed && (e->counts || !e->standalone);
+}
+
+/* The proof holds for inputs within the peak; only where the peak is full scale does it hold for
+ * whatever the converter may deliver. */
+bool pw_clamp_is_needless(const pw_emission *e, const pw_words *w)
+{
+    return w->cannot_clip && e->r->input_peak >= 1;
+}
+
+double pw_direct_reach(const pw_emission *e, const pw_words *w)
+{
+    double largest = ldexp(1, e->bits - 1);
+    double p = largest * (fabs((double)w->b[0]) + fabs((double)w->b[1]) + fabs((double)w->b[2]));
+    int right = w->b_fraction - w->a_fraction;
+    double in = right > 0 ? p + ldexp(1, right - 1) : ldexp(p, -right);
+    double aligned = right > 0 ? ldexp(p, -right) + 1 : ldexp(p, -right);
+    double error = ldexp(1, w->a_fraction);
+    double acc = aligned + largest * (fabs((double)w->a[1]) + fabs((double)w->a[2]))
+                 + error * (fabs((double)w->k1) + fabs((double)w->k2)) + ldexp(1, w->a_fraction - 1);
+    return fmax(in, acc);
+}
+
+const char *pw_reach_note(const pw_emission *e, double reach)
+{
+    int power;
+    frexp(reach, &power);
+    return pw_arena_print(e->arena, "at most %.4g < 2^%d, whatever the samples", reach, power);
+}
+
+const char *pw_bound_note(const pw_emission *e, int section, const char *node)
+{
+    char name[sizeof e->r->node[0].name];
+    snprintf(name, sizeof name, "section %d %s", section, node);
+    for (int i = 0; i < e->r->nodes; i++) {
+        const pw_node *n = &e->r->node[i];
+        if (strcmp(n->name, name)) continue;
+        if (!isfinite(n->bound)) return "an integrator: no bound, it clamps";
+        return pw_arena_print(e->arena, "proved: |%s| <= %.6g of full scale%s", node, n->bound,
+                              e->r->input_peak < 1 ? " for inputs within the peak" : "");
+    }
+    return "";
+}
+
+const char *pw_word_note(const pw_emission *e, const char *name, double realised)
+{
+    char value[PW_NUMBER_ROOM];
+    return pw_arena_print(e->arena, "%s = %s", name, pw_shortest(value, realised));
+}
