@@ -114,7 +114,7 @@ check-all: all                   ## the tests and every target in full
 
 sizes: all                       ## the size of the program and of each runtime file
 	@size build/polewright; for f in runtime/*.c; do \
-	  $(CC) -std=c99 -Os -Iruntime -Iinclude -c -o $(OUT)/size.o $$f && size $(OUT)/size.o | tail -n 1; done
+	  $(CC) -std=c99 -Os -Iruntime -Iinclude/polewright -c -o $(OUT)/size.o $$f && size $(OUT)/size.o | tail -n 1; done
 
 # ---- Installing ----
 

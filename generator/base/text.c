@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "base/text.h"
 
+#include <float.h>
 #include <math.h>
 #include <stdarg.h>
 #include <stdio.h>
@@ -60,7 +61,8 @@ void pw_text_free(pw_text *text)
 char *pw_shortest(char *buffer, double value)
 {
     if (isnan(value)) return strcpy(buffer, "nan");
-    for (int digits = 1; digits <= 17; digits++) {
+    /* A normal double is the nearest to any decimal of 15 digits, so %.15g finds every shorter one. */
+    for (int digits = fabs(value) < DBL_MIN ? 1 : 15; digits <= 17; digits++) {
         snprintf(buffer, PW_NUMBER_ROOM, "%.*g", digits, value);
         if (strtod(buffer, NULL) == value) break;
     }
@@ -70,7 +72,7 @@ char *pw_shortest(char *buffer, double value)
 char *pw_shortest_float(char *buffer, float value)
 {
     if (isnan(value)) return strcpy(buffer, "nan");
-    for (int digits = 1; digits <= 9; digits++) {
+    for (int digits = fabsf(value) < FLT_MIN ? 1 : 6; digits <= 9; digits++) {
         snprintf(buffer, PW_NUMBER_ROOM, "%.*g", digits, (double)value);
         if (strtof(buffer, NULL) == value) break;
     }

@@ -31,13 +31,13 @@ pw_code *pw_code_file(pw_arena *arena, const char *stage, const char *sample)
     return file;
 }
 
-void pw_say(pw_code *in, const char *line) { append(in, PW_CODE_LINE, line); }
+void pw_put(pw_code *in, const char *line) { append(in, PW_CODE_LINE, line); }
 void pw_directive(pw_code *in, const char *text) { append(in, PW_CODE_DIRECTIVE, text); }
 void pw_blank(pw_code *in) { append(in, PW_CODE_BLANK, ""); }
 pw_code *pw_function(pw_code *in, const char *head) { return append(in, PW_CODE_FUNCTION, head); }
 pw_code *pw_comment(pw_code *in) { return append(in, PW_CODE_COMMENT, ""); }
 
-void pw_say_with(pw_code *in, const char *line, const char *note)
+void pw_put_with(pw_code *in, const char *line, const char *note)
 {
     append(in, PW_CODE_LINE, line)->note = note;
 }
@@ -47,6 +47,18 @@ void pw_constant(pw_code *in, const char *declaration, pw_number number, const c
     pw_code *item = append(in, PW_CODE_CONSTANT, declaration);
     item->number = number;
     item->note = note;
+}
+
+void pw_assign(pw_code *in, const char *what, pw_number number)
+{
+    pw_constant(in, what, number, NULL);
+}
+
+void pw_extern_c(pw_code *file, bool opens)
+{
+    pw_directive(file, "#ifdef __cplusplus");
+    pw_put(file, opens ? "extern \"C\" {" : "}");
+    pw_directive(file, "#endif");
 }
 
 void pw_entry(pw_code *in, pw_number number, const char *note)

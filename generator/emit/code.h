@@ -49,11 +49,12 @@ pw_code *pw_code_file(pw_arena *arena, const char *stage, const char *sample);
 void pw_code_render(const pw_code *file, pw_text *out);
 
 /* Items at the end of in. Texts are borrowed: they must live as long as the arena. */
-void pw_say(pw_code *in, const char *line);
-void pw_say_with(pw_code *in, const char *line, const char *note);
+void pw_put(pw_code *in, const char *line);
+void pw_put_with(pw_code *in, const char *line, const char *note);
 void pw_directive(pw_code *in, const char *text);
 void pw_blank(pw_code *in);
 void pw_constant(pw_code *in, const char *declaration, pw_number number, const char *note);
+void pw_assign(pw_code *in, const char *what, pw_number number);         /* what = number; */
 void pw_entry(pw_code *in, pw_number number, const char *note);
 void pw_array_words(pw_code *in, const char *declaration, const int32_t *words, long count);
 void pw_array_reals(pw_code *in, const char *declaration, const double *reals, long count, bool single);
@@ -62,6 +63,9 @@ pw_code *pw_function(pw_code *in, const char *head);
 pw_code *pw_comment(pw_code *in);
 void pw_comment_line(pw_code *in, const char *prose);   /* a comment of one paragraph */
 void pw_prose(pw_code *comment, const char *format, ...) PW_PRINTF(2, 3);
+
+/* The lines that make a header fit for C++: before its declarations (opens) and after them. */
+void pw_extern_c(pw_code *file, bool opens);
 
 /* An invisible group at the end of in whose items carry this section number. */
 pw_code *pw_section_group(pw_code *in, int section);

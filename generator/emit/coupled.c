@@ -14,8 +14,8 @@ const char *pw_coupled_member(const pw_words *w, int k)
 void pw_coupled_fields(const pw_emission *e, const pw_words *w, pw_code *in)
 {
     (void)w;
-    pw_say_with(in, "@ u1_#;", pw_arena_print(e->arena, "rotating state of section %d", in->section));
-    pw_say(in, "@ u2_#;");
+    pw_put_with(in, "@ u1_#;", pw_arena_print(e->arena, "rotating state of section %d", in->section));
+    pw_put(in, "@ u2_#;");
 }
 
 /* gain = high 2^31 + low, so that its product with a sample fits 64 bits by parts. */
@@ -65,7 +65,7 @@ static void rounded(const pw_emission *e, pw_code *body, const char *name, const
     const char *text = *sum ? sum : "0";
     if (!e->r->truncate && fraction > 0) text = pw_arena_print(e->arena, "%s + %s", text, half);
     if (fraction > 0) text = pw_arena_print(e->arena, "(%s) >> %s", text, by);
-    pw_say_with(body, pw_arena_print(e->arena, "const int64_t %s = %s;", name, text), pw_reach_note(e, most));
+    pw_put_with(body, pw_arena_print(e->arena, "const int64_t %s = %s;", name, text), pw_reach_note(e, most));
 }
 
 static void output_sum(const pw_emission *e, const pw_words *w, pw_code *body, const char *u1, const char *u2)
@@ -84,9 +84,9 @@ void pw_coupled_step(const pw_emission *e, const pw_words *w, pw_code *body)
     v1 = pw_fixed_term(e, v1, '+', PW_ACC_64, w->g, "g", "x");
     const char *v2 = pw_fixed_term(e, "", '+', PW_ACC_64, w->omega, "omega", "u1");
     v2 = pw_fixed_term(e, v2, '+', PW_ACC_64, w->sigma, "sigma", "u2");
-    pw_say(body, "const @ u1 = s->u1_#, u2 = s->u2_#;");
-    if (!w->sigma && !w->omega) pw_say(body, "(void)u1, (void)u2;");
-    if (!w->g && !w->d) pw_say(body, "(void)x;");
+    pw_put(body, "const @ u1 = s->u1_#, u2 = s->u2_#;");
+    if (!w->sigma && !w->omega) pw_put(body, "(void)u1, (void)u2;");
+    if (!w->g && !w->d) pw_put(body, "(void)x;");
     output_sum(e, w, body, "u1", "u2");
     rounded(e, body, "v1", v1, "$_half_#", "$_shift_#", w->a_fraction,
             reach(e, w->sigma, w->omega, w->g, w->a_fraction));
@@ -95,9 +95,9 @@ void pw_coupled_step(const pw_emission *e, const pw_words *w, pw_code *body)
     pw_fixed_into_word(e, w, body, "y", "v", "output");
     pw_fixed_into_word(e, w, body, "new1", "v1", "u1");
     pw_fixed_into_word(e, w, body, "new2", "v2", "u2");
-    pw_say(body, "s->u1_# = new1;");
-    pw_say(body, "s->u2_# = new2;");
-    pw_say(body, "return y;");
+    pw_put(body, "s->u1_# = new1;");
+    pw_put(body, "s->u2_# = new2;");
+    pw_put(body, "return y;");
 }
 
 /* (high 2^31 + low) x, rounded: the low 31 bits of the product cannot reach the rounding. */
@@ -116,13 +116,13 @@ void pw_coupled_settle(const pw_emission *e, const pw_words *w, pw_code *body)
     pw_coupled_steady(w, gain, &fraction);
     const char *p1 = steady_product(e, gain[0], "u1_high", "u1_low");
     const char *p2 = steady_product(e, gain[1], "u2_high", "u2_low");
-    pw_say(body, "const int64_t half = (int64_t)1 << ($_steady_shift_# - 1);");
-    pw_say(body, pw_arena_print(e->arena, "const int64_t p1 = %s;", p1));
-    pw_say(body, pw_arena_print(e->arena, "const int64_t p2 = %s;", p2));
-    pw_say(body, "const @ u1 = $_clamp((p1 + half) >> $_steady_shift_#);");
-    pw_say(body, "const @ u2 = $_clamp((p2 + half) >> $_steady_shift_#);");
+    pw_put(body, "const int64_t half = (int64_t)1 << ($_steady_shift_# - 1);");
+    pw_put(body, pw_arena_print(e->arena, "const int64_t p1 = %s;", p1));
+    pw_put(body, pw_arena_print(e->arena, "const int64_t p2 = %s;", p2));
+    pw_put(body, "const @ u1 = $_clamp((p1 + half) >> $_steady_shift_#);");
+    pw_put(body, "const @ u2 = $_clamp((p2 + half) >> $_steady_shift_#);");
     output_sum(e, w, body, "u1", "u2");
-    pw_say(body, "s->u1_# = u1;");
-    pw_say(body, "s->u2_# = u2;");
-    pw_say(body, "return $_clamp(v);");
+    pw_put(body, "s->u1_# = u1;");
+    pw_put(body, "s->u2_# = u2;");
+    pw_put(body, "return $_clamp(v);");
 }

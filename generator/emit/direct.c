@@ -23,7 +23,7 @@ pw_accumulator pw_direct_accumulator(const pw_emission *e, const pw_words *w)
 {
     if (pw_direct_reach(e, w) < ldexp(1, 31)) return PW_ACC_32;
     bool products_fit = e->bits == 16 && e->r->coefficient_bits == 16;
-    if (products_fit && w->fits_32 && align_of(w) == 0 && e->r->input_peak >= 1) return PW_ACC_MODULO;
+    if (products_fit && w->fits_32 && align_of(w) == 0) return PW_ACC_MODULO;
     return PW_ACC_64;
 }
 
@@ -47,7 +47,7 @@ void pw_direct_fields(const pw_emission *e, const pw_words *w, pw_code *in)
         const char *line = pw_arena_print(e->arena, "%s %s;", k < E1 ? "@" : "int32_t", member);
         const char *meaning = k == X1 ? pw_arena_print(e->arena, note[X1], in->section)
                             : k == Y1 ? pw_arena_print(e->arena, note[Y1], in->section) : note[k];
-        pw_say_with(in, line, meaning);
+        pw_put_with(in, line, meaning);
     }
 }
 
@@ -88,8 +88,8 @@ static void align_statement(const pw_words *w, pw_code *body, const char *name)
 {
     const char *right = *name == 'p' ? "p = (p + $_align_half_#) >> $_align_#;"
                                      : "acc = (acc + $_align_half_#) >> $_align_#;";
-    if (align_of(w) > 0) pw_say(body, right);
-    if (align_of(w) < 0) pw_say(body, *name == 'p' ? "p *= $_align_#;" : "acc *= $_align_#;");
+    if (align_of(w) > 0) pw_put(body, right);
+    if (align_of(w) < 0) pw_put(body, *name == 'p' ? "p *= $_align_#;" : "acc *= $_align_#;");
 }
 
 /* The products of b, aligned, less those of a, plus the errors fed back: in acc. */
@@ -99,7 +99,7 @@ static void accumulate(const pw_emission *e, const pw_words *w, pw_accumulator a
     p = pw_fixed_term(e, p, '+', acc, w->b[0], "b0", "x");
     p = pw_fixed_term(e, p, '+', acc, w->b[1], "b1", factor[X1]);
     p = pw_fixed_term(e, p, '+', acc, w->b[2], "b2", factor[X2]);
-    pw_say_with(body, pw_arena_print(e->arena, "%s acc = %s;", pw_accumulator_type(acc), *p ? p : "0"),
+    pw_put_with(body, pw_arena_print(e->arena, "%s acc = %s;", pw_accumulator_type(acc), *p ? p : "0"),
                 acc == PW_ACC_MODULO ? "modulo 2^32: its last value fits 32 bits, whatever the samples"
                                      : pw_reach_note(e, pw_direct_reach(e, w)));
     align_statement(w, body, "acc");
@@ -110,7 +110,7 @@ static void accumulate(const pw_emission *e, const pw_words *w, pw_accumulator a
         rest = pw_fixed_term(e, rest, '+', acc, w->k2, "k2", factor[E2]);
     }
     const char *note = pw_bound_note(e, body->section, "accumulator");
-    if (rest[3]) pw_say_with(body, pw_arena_print(e->arena, "acc = %s;", rest), *note ? note : NULL);
+    if (rest[3]) pw_put_with(body, pw_arena_print(e->arena, "acc = %s;", rest), *note ? note : NULL);
 }
 
 static void round_off(const pw_emission *e, const pw_words *w, pw_accumulator acc, pw_code *body)
@@ -120,21 +120,21 @@ static void round_off(const pw_emission *e, const pw_words *w, pw_accumulator ac
                     : acc == PW_ACC_MODULO ? "(acc + (uint32_t)$_half_#)" : "(acc + $_half_#)";
     const char *cast = acc == PW_ACC_MODULO ? "(int32_t)" : "";
     const char *by = w->a_fraction > 0 ? " >> $_shift_#" : "";
-    pw_say(body, pw_arena_print(e->arena, "const %s v = %s%s%s;", wide, cast, sum, by));
+    pw_put(body, pw_arena_print(e->arena, "const %s v = %s%s%s;", wide, cast, sum, by));
 }
 
 static void remember(const pw_words *w, pw_accumulator acc, pw_code *body)
 {
-    if (pw_direct_member(w, X2)) pw_say(body, "s->x2_# = s->x1_#;");
-    if (pw_direct_member(w, X1)) pw_say(body, "s->x1_# = x;");
-    if (pw_direct_member(w, Y2)) pw_say(body, "s->y2_# = s->y1_#;");
-    if (pw_direct_member(w, Y1)) pw_say(body, "s->y1_# = y;");
-    if (pw_direct_member(w, E2)) pw_say(body, "s->e2_# = s->e1_#;");
+    if (pw_direct_member(w, X2)) pw_put(body, "s->x2_# = s->x1_#;");
+    if (pw_direct_member(w, X1)) pw_put(body, "s->x1_# = x;");
+    if (pw_direct_member(w, Y2)) pw_put(body, "s->y2_# = s->y1_#;");
+    if (pw_direct_member(w, Y1)) pw_put(body, "s->y1_# = y;");
+    if (pw_direct_member(w, E2)) pw_put(body, "s->e2_# = s->e1_#;");
     if (pw_direct_member(w, E1)) {
         const char *left = acc == PW_ACC_64 ? "s->e1_# = y == v ? (int32_t)(acc - v * ((int64_t)1 << $_shift_#)) : 0;"
             : acc == PW_ACC_32 ? "s->e1_# = y == v ? acc - v * ((int32_t)1 << $_shift_#) : 0;"
             : "s->e1_# = y == v ? (int32_t)(acc - (uint32_t)v * ((uint32_t)1 << $_shift_#)) : 0;";
-        pw_say(body, left);
+        pw_put(body, left);
     }
 }
 
@@ -143,8 +143,8 @@ static void spare_parameters(const pw_words *w, pw_code *body)
 {
     bool state = false;
     for (int k = 0; k < MEMBERS; k++) state = state || pw_direct_member(w, k);
-    if (!state) pw_say(body, "(void)s;");
-    if (!w->b[0] && !w->b[1] && !w->b[2]) pw_say(body, "(void)x;");
+    if (!state) pw_put(body, "(void)s;");
+    if (!w->b[0] && !w->b[1] && !w->b[2]) pw_put(body, "(void)x;");
 }
 
 static void direct_step(const pw_emission *e, const pw_words *w, pw_code *body)
@@ -155,7 +155,7 @@ static void direct_step(const pw_emission *e, const pw_words *w, pw_code *body)
     round_off(e, w, acc, body);
     pw_fixed_into_word(e, w, body, "y", "v", "output");
     remember(w, acc, body);
-    pw_say(body, "return y;");
+    pw_put(body, "return y;");
 }
 
 /* A gain has no state: its steady output is one step's, uncounted. */
@@ -165,7 +165,7 @@ static void gain_settle(const pw_emission *e, const pw_words *w, pw_code *body)
     pw_accumulator acc = pw_direct_accumulator(e, w);
     accumulate(e, w, acc, body);
     round_off(e, w, acc, body);
-    pw_say(body, "return $_clamp(v);");
+    pw_put(body, "return $_clamp(v);");
 }
 
 void pw_direct_settle(const pw_emission *e, const pw_words *w, pw_code *body)
@@ -176,17 +176,17 @@ void pw_direct_settle(const pw_emission *e, const pw_words *w, pw_code *body)
     }
     spare_parameters(w, body);
     if (pw_direct_gain_sum(w) == 0) {
-        pw_say(body, "const @ y = 0;");
+        pw_put(body, "const @ y = 0;");
     } else {
-        pw_say(body, "int64_t p = (int64_t)$_b_# * x;");
+        pw_put(body, "int64_t p = (int64_t)$_b_# * x;");
         align_statement(w, body, "p");
-        pw_say(body, "const @ y = $_clamp($_ratio(p, $_rest_#));");
+        pw_put(body, "const @ y = $_clamp($_ratio(p, $_rest_#));");
     }
-    if (pw_direct_member(w, X1)) pw_say(body, "s->x1_# = x;");
-    if (pw_direct_member(w, X2)) pw_say(body, "s->x2_# = x;");
-    if (pw_direct_member(w, Y1)) pw_say(body, "s->y1_# = y;");
-    if (pw_direct_member(w, Y2)) pw_say(body, "s->y2_# = y;");
-    pw_say(body, "return y;");
+    if (pw_direct_member(w, X1)) pw_put(body, "s->x1_# = x;");
+    if (pw_direct_member(w, X2)) pw_put(body, "s->x2_# = x;");
+    if (pw_direct_member(w, Y1)) pw_put(body, "s->y1_# = y;");
+    if (pw_direct_member(w, Y2)) pw_put(body, "s->y2_# = y;");
+    pw_put(body, "return y;");
 }
 
 /* ---- the table ---- */
@@ -206,7 +206,7 @@ static bool coupled_fits(const pw_emission *e, const pw_words *w)
     return e->fixed && w->structure == PW_COUPLED;
 }
 
-const pw_kernel pw_kernels_fixed[] = {
+const pw_form pw_forms_fixed[] = {
     {.name = "gain", .fits = gain_fits, .fields = pw_direct_fields, .constants = pw_direct_constants,
      .helpers = pw_fixed_helpers, .step = direct_step, .settle = pw_direct_settle, .member = pw_direct_member},
     {.name = "direct form 1", .fits = direct_fits, .fields = pw_direct_fields,

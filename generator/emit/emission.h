@@ -1,10 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* What the files of emit/ share: the emission under way, and the kernels that write sections.
  *
- * A kernel is a row of functions that write the code items of one section. For each section the
- * first kernel that fits is taken, in the order of kernels.c: those for a target's instructions
- * first, the portable ones last. To add kernels for a target, write an array of pw_kernel in a file of
- * its own, end it with a row without a name, and name it in kernels.c. */
+ * A form is a row of functions that write the code items of one section. For each section the first
+ * form that fits is taken, in the order of forms.c. To add forms, write an array of pw_form in a
+ * file of its own, end it with a row without a name, and name it in forms.c. Kernels in the
+ * instructions of a part are another matter: see cascade.h. */
 #ifndef PW_EMIT_EMISSION_H
 #define PW_EMIT_EMISSION_H
 
@@ -23,11 +23,11 @@ typedef struct pw_emission {
     bool single;                 /* float32 */
     bool integrates;             /* a section does: settle is reset */
     bool counts;                 /* a clamp is left somewhere, so that there is something to count */
-    const struct pw_kernel *kernel[PW_MAX_SECTIONS];
+    const struct pw_form *form[PW_MAX_SECTIONS];
     pw_arena *arena;
 } pw_emission;
 
-typedef struct pw_kernel {
+typedef struct pw_form {
     const char *name;            /* for the comment above a section: "direct-1, 64-bit accumulator" */
     bool (*fits)(const pw_emission *e, const pw_words *w);
     /* Members of the state struct. */
@@ -48,17 +48,14 @@ typedef struct pw_kernel {
     /* The member that holds word k of the simulation's state (x1 x2 y1 y2 e1 e2, or u1 u2), with #;
      * null where the section keeps no such word. */
     const char *(*member)(const pw_words *w, int k);
-} pw_kernel;
+} pw_form;
 
-/* Sets everything up; kernels are chosen. */
+/* Sets everything up; forms are chosen. */
 void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena);
 
-extern const pw_kernel pw_kernels_runtime[], pw_kernels_fixed[], pw_kernels_float[];
+extern const pw_form pw_forms_runtime[], pw_forms_fixed[], pw_forms_float[];
 
-/* ---- what kernels share ---- */
-
-/* Whether the clamps of this section may be left out: proved for any input, also beyond the peak. */
-bool pw_clamp_is_needless(const pw_emission *e, const pw_words *w);
+/* ---- what forms share ---- */
 
 /* The largest magnitude that the accumulator of a direct section can reach for any samples and any
  * state, half a step included. */

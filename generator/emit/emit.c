@@ -16,19 +16,11 @@ static const char *guard_of(const pw_emission *e)
     return guard;
 }
 
-static void extern_c(pw_code *file, bool opens)
-{
-    pw_directive(file, "#ifdef __cplusplus");
-    if (opens) pw_say(file, "extern \"C\" {");
-    else pw_say(file, "}");
-    pw_directive(file, "#endif");
-}
-
 static bool has_state(const pw_emission *e)
 {
     for (int k = 0; k < e->r->count; k++)
         for (int i = 0; i < 6; i++)
-            if (e->kernel[k]->member(&e->r->section[k], i)) return true;
+            if (e->form[k]->member(&e->r->section[k], i)) return true;
     return e->counts;
 }
 
@@ -38,16 +30,17 @@ static void state_struct(const pw_emission *e, pw_code *file)
     pw_prose(comment, "The state of one channel. Reset it, or settle it, before its first sample.");
     pw_code *members = pw_block(file, "typedef struct", " $_state;");
     for (int k = 0; k < e->r->count; k++)
-        e->kernel[k]->fields(e, &e->r->section[k], pw_section_group(members, k + 1));
-    if (e->counts) pw_say_with(members, "uint32_t clipped;", "see $_clipped");
-    if (!has_state(e)) pw_say_with(members, "char none;", "a gain keeps nothing");
+        e->form[k]->fields(e, &e->r->section[k], pw_section_group(members, k + 1));
+    if (e->counts)
+        pw_put_with(members, "uint32_t clipped;", pw_arena_print(e->arena, "see %s_clipped", e->stage));
+    if (!has_state(e)) pw_put_with(members, "char none;", "a gain keeps nothing");
 }
 
 static void prototypes(const pw_emission *e, pw_code *file)
 {
-    pw_say_with(file, "void $_reset($_state *s);", "at rest, as if 0 had been there for ever");
-    pw_say_with(file, "@ $_step($_state *s, @ x);", "one sample");
-    pw_say_with(file, "void $_block($_state *s, const @ *in, @ *out, size_t n);", "in may be out");
+    pw_put_with(file, "void $_reset($_state *s);", "at rest, as if 0 had been there for ever");
+    pw_put_with(file, "@ $_step($_state *s, @ x);", "one sample");
+    pw_put_with(file, "void $_block($_state *s, const @ *in, @ *out, size_t n);", "in may be out");
     pw_blank(file);
     pw_code *comment = pw_comment(file);
     if (e->integrates)
@@ -56,14 +49,14 @@ static void prototypes(const pw_emission *e, pw_code *file)
         pw_prose(comment, "The state as if x had been there for ever, so that a filter starts without a thump. Also clears the count of clips.");
     else
         pw_prose(comment, "The state as if x had been there for ever, so that a filter starts without a thump.");
-    pw_say(file, "void $_settle($_state *s, @ x);");
+    pw_put(file, "void $_settle($_state *s, @ x);");
     if (!e->fixed) return;
     pw_blank(file);
     pw_comment_line(file, e->counts
         ? (e->r->wrap ? "How many times a node wrapped since reset, modulo 2^32."
                       : "How many times a node clipped since reset, modulo 2^32.")
         : "How many times a node clipped since reset: always 0, no node can.");
-    pw_say(file, "uint32_t $_clipped(const $_state *s);");
+    pw_put(file, "uint32_t $_clipped(const $_state *s);");
 }
 
 static void header_file(const pw_emission *e, pw_code *header)
@@ -85,7 +78,7 @@ static void header_file(const pw_emission *e, pw_code *header)
         pw_directive(header, "#endif");
     }
     pw_blank(header);
-    extern_c(header, true);
+    pw_extern_c(header, true);
     pw_blank(header);
     state_struct(e, header);
     pw_blank(header);
@@ -95,7 +88,7 @@ static void header_file(const pw_emission *e, pw_code *header)
 static void close_header(pw_code *header)
 {
     pw_blank(header);
-    extern_c(header, false);
+    pw_extern_c(header, false);
     pw_directive(header, "#endif");
 }
 
@@ -103,17 +96,18 @@ static void close_header(pw_code *header)
 static void machine_checks(const pw_emission *e, pw_code *file)
 {
     if (!e->standalone) return;
+    pw_blank(file);
     if (e->fixed) {
         pw_directive(file, "#if !defined(INT16_MAX) || !defined(INT32_MAX) || !defined(INT64_MAX)");
         pw_directive(file, "#error \"$ needs int16_t, int32_t and int64_t: use a compiler with C99's <stdint.h>\"");
         pw_directive(file, "#endif");
-        pw_say(file, "typedef char $_needs_a_compiler_whose_right_shift_is_arithmetic"
+        pw_put(file, "typedef char $_needs_a_compiler_whose_right_shift_is_arithmetic"
                      "[((int32_t)-3 >> 1) == -2 && ((int64_t)-3 >> 1) == -2 ? 1 : -1];");
     } else if (e->single) {
-        pw_say(file, "typedef char $_needs_an_ieee_float_of_32_bits_use_sample_q15_or_q31"
+        pw_put(file, "typedef char $_needs_an_ieee_float_of_32_bits_use_sample_q15_or_q31"
                      "[sizeof(float) == 4 && FLT_MANT_DIG == 24 ? 1 : -1];");
     } else {
-        pw_say(file, "typedef char $_needs_a_double_of_64_bits_use_sample_float32_or_q31"
+        pw_put(file, "typedef char $_needs_a_double_of_64_bits_use_sample_float32_or_q31"
                      "[sizeof(double) == 8 && DBL_MANT_DIG == 53 ? 1 : -1];");
     }
 }
@@ -122,25 +116,25 @@ static void sections(const pw_emission *e, pw_code *file)
 {
     for (int k = 0; k < e->r->count; k++) {
         const pw_words *w = &e->r->section[k];
-        const pw_kernel *kernel = e->kernel[k];
-        if (kernel->helpers) kernel->helpers(e, w, file);
+        const pw_form *form = e->form[k];
+        if (form->helpers) form->helpers(e, w, file);
     }
     for (int k = 0; k < e->r->count; k++) {
         const pw_words *w = &e->r->section[k];
-        const pw_kernel *kernel = e->kernel[k];
+        const pw_form *form = e->form[k];
         pw_code *group = pw_section_group(file, k + 1);
         pw_blank(group);
         pw_comment_line(group, pw_arena_print(e->arena, "---- Section %d: %s, order %d ----", k + 1,
-                                              e->standalone ? kernel->name : pw_structure_word(w->structure), w->order));
+                                              e->standalone ? form->name : pw_structure_word(w->structure), w->order));
         pw_blank(group);
-        kernel->constants(e, w, group);
-        if (kernel->step) {
+        form->constants(e, w, group);
+        if (form->step) {
             pw_blank(group);
-            kernel->step(e, w, pw_function(group, "static inline @ $_section_#($_state *s, @ x)"));
+            form->step(e, w, pw_function(group, "static inline @ $_section_#($_state *s, @ x)"));
         }
         if (!e->integrates) {
             pw_blank(group);
-            kernel->settle(e, w, pw_function(group, "static @ $_settle_#($_state *s, @ x)"));
+            form->settle(e, w, pw_function(group, "static @ $_settle_#($_state *s, @ x)"));
         }
     }
 }
@@ -148,7 +142,7 @@ static void sections(const pw_emission *e, pw_code *file)
 static bool all_step(const pw_emission *e)
 {
     for (int k = 0; k < e->r->count; k++)
-        if (!e->kernel[k]->step || e->kernel[k]->block) return false;
+        if (!e->form[k]->step || e->form[k]->block) return false;
     return true;
 }
 
@@ -158,17 +152,17 @@ static void stepping(const pw_emission *e, pw_code *file)
 {
     pw_blank(file);
     pw_code *f = pw_function(file, "static inline @ $_cascade($_state *s, @ x)");
-    for (int k = 0; k < e->r->count; k++) pw_say(pw_section_group(f, k + 1), "x = $_section_#(s, x);");
-    pw_say(f, "return x;");
+    for (int k = 0; k < e->r->count; k++) pw_put(pw_section_group(f, k + 1), "x = $_section_#(s, x);");
+    pw_put(f, "return x;");
     pw_blank(file);
     f = pw_function(file, "@ $_step($_state *s, @ x)");
-    pw_say(f, "return $_cascade(s, x);");
+    pw_put(f, "return $_cascade(s, x);");
     pw_blank(file);
     f = pw_function(file, "void $_block($_state *s, const @ *in, @ *out, size_t n)");
-    pw_say(f, "$_state local = *s;");
-    pw_say(f, "size_t i;");
-    pw_say(f, "for (i = 0; i < n; i++) out[i] = $_cascade(&local, in[i]);");
-    pw_say(f, "*s = local;");
+    pw_put(f, "$_state local = *s;");
+    pw_put(f, "size_t i;");
+    pw_put(f, "for (i = 0; i < n; i++) out[i] = $_cascade(&local, in[i]);");
+    pw_put(f, "*s = local;");
 }
 
 /* Section by section over the block; a step is a block of one. */
@@ -177,44 +171,44 @@ static void blocking(const pw_emission *e, pw_code *file)
     pw_blank(file);
     pw_code *f = pw_function(file, "void $_block($_state *s, const @ *in, @ *out, size_t n)");
     bool needs_s = has_state(e) && (e->fixed || e->r->section[0].order > 0 || e->r->count > 1);
-    if (!needs_s) pw_say(f, "(void)s;");
+    if (!needs_s) pw_put(f, "(void)s;");
     for (int k = 0; k < e->r->count; k++) {
         const pw_words *w = &e->r->section[k];
         pw_code *group = pw_section_group(f, k + 1);
         const char *in = k == 0 ? "in" : "out";
-        if (e->kernel[k]->block) {
-            e->kernel[k]->block(e, w, in, group);
+        if (e->form[k]->block) {
+            e->form[k]->block(e, w, in, group);
         } else {
             pw_code *loop = pw_block(group, "for (size_t i = 0; i < n; i++)", "");
-            pw_say(loop, pw_arena_print(e->arena, "out[i] = $_section_#(s, %s[i]);", in));
+            pw_put(loop, pw_arena_print(e->arena, "out[i] = $_section_#(s, %s[i]);", in));
         }
     }
     pw_blank(file);
     f = pw_function(file, "@ $_step($_state *s, @ x)");
-    pw_say(f, "$_block(s, &x, &x, 1);");
-    pw_say(f, "return x;");
+    pw_put(f, "$_block(s, &x, &x, 1);");
+    pw_put(f, "return x;");
 }
 
 static void interface(const pw_emission *e, pw_code *file)
 {
     pw_blank(file);
     pw_code *f = pw_function(file, "void $_reset($_state *s)");
-    pw_say(f, "memset(s, 0, sizeof *s);");
+    pw_put(f, "memset(s, 0, sizeof *s);");
     if (all_step(e)) stepping(e, file);
     else blocking(e, file);
     pw_blank(file);
     f = pw_function(file, "void $_settle($_state *s, @ x)");
-    pw_say(f, "$_reset(s);");
-    if (e->integrates) pw_say(f, "(void)x;");
+    pw_put(f, "$_reset(s);");
+    if (e->integrates) pw_put(f, "(void)x;");
     for (int k = 0; k < e->r->count && !e->integrates; k++) {
         bool last = k == e->r->count - 1;
-        pw_say(pw_section_group(f, k + 1), last ? "(void)$_settle_#(s, x);" : "x = $_settle_#(s, x);");
+        pw_put(pw_section_group(f, k + 1), last ? "(void)$_settle_#(s, x);" : "x = $_settle_#(s, x);");
     }
     if (!e->fixed) return;
     pw_blank(file);
     f = pw_function(file, "uint32_t $_clipped(const $_state *s)");
-    if (!e->counts) pw_say(f, "(void)s;");
-    pw_say(f, e->counts ? "return s->clipped;" : "return 0;");
+    if (!e->counts) pw_put(f, "(void)s;");
+    pw_put(f, e->counts ? "return s->clipped;" : "return 0;");
 }
 
 static void source_file(const pw_emission *e, pw_code *source)
@@ -226,7 +220,6 @@ static void source_file(const pw_emission *e, pw_code *source)
     pw_blank(source);
     if (e->standalone && !e->fixed) pw_directive(source, "#include <float.h>");
     pw_directive(source, "#include <string.h>");
-    pw_blank(source);
     machine_checks(e, source);
     sections(e, source);
     interface(e, source);

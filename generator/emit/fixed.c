@@ -42,15 +42,15 @@ static void counting_helper(const pw_emission *e, pw_code *file)
     pw_blank(file);
     pw_comment_line(file, comment);
     pw_code *f = pw_function(file, "static @ $_into_word($_state *s, int64_t v)");
-    pw_say(f, pw_arena_print(e->arena, "if (v >= INT%d_MIN && v <= INT%d_MAX) return (@)v;", e->bits, e->bits));
-    pw_say(f, "s->clipped++;");
+    pw_put(f, pw_arena_print(e->arena, "if (v >= INT%d_MIN && v <= INT%d_MAX) return (@)v;", e->bits, e->bits));
+    pw_put(f, "s->clipped++;");
     if (!e->r->wrap) {
-        pw_say(f, pw_arena_print(e->arena, "return v < 0 ? INT%d_MIN : INT%d_MAX;", e->bits, e->bits));
+        pw_put(f, pw_arena_print(e->arena, "return v < 0 ? INT%d_MIN : INT%d_MAX;", e->bits, e->bits));
         return;
     }
     const char *half = e->bits == 16 ? "0x8000" : "0x80000000", *mask = e->bits == 16 ? "0xffff" : "0xffffffff";
-    pw_say(f, pw_arena_print(e->arena, "v = (int64_t)(((uint64_t)v + %su) & %su);", half, mask));
-    pw_say(f, pw_arena_print(e->arena, "return (@)(v - (int64_t)%s);", half));
+    pw_put(f, pw_arena_print(e->arena, "v = (int64_t)(((uint64_t)v + %su) & %su);", half, mask));
+    pw_put(f, pw_arena_print(e->arena, "return (@)(v - (int64_t)%s);", half));
 }
 
 static void clamp_helper(const pw_emission *e, pw_code *file)
@@ -58,8 +58,8 @@ static void clamp_helper(const pw_emission *e, pw_code *file)
     if (!pw_once(file, "clamp")) return;
     pw_blank(file);
     pw_code *f = pw_function(file, "static @ $_clamp(int64_t v)");
-    pw_say(f, pw_arena_print(e->arena, "if (v > INT%d_MAX) return INT%d_MAX;", e->bits, e->bits));
-    pw_say(f, pw_arena_print(e->arena, "return v < INT%d_MIN ? INT%d_MIN : (@)v;", e->bits, e->bits));
+    pw_put(f, pw_arena_print(e->arena, "if (v > INT%d_MAX) return INT%d_MAX;", e->bits, e->bits));
+    pw_put(f, pw_arena_print(e->arena, "return v < INT%d_MIN ? INT%d_MIN : (@)v;", e->bits, e->bits));
 }
 
 static void ratio_helper(const pw_emission *e, pw_code *file)
@@ -70,13 +70,13 @@ static void ratio_helper(const pw_emission *e, pw_code *file)
     pw_blank(file);
     pw_comment_line(file, comment);
     pw_code *f = pw_function(file, "static int64_t $_ratio(int64_t p, int64_t d)");
-    if (!e->r->truncate) pw_say(f, "p += d >> 1;");
-    pw_say(f, "return p % d < 0 ? p / d - 1 : p / d;");
+    if (!e->r->truncate) pw_put(f, "p += d >> 1;");
+    pw_put(f, "return p % d < 0 ? p / d - 1 : p / d;");
 }
 
 void pw_fixed_helpers(const pw_emission *e, const pw_words *w, pw_code *file)
 {
-    if (!pw_clamp_is_needless(e, w)) counting_helper(e, file);
+    if (!w->cannot_clip) counting_helper(e, file);
     bool direct = w->structure != PW_COUPLED && w->order > 0;
     if (e->integrates || (direct && pw_direct_gain_sum(w) == 0)) return;   /* settle needs none */
     clamp_helper(e, file);
@@ -87,8 +87,8 @@ void pw_fixed_into_word(const pw_emission *e, const pw_words *w, pw_code *body, 
                         const char *v, const char *node)
 {
     const char *note = pw_bound_note(e, body->section, node);
-    const char *line = pw_clamp_is_needless(e, w)
+    const char *line = w->cannot_clip
         ? pw_arena_print(e->arena, "const @ %s = (@)%s;", name, v)
         : pw_arena_print(e->arena, "const @ %s = $_into_word(s, %s);", name, v);
-    pw_say_with(body, line, *note ? note : NULL);
+    pw_put_with(body, line, *note ? note : NULL);
 }

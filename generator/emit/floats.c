@@ -34,38 +34,38 @@ static const char *transposed_member(const pw_words *w, int k)
 
 static void transposed_fields(const pw_emission *e, const pw_words *w, pw_code *in)
 {
-    pw_say_with(in, "@ s1_#;", pw_arena_print(e->arena, "delays of section %d", in->section));
-    if (w->order == 2) pw_say(in, "@ s2_#;");
+    pw_put_with(in, "@ s1_#;", pw_arena_print(e->arena, "delays of section %d", in->section));
+    if (w->order == 2) pw_put(in, "@ s2_#;");
 }
 
 static void transposed_step(const pw_emission *e, const pw_words *w, pw_code *body)
 {
     (void)e;
-    pw_say(body, "const @ y = s->s1_# + $_b0_# * x;");
+    pw_put(body, "const @ y = s->s1_# + $_b0_# * x;");
     if (w->order == 2) {
-        pw_say(body, "s->s1_# = (s->s2_# + $_b1_# * x) - $_a1_# * y;");
-        pw_say(body, "s->s2_# = $_b2_# * x - $_a2_# * y;");
+        pw_put(body, "s->s1_# = (s->s2_# + $_b1_# * x) - $_a1_# * y;");
+        pw_put(body, "s->s2_# = $_b2_# * x - $_a2_# * y;");
     } else {
-        pw_say(body, "s->s1_# = $_b1_# * x - $_a1_# * y;");
+        pw_put(body, "s->s1_# = $_b1_# * x - $_a1_# * y;");
     }
-    pw_say(body, "return y;");
+    pw_put(body, "return y;");
 }
 
 /* y for a constant x, by the sums that the simulation takes. */
 static void rest(const pw_words *w, pw_code *body)
 {
-    pw_say(body, w->order == 2 ? "const @ above = $_b0_# + $_b1_# + $_b2_#;" : "const @ above = $_b0_# + $_b1_#;");
-    pw_say(body, w->order == 2 ? "const @ below = 1 + $_a1_# + $_a2_#;" : "const @ below = 1 + $_a1_#;");
-    pw_say(body, "const @ y = above / below * x;");
+    pw_put(body, w->order == 2 ? "const @ above = $_b0_# + $_b1_# + $_b2_#;" : "const @ above = $_b0_# + $_b1_#;");
+    pw_put(body, w->order == 2 ? "const @ below = 1 + $_a1_# + $_a2_#;" : "const @ below = 1 + $_a1_#;");
+    pw_put(body, "const @ y = above / below * x;");
 }
 
 static void transposed_settle(const pw_emission *e, const pw_words *w, pw_code *body)
 {
     (void)e;
     rest(w, body);
-    pw_say(body, "s->s1_# = y - $_b0_# * x;");
-    if (w->order == 2) pw_say(body, "s->s2_# = $_b2_# * x - $_a2_# * y;");
-    pw_say(body, "return y;");
+    pw_put(body, "s->s1_# = y - $_b0_# * x;");
+    if (w->order == 2) pw_put(body, "s->s2_# = $_b2_# * x - $_a2_# * y;");
+    pw_put(body, "return y;");
 }
 
 static const char *direct_member(const pw_words *w, int k)
@@ -79,7 +79,7 @@ static void direct_fields(const pw_emission *e, const pw_words *w, pw_code *in)
     for (int k = 0; k < 4; k++) {
         const char *member = direct_member(w, k);
         if (!member) continue;
-        pw_say_with(in, pw_arena_print(e->arena, "@ %s;", member),
+        pw_put_with(in, pw_arena_print(e->arena, "@ %s;", member),
                     pw_arena_print(e->arena, "%s of section %d, %s ago", k < 2 ? "input" : "output",
                                    in->section, k % 2 ? "two samples" : "a sample"));
     }
@@ -89,28 +89,28 @@ static void direct_step(const pw_emission *e, const pw_words *w, pw_code *body)
 {
     (void)e;
     if (w->order == 2) {
-        pw_say(body, "const @ y = $_b0_# * x + $_b1_# * s->x1_# + $_b2_# * s->x2_# - $_a1_# * s->y1_# - $_a2_# * s->y2_#;");
-        pw_say(body, "s->x2_# = s->x1_#;");
-        pw_say(body, "s->y2_# = s->y1_#;");
+        pw_put(body, "const @ y = $_b0_# * x + $_b1_# * s->x1_# + $_b2_# * s->x2_# - $_a1_# * s->y1_# - $_a2_# * s->y2_#;");
+        pw_put(body, "s->x2_# = s->x1_#;");
+        pw_put(body, "s->y2_# = s->y1_#;");
     } else {
-        pw_say(body, "const @ y = $_b0_# * x + $_b1_# * s->x1_# - $_a1_# * s->y1_#;");
+        pw_put(body, "const @ y = $_b0_# * x + $_b1_# * s->x1_# - $_a1_# * s->y1_#;");
     }
-    pw_say(body, "s->x1_# = x;");
-    pw_say(body, "s->y1_# = y;");
-    pw_say(body, "return y;");
+    pw_put(body, "s->x1_# = x;");
+    pw_put(body, "s->y1_# = y;");
+    pw_put(body, "return y;");
 }
 
 static void direct_settle(const pw_emission *e, const pw_words *w, pw_code *body)
 {
     (void)e;
     rest(w, body);
-    pw_say(body, "s->x1_# = x;");
-    pw_say(body, "s->y1_# = y;");
+    pw_put(body, "s->x1_# = x;");
+    pw_put(body, "s->y1_# = y;");
     if (w->order == 2) {
-        pw_say(body, "s->x2_# = x;");
-        pw_say(body, "s->y2_# = y;");
+        pw_put(body, "s->x2_# = x;");
+        pw_put(body, "s->y2_# = y;");
     }
-    pw_say(body, "return y;");
+    pw_put(body, "return y;");
 }
 
 static void gain_fields(const pw_emission *e, const pw_words *w, pw_code *in) { (void)e, (void)w, (void)in; }
@@ -119,11 +119,11 @@ static const char *gain_member(const pw_words *w, int k) { (void)w, (void)k; ret
 static void gain_step(const pw_emission *e, const pw_words *w, pw_code *body)
 {
     (void)e, (void)w;
-    pw_say(body, "(void)s;");
-    pw_say(body, "return $_b0_# * x;");
+    pw_put(body, "(void)s;");
+    pw_put(body, "return $_b0_# * x;");
 }
 
-const pw_kernel pw_kernels_float[] = {
+const pw_form pw_forms_float[] = {
     {.name = "gain", .fits = is_gain, .fields = gain_fields, .constants = constants, .step = gain_step,
      .settle = gain_step, .member = gain_member},
     {.name = "direct form 1", .fits = is_direct, .fields = direct_fields, .constants = constants,

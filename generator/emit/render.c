@@ -59,18 +59,28 @@ static void expand(const pw_code *item, const char *text, pw_text *out)
     }
 }
 
-/* Where to break text so that it fits: the last space within room, or the first one after. */
-static size_t break_at(const char *text, size_t size, size_t room)
+/* A line of code is best broken before an operator or after a comma, prose at any space. */
+static bool good_break(const char *text, size_t i, bool code)
 {
-    size_t at = 0;
+    return !code || text[i - 1] == ',' || (strchr("+-&|?:", text[i + 1]) && text[i + 2] == ' ')
+        || !strncmp(text + i + 1, "&& ", 3) || !strncmp(text + i + 1, ">> ", 3);
+}
+
+/* Where to break text so that it fits: the last good space within room, else the last space, else
+ * the first one after. */
+static size_t break_at(const char *text, size_t size, size_t room, bool code)
+{
+    size_t good = 0, any = 0, i = 1;
     if (size <= room) return size;
-    for (size_t i = 1; i < size; i++) {
+    for (; i < size && i <= room; i++) {
         if (text[i] != ' ') continue;
-        if (i > room && at) break;
-        at = i;
-        if (i > room) break;
+        any = i;
+        if (good_break(text, i, code)) good = i;
     }
-    return at ? at : size;
+    if (good > room / 2 || (good && !any)) return good;
+    if (any) return any;
+    while (i < size && text[i] != ' ') i++;
+    return i;
 }
 
 /* Code: continuation lines stand two steps in. */
@@ -78,7 +88,7 @@ static void put_code(const char *text, int indent, pw_text *out)
 {
     size_t size = strlen(text);
     for (int at = indent; ; at = indent + 2 * STEP) {
-        size_t n = break_at(text, size, (size_t)(WIDTH - at));
+        size_t n = break_at(text, size, (size_t)(WIDTH - at), true);
         indent_by(out, at);
         pw_text_add_bytes(out, text, n);
         pw_text_add(out, "\n");
@@ -128,7 +138,7 @@ static void put_paragraph(const char *prose, int indent, bool first, bool closes
     size_t size = strlen(text);
     for (bool begin = true; ; begin = false) {
         size_t room = (size_t)(WIDTH - indent - 6 - (begin ? 0 : hang));
-        size_t n = break_at(text, size, room);
+        size_t n = break_at(text, size, room, false);
         indent_by(out, indent);
         pw_text_add(out, first && begin ? "/*" : " *");
         if (n) pw_text_add(out, " ");

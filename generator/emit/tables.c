@@ -23,7 +23,7 @@ static void fields(const pw_emission *e, const pw_words *w, pw_code *in)
 {
     const char *state = e->fixed ? kernel_name(e, w) : w->structure == PW_DIRECT_1 ? "direct" : "transposed";
     if (is_gain(e, w)) return;
-    pw_say(in, pw_arena_print(e->arena, "pw_%s_%s_state section_#;", e->family, state));
+    pw_put(in, pw_arena_print(e->arena, "pw_%s_%s_state section_#;", e->family, state));
 }
 
 static const char *member(const pw_words *w, int k)
@@ -50,7 +50,7 @@ static void word(const pw_emission *e, pw_code *table, const char *name, int64_t
 static void flags(const pw_emission *e, pw_code *table)
 {
     bool both = e->r->truncate && e->r->wrap;
-    pw_say_with(table, both ? "PW_TRUNCATE | PW_WRAP" : e->r->truncate ? "PW_TRUNCATE" : e->r->wrap ? "PW_WRAP" : "0",
+    pw_put_with(table, both ? "PW_TRUNCATE | PW_WRAP" : e->r->truncate ? "PW_TRUNCATE" : e->r->wrap ? "PW_WRAP" : "0",
                 e->r->truncate ? "truncates" : "rounds to nearest");
 }
 
@@ -143,19 +143,19 @@ static const char *arguments(const pw_emission *e, const pw_words *w)
 
 static void block(const pw_emission *e, const pw_words *w, const char *in, pw_code *body)
 {
-    pw_say(body, pw_arena_print(e->arena, "%spw_%s_%s(%s, %s, out, n);", e->fixed ? "s->clipped += " : "",
+    pw_put(body, pw_arena_print(e->arena, "%spw_%s_%s(%s, %s, out, n);", e->fixed ? "s->clipped += " : "",
                                 e->family, kernel_name(e, w), arguments(e, w), in));
 }
 
 static void settle(const pw_emission *e, const pw_words *w, pw_code *body)
 {
-    if (is_gain(e, w)) pw_say(body, "(void)s;");
-    if (is_gain(e, w) && !e->fixed) pw_say(body, "return $_words_# * x;");
-    else pw_say(body, pw_arena_print(e->arena, "return pw_%s_%s_settle(%s, x);", e->family, kernel_name(e, w),
+    if (is_gain(e, w)) pw_put(body, "(void)s;");
+    if (is_gain(e, w) && !e->fixed) pw_put(body, "return $_words_# * x;");
+    else pw_put(body, pw_arena_print(e->arena, "return pw_%s_%s_settle(%s, x);", e->family, kernel_name(e, w),
                                      arguments(e, w)));
 }
 
-const pw_kernel pw_kernels_runtime[] = {
+const pw_form pw_forms_runtime[] = {
     {.name = "gain", .fits = fits_gain, .fields = fields, .constants = constants, .block = block,
      .settle = settle, .member = member},
     {.name = "runtime", .fits = fits_runtime, .fields = fields, .constants = constants, .block = block,

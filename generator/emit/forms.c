@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Which kernel writes which section, and what kernels share. */
+/* Which form writes which section, and what forms share. */
 #include <math.h>
 #include <stdio.h>
 #include <string.h>
@@ -8,17 +8,17 @@
 #include "simulate/simulate.h"
 
 /* In order of preference. */
-static const pw_kernel *const tables[] = {
-    pw_kernels_runtime,
-    pw_kernels_fixed,
-    pw_kernels_float,
+static const pw_form *const tables[] = {
+    pw_forms_runtime,
+    pw_forms_fixed,
+    pw_forms_float,
 };
 
-static const pw_kernel *choose(const pw_emission *e, const pw_words *w)
+static const pw_form *choose(const pw_emission *e, const pw_words *w)
 {
     for (size_t t = 0; t < sizeof tables / sizeof tables[0]; t++)
-        for (const pw_kernel *kernel = tables[t]; kernel->name; kernel++)
-            if (kernel->fits(e, w)) return kernel;
+        for (const pw_form *form = tables[t]; form->name; form++)
+            if (form->fits(e, w)) return form;
     return NULL;
 }
 
@@ -35,18 +35,11 @@ void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *aren
         .single = r->sample == PW_FLOAT32, .arena = arena,
     };
     for (int k = 0; k < r->count; k++) {
-        e->kernel[k] = choose(e, &r->section[k]);
+        e->form[k] = choose(e, &r->section[k]);
         e->integrates = e->integrates || pw_section_integrates(&r->section[k], e->fixed);
-        e->counts = e->counts || !pw_clamp_is_needless(e, &r->section[k]);
+        e->counts = e->counts || !r->section[k].cannot_clip;
     }
     e->counts = e->fixed && (e->counts || !e->standalone);
-}
-
-/* The proof holds for inputs within the peak; only where the peak is full scale does it hold for
- * whatever the converter may deliver. */
-bool pw_clamp_is_needless(const pw_emission *e, const pw_words *w)
-{
-    return w->cannot_clip && e->r->input_peak >= 1;
 }
 
 double pw_direct_reach(const pw_emission *e, const pw_words *w)
