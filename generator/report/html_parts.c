@@ -131,12 +131,19 @@ static void put_transform(const pw_results *results, pw_text *out)
     pw_text_free(&body);
 }
 
-static void put_arithmetic(const pw_results *results, pw_text *out)
+static void put_arithmetic(const pw_realisation *r, pw_text *out)
 {
-    pw_text body = {0};
-    pw_phrase_arithmetic(&results->realisation, &body);
-    put_fact("arithmetic", pw_text_string(&body), out);
-    pw_text_free(&body);
+    char words[PW_FIGURE_ROOM];
+    if (!pw_is_fixed(r)) {
+        put_fact("samples", pw_sample_word(r->sample), out);
+        return;
+    }
+    snprintf(words, sizeof words, "%s, %d-bit coefficients", pw_sample_word(r->sample),
+             r->coefficient_bits);
+    put_fact("samples", words, out);
+    put_fact("scaling", pw_scaling_word(r->scaling), out);
+    put_fact("rounding", r->truncate ? "truncates" : "to nearest", out);
+    put_fact("overflow", r->wrap ? "wraps" : "saturates", out);
 }
 
 void pw_html_stage(const pw_results *results, pw_text *out)
@@ -148,7 +155,7 @@ void pw_html_stage(const pw_results *results, pw_text *out)
     pw_text_add(out, "<dl class=\"facts\">\n");
     put_fact("sample rate", pw_figure(figure, results->stage->rate_hz, "Hz"), out);
     put_transform(results, out);
-    put_arithmetic(results, out);
+    put_arithmetic(r, out);
     put_fact("full scale in", pw_figure(figure, r->input_full_scale, "V"), out);
     put_fact("largest input", pw_figure(figure, r->input_peak * r->input_full_scale, "V"), out);
     put_fact("full scale out", pw_figure(figure, r->output_full_scale, "V"), out);
@@ -224,40 +231,52 @@ void pw_html_range(const pw_results *results, pw_text *out)
 
 /* ---- words ---- */
 
-static void put_word(const char *section, const char *name, double word, int fraction, double value,
-                     bool fixed, pw_text *out)
-{
-    pw_text_print(out, "<tr><td>%s</td><th scope=\"row\">%s</th>", section, name);
-    if (fixed) pw_text_print(out,
-                             "<td class=\"n\">%.0f</td><td class=\"n\">2<sup>\342\210\222%d</sup></td>",
-                             word, fraction);
-    pw_text_print(out, "<td class=\"n\">%.*g</td></tr>\n", fixed ? 12 : 17, value);
-}
+typedef struct word_row { const char *name; double word; int fraction; double value; } word_row;
 
-static void put_direct(const char *label, const pw_words *w, bool fixed, pw_text *out)
+#define MOST_WORDS 8
+
+static int direct_rows(const pw_words *w, bool fixed, word_row *row)
 {
     static const char *const b[] = {"b0", "b1", "b2"}, *const a[] = {"a0", "a1", "a2"};
-    for (int k = 0; k <= w->order; k++)
-        put_word(label, b[k], w->b[k], w->b_fraction, fixed ? w->realised_b[k] : w->fb[k], fixed,
-                 out);
-    for (int k = 1; k <= w->order; k++)
-        put_word(label, a[k], w->a[k], w->a_fraction, fixed ? w->realised_a[k] : w->fa[k], fixed,
-                 out);
-    if (w->structure != PW_DIRECT_1_SHAPED) return;
-    put_word(label, "k1", w->k1, 0, w->k1, fixed, out);
-    if (w->order > 1) put_word(label, "k2", w->k2, 0, w->k2, fixed, out);
+    static const char *const k[] = {"k1", "k2"};
+    const int32_t feedback[] = {w->k1, w->k2};
+    int n = 0;
+    for (int i = 0; i <= w->order; i++)
+        row[n++] = (word_row){b[i], w->b[i], w->b_fraction, fixed ? w->realised_b[i] : w->fb[i]};
+    for (int i = 1; i <= w->order; i++)
+        row[n++] = (word_row){a[i], w->a[i], w->a_fraction, fixed ? w->realised_a[i] : w->fa[i]};
+    for (int i = 0; w->structure == PW_DIRECT_1_SHAPED && i < w->order; i++)
+        row[n++] = (word_row){k[i], feedback[i], 0, feedback[i]};
+    return n;
 }
 
-static void put_coupled(const char *label, const pw_words *w, pw_text *out)
+static int coupled_rows(const pw_words *w, word_row *row)
 {
-    const struct { const char *name; int32_t word; int fraction; } row[] = {
-        {"sigma", w->sigma, w->a_fraction}, {"omega", w->omega, w->a_fraction},
-        {"g", w->g, w->a_fraction}, {"c1", w->c1, w->c_fraction}, {"c2", w->c2, w->c_fraction},
-        {"d", w->d, w->c_fraction}};
-    for (size_t i = 0; i < sizeof row / sizeof *row; i++)
-        put_word(label, row[i].name, row[i].word, row[i].fraction,
-                 ldexp(row[i].word, -row[i].fraction),
-                 true, out);
+    static const char *const name[] = {"sigma", "omega", "g", "c1", "c2", "d"};
+    const int32_t word[] = {w->sigma, w->omega, w->g, w->c1, w->c2, w->d};
+    for (int i = 0; i < 6; i++) {
+        int fraction = i < 3 ? w->a_fraction : w->c_fraction;
+        row[i] = (word_row){name[i], word[i], fraction, ldexp(word[i], -fraction)};
+    }
+    return 6;
+}
+
+static void put_section(int number, const pw_words *w, bool fixed, pw_text *out)
+{
+    word_row row[MOST_WORDS];
+    int n = fixed && w->structure == PW_COUPLED ? coupled_rows(w, row) : direct_rows(w, fixed, row);
+    for (int i = 0; i < n; i++) {
+        pw_text_add(out, "<tr>");
+        if (!i)
+            pw_text_print(out, "<th scope=\"rowgroup\" rowspan=\"%d\">%d, %s</th>", n, number,
+                          pw_structure_word(w->structure));
+        pw_text_print(out, "<th scope=\"row\">%s</th>", row[i].name);
+        if (fixed) pw_text_print(out, "<td class=\"n\">%.0f</td><td class=\"n\">", row[i].word);
+        if (fixed && row[i].fraction)
+            pw_text_print(out, "2<sup>\342\210\222%d</sup>", row[i].fraction);
+        if (fixed) pw_text_add(out, "</td>");
+        pw_text_print(out, "<td class=\"n\">%.*g</td></tr>\n", fixed ? 12 : 17, row[i].value);
+    }
 }
 
 void pw_html_words(const pw_results *results, pw_text *out)
@@ -267,19 +286,16 @@ void pw_html_words(const pw_results *results, pw_text *out)
     pw_html_open("words", "Words", out);
     put_sentence(r->structure_why, out);
     put_sentence(r->order_why, out);
-    pw_text_print(out,
-                  "<div class=\"wide\" role=\"group\" aria-label=\"Words\" tabindex=\"0\"><table>"
+    pw_text_print(out, "<div class=\"wide\" role=\"group\" aria-label=\"Words\" tabindex=\"0\"><table>"
                   "<thead><tr><th scope=\"col\">section</th><th scope=\"col\">name</th>%s"
-                  "<th scope=\"col\">value</th></tr></thead>\n<tbody>\n",
+                  "<th scope=\"col\">value</th></tr></thead>\n",
                   fixed ? "<th scope=\"col\">word</th><th scope=\"col\">times</th>" : "");
     for (int i = 0; i < r->count; i++) {
-        char label[60];
-        const pw_words *w = &r->section[i];
-        snprintf(label, sizeof label, "%d, %s", i + 1, pw_structure_word(w->structure));
-        if (fixed && w->structure == PW_COUPLED) put_coupled(label, w, out);
-        else put_direct(label, w, fixed, out);
+        pw_text_add(out, "<tbody>\n");
+        put_section(i + 1, &r->section[i], fixed, out);
+        pw_text_add(out, "</tbody>\n");
     }
-    pw_text_add(out, "</tbody></table></div>\n");
+    pw_text_add(out, "</table></div>\n");
     pw_html_close(out);
 }
 

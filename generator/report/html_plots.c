@@ -37,10 +37,10 @@ static void put_plot(const pw_plots *plots, pw_plot which, const char *alternati
     pw_text_print(out, "\">\n%s</svg>\n", pw_text_string(&plots->body[which]));
 }
 
-static void put_key(const char *first, const char *second, pw_text *out)
+static void put_key(const char *first, const char *second, bool noise, pw_text *out)
 {
-    pw_text_print(out, "<p class=\"key\"><span><i class=\"k1\"></i>%s</span>"
-                  "<span><i class=\"k2\"></i>%s</span></p>\n", first, second);
+    pw_text_print(out, "<p class=\"key\"><span><i class=\"k%d\"></i>%s</span>"
+                  "<span><i class=\"k2\"></i>%s</span></p>\n", noise ? 3 : 1, first, second);
 }
 
 /* ---- response ---- */
@@ -133,7 +133,7 @@ void pw_html_response(const pw_results *results, const pw_plots *plots, pw_text 
     pw_text_add(out, "<figure class=\"tall\">\n");
     put_plot(plots, PW_PLOT_RESPONSE, pw_text_string(&words), out);
     if (plots->drawn) {
-        put_key("analog stage", "its digital twin, words included", out);
+        put_key("analog stage", "its digital twin, words included", false, out);
         put_reader(r, out);
         pw_text_print(out, "<figcaption>Upright lines: the band that is judged.%s</figcaption>\n",
                       results->stage->limits.magnitude_db.given ? " Shaded: the limit." : "");
@@ -156,7 +156,7 @@ void pw_html_delay(const pw_results *results, const pw_plots *plots, pw_text *ou
     pw_phrase_peak(&results->response.total.delay_s, "s", &words);
     pw_text_add(out, "<figure>\n");
     put_plot(plots, PW_PLOT_DELAY, pw_text_string(&words), out);
-    if (plots->drawn) put_key("analog", "digital", out);
+    if (plots->drawn) put_key("analog", "digital", false, out);
     pw_text_add(out, "</figure>\n");
     pw_html_close(out);
     pw_text_free(&words);
@@ -170,7 +170,7 @@ void pw_html_step(const pw_results *results, const pw_plots *plots, pw_text *out
     put_plot(plots, PW_PLOT_STEP, "Output over time after an input step of 1 V, of the analog stage"
              " and of the digital filter", out);
     if (plots->drawn) {
-        put_key("analog", "digital, sample by sample", out);
+        put_key("analog", "digital, sample by sample", false, out);
         pw_text_print(out, "<figcaption>Rounding and clipping left out.%s</figcaption>\n",
                       plots->step_logarithmic ? " Time is logarithmic: fast and slow poles lie far"
                       " apart." : "");
@@ -213,8 +213,8 @@ void pw_html_noise(const pw_results *results, const pw_plots *plots, pw_text *ou
         put_plot(plots, PW_PLOT_NOISE,
                  "Power density of the round-off at the output over frequency",
                  out);
-        if (plots->drawn) put_key("what the rounding of the input becomes", "what the filter adds",
-                                  out);
+        if (plots->drawn)
+            put_key("what the rounding of the input becomes", "what the filter adds", true, out);
         pw_text_add(out, "</figure>\n<h3>Limit cycles</h3>\n");
         pw_html_sentence(pw_phrase_limit_cycle, results, out);
     }

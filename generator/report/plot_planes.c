@@ -8,8 +8,8 @@
 #include "report/rootgroups.h"
 
 #define APART 30.0            /* largest over smallest root: from here on axes are compressed */
-#define TOP 14
-#define BOTTOM 420
+#define TOP 26
+#define BOTTOM 432
 
 /* How far out a root is drawn: s over 2 pi in Hz, or its asinh over the smallest root. */
 typedef struct axis { double scale; bool compressed; } axis;
@@ -29,11 +29,11 @@ static void add_block(const char *name, const double complex *root, int n, const
         for (int sign = 1; sign >= (cimag(group[i].root) > 0 ? -1 : 1); sign -= 2) {
             pw_script_number(place(a, creal(group[i].root)), script);
             pw_script_number(place(a, sign * cimag(group[i].root)), script);
-            if (group[i].count > 1) pw_text_print(script, " %d", group[i].count);
-            else pw_text_add(script, " ''");
+            if (group[i].count > 1) pw_text_print(script, " %d\303\227", group[i].count);
+            else pw_text_add(script, " \"\"");
             pw_text_add(script, "\n");
         }
-    pw_text_add(script, groups ? "EOD\n" : "NaN NaN ''\nEOD\n");
+    pw_text_add(script, groups ? "EOD\n" : "NaN NaN \"\"\nEOD\n");
 }
 
 static void add_marks(const char *name, pw_role role, pw_text *script)
@@ -49,7 +49,7 @@ static void add_axes(const char *x, const char *y, pw_text *script)
 {
     pw_text_print(script, "set xlabel '%s' offset 0,0.4 tc", x);
     pw_script_color(PW_ROLE_TEXT, script);
-    pw_text_print(script, "\nset label 9 '%s' at graph 0, graph 1 offset 0.4,-0.7 left front tc",
+    pw_text_print(script, "\nset label 9 '%s' at graph 0, graph 1 offset 0,0.6 left front tc",
                   y);
     pw_script_color(PW_ROLE_TEXT, script);
     pw_text_add(script, "\nset arrow 1 from graph 0, first 0 to graph 1, first 0 nohead lc");

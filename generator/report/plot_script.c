@@ -9,8 +9,8 @@
 int pw_plot_height(pw_plot plot)
 {
     switch (plot) {
-    case PW_PLOT_RESPONSE: return 640;
-    case PW_PLOT_S_PLANE: case PW_PLOT_Z_PLANE: return 460;
+    case PW_PLOT_RESPONSE: return 580;
+    case PW_PLOT_S_PLANE: case PW_PLOT_Z_PLANE: return 472;
     default: return 300;
     }
 }
@@ -53,12 +53,12 @@ void pw_script_frame(pw_plot plot, double top, double bottom, pw_text *script)
                   1 - top / height, 1 - bottom / height);
 }
 
-/* "10", "1k", "100m" for a power of ten. */
-static void add_decade(int power, pw_text *script)
+/* "10", "1k", "0.1" for a power of ten; "100m" on an axis that goes far below 1. */
+static void add_decade(int power, int lowest, pw_text *script)
 {
-    static const char *const prefix[] = {"p", "n", "u", "m", "", "k", "M", "G", "T"};
+    static const char *const prefix[] = {"p", "n", "\302\265", "m", "", "k", "M", "G", "T"};
     int group = (int)floor(power / 3.0), rest = power - 3 * group;
-    if (power >= -3 && power < 0) pw_text_print(script, "%.*f", -power, pow(10, power));
+    if (power < 0 && lowest >= -3) pw_text_print(script, "%.*f", -power, pow(10, power));
     else if (group < -4 || group > 4) pw_text_print(script, "1e%d", power);
     else pw_text_print(script, "%.0f%s", pow(10, rest), prefix[group + 4]);
 }
@@ -72,7 +72,7 @@ void pw_script_log_x(double low, double high, bool labels, const char *unit, pw_
     pw_text_add(script, " (");
     for (int d = from; d <= to; d++) {
         pw_text_add(script, d == from ? "'" : ", '");
-        if (labels && (d - from) % every == 0) add_decade(d, script);
+        if (labels && (d - from) % every == 0) add_decade(d, from, script);
         pw_text_print(script, "' 1e%d", d);
         for (int k = 2; k < 10 && every == 1; k++) pw_text_print(script, ", '' %de%d 1", k, d);
     }
@@ -87,7 +87,7 @@ void pw_script_y(const char *title, double low, double high, pw_text *script)
     else pw_text_add(script, "set yrange [*:*]\n");
     pw_text_add(script, "set ytics autofreq scale 0.6 tc");
     pw_script_color(PW_ROLE_TEXT, script);
-    pw_text_print(script, "\nset label 9 '%s' at graph 0, graph 1 offset 0.4,-0.7 left front tc",
+    pw_text_print(script, "\nset label 9 '%s' at graph 0, graph 1 offset 0,0.6 left front tc",
                   title);
     pw_script_color(PW_ROLE_TEXT, script);
     pw_text_add(script, "\n");

@@ -12,26 +12,29 @@
 
 /* ---- response ---- */
 
+/* The analog phase of row i without jumps: turn is the sum of whole turns so far. */
+static double unturned(const pw_response *r, int i, double *turn)
+{
+    double phase = r->row[i].analog_deg;
+    if (i) *turn -= 360 * round((phase - r->row[i - 1].analog_deg) / 360);
+    return phase + *turn;
+}
+
 /* Columns: Hz, analog dB, digital dB, analog degrees without jumps, digital degrees beside them,
  * error dB, error degrees, analog delay, digital delay. */
 static void add_response(const pw_response *r, pw_text *script)
 {
-    double turn = 0, last = 0;
+    double turn = 0;
     pw_text_add(script, "$response << EOD\n");
     for (int i = 0; i < r->rows; i++) {
         const pw_response_row *row = &r->row[i];
-        double analog = row->analog_deg + turn;
-        if (i && isfinite(analog)) {
-            turn -= 360 * round((analog - last) / 360);
-            analog = row->analog_deg + turn;
-        }
-        last = isfinite(analog) ? analog : last;
+        double analog = unturned(r, i, &turn);
         double error = remainder(row->digital_deg - row->analog_deg, 360);
         const double column[] = {row->hz, row->analog_db, row->digital_db, analog, analog + error,
                                  row->digital_db - row->analog_db, error, row->analog_delay_s,
                                  row->digital_delay_s};
-        for (size_t k = 0; k < sizeof column / sizeof *column; k++) pw_script_number(column[k],
-                                                                                     script);
+        for (size_t k = 0; k < sizeof column / sizeof *column; k++)
+            pw_script_number(column[k], script);
         pw_text_add(script, "\n");
     }
     pw_text_add(script, "EOD\n");
@@ -61,7 +64,7 @@ static void level_range(const pw_response *r, double *low, double *high)
             *high = fmax(*high, db[k]);
         }
     }
-    *high += 1 + 0.12 * fmin(*high - *low, DEEPEST);
+    *high += 1;
     *low = fmax(*low - 1, *high - DEEPEST);
 }
 
@@ -77,13 +80,29 @@ static double add_limit(const pw_response *r, const pw_given *limit, pw_text *sc
     return isfinite(most) && most > 0 ? most * 1.5 : 1e-6;
 }
 
+/* Whole steps of angles that people think in. */
+static void add_phase_axis(const pw_response *r, pw_text *script)
+{
+    static const double steps[] = {1, 5, 15, 30, 45, 90, 180, 360, 720, 1440, 2880};
+    double low = INFINITY, high = -INFINITY, turn = 0, step = 0;
+    for (int i = 0; i < r->rows; i++) {
+        double phase = unturned(r, i, &turn);
+        low = fmin(low, phase);
+        high = fmax(high, phase);
+    }
+    for (size_t k = 0; k < sizeof steps / sizeof *steps && step < (high - low) / 4; k++) step = steps[k];
+    low = floor(low / step - 0.01) * step;
+    pw_script_y("phase, degrees", low, ceil(high / step + 0.01) * step, script);
+    pw_text_print(script, "set ytics %.9g,%.9g\n", low, step);
+}
+
 static void add_panels(const pw_results *results, pw_text *script)
 {
     const pw_response *r = &results->response;
     const pw_given *limit = &results->stage->limits.magnitude_db;
     double low, high, from = r->row[0].hz, to = r->row[r->rows - 1].hz;
     level_range(r, &low, &high);
-    pw_script_frame(PW_PLOT_RESPONSE, 10, 235, script);
+    pw_script_frame(PW_PLOT_RESPONSE, 26, 210, script);
     pw_script_log_x(from, to, false, "", script);
     pw_script_y("magnitude, dB", low, high, script);
     pw_text_add(script, "plot $response");
@@ -91,15 +110,15 @@ static void add_panels(const pw_results *results, pw_text *script)
     pw_text_add(script, ", $response");
     pw_script_line("1:3", PW_ROLE_DIGITAL, script);
     pw_text_add(script, "\n");
-    pw_script_frame(PW_PLOT_RESPONSE, 260, 415, script);
-    pw_script_y("phase, degrees", 0, 0, script);
+    pw_script_frame(PW_PLOT_RESPONSE, 246, 376, script);
+    add_phase_axis(r, script);
     pw_text_add(script, "plot $response");
     pw_script_line("1:4", PW_ROLE_ANALOG, script);
     pw_text_add(script, ", $response");
     pw_script_line("1:5", PW_ROLE_DIGITAL, script);
     pw_text_add(script, "\n");
     double most = add_limit(r, limit, script);
-    pw_script_frame(PW_PLOT_RESPONSE, 440, 590, script);
+    pw_script_frame(PW_PLOT_RESPONSE, 412, 540, script);
     pw_script_log_x(from, to, true, "frequency, Hz", script);
     pw_script_y("digital \342\210\222 analog, dB", -most, most, script);
     pw_text_add(script, "plot ");
@@ -146,7 +165,7 @@ static void add_delay_plot(const pw_results *results, pw_text *script)
     double unit = time_unit(most, &name);
     pw_script_open(PW_PLOT_DELAY, script);
     add_band(r, script);
-    pw_script_frame(PW_PLOT_DELAY, 10, 250, script);
+    pw_script_frame(PW_PLOT_DELAY, 26, 258, script);
     pw_script_log_x(r->row[0].hz, r->row[r->rows - 1].hz, true, "frequency, Hz", script);
     snprintf(title, sizeof title, "group delay, %s", name);
     pw_script_y(title, 0, 0, script);
@@ -182,7 +201,7 @@ static void add_step_plot(const pw_step_curve *c, double rate_hz, pw_text *scrip
     pw_script_open(PW_PLOT_STEP, script);
     add_curve("analogstep", c->analog_t, unit, c->analog, c->analogs, script);
     add_curve("digitalstep", c->digital_t, unit, c->digital, c->digitals, script);
-    pw_script_frame(PW_PLOT_STEP, 10, 250, script);
+    pw_script_frame(PW_PLOT_STEP, 26, 258, script);
     snprintf(title, sizeof title, "time, %s", name);
     if (c->logarithmic) pw_script_log_x(0.5 / rate_hz / unit, last / unit, true, title, script);
     else {
@@ -193,7 +212,7 @@ static void add_step_plot(const pw_step_curve *c, double rate_hz, pw_text *scrip
         pw_text_add(script, "\n");
     }
     pw_script_y("output for a step of 1 V, V", 0, 0, script);
-    pw_text_add(script, "set offsets 0,0,graph 0.12,graph 0.04\nplot $analogstep");
+    pw_text_add(script, "set offsets 0,0,graph 0.04,graph 0.04\nplot $analogstep");
     pw_script_line("1:2", PW_ROLE_ANALOG, script);
     pw_text_print(script, ", $digitalstep using 1:2 with %s lw 1 lc", c->digitals < 130 ? "steps"
                   : "lines");
@@ -204,11 +223,27 @@ static void add_step_plot(const pw_step_curve *c, double rate_hz, pw_text *scrip
 
 /* ---- noise ---- */
 
+static void noise_range(const pw_noise_curve *c, double full, double *low, double *high)
+{
+    *low = INFINITY;
+    *high = -INFINITY;
+    for (int i = 0; i < c->points; i++) {
+        const double db[] = {10 * log10(c->input[i] / full), 10 * log10(c->round_off[i] / full)};
+        for (int k = 0; k < 2; k++) {
+            if (!isfinite(db[k])) continue;
+            *low = fmin(*low, db[k]);
+            *high = fmax(*high, db[k]);
+        }
+    }
+    *low = floor(fmax(*low - 2, *high - DEEPEST) / 10) * 10;
+    *high = ceil((*high + 2) / 10) * 10;
+}
+
 /* dB of the density per Hz against the power of a full-scale sine. */
 static void add_noise_plot(const pw_results *results, const pw_noise_curve *c, pw_text *script)
 {
     int bits = results->realisation.sample == PW_Q15 ? 15 : 31;
-    double full = ldexp(1, 2 * bits) / 2;
+    double full = ldexp(1, 2 * bits) / 2, low, high;
     pw_script_open(PW_PLOT_NOISE, script);
     pw_text_add(script, "$noise << EOD\n");
     for (int i = 0; i < c->points; i++) {
@@ -218,11 +253,12 @@ static void add_noise_plot(const pw_results *results, const pw_noise_curve *c, p
         pw_text_add(script, "\n");
     }
     pw_text_add(script, "EOD\n");
-    pw_script_frame(PW_PLOT_NOISE, 10, 250, script);
+    pw_script_frame(PW_PLOT_NOISE, 26, 258, script);
     pw_script_log_x(c->hz[0], c->hz[c->points - 1], true, "frequency, Hz", script);
-    pw_script_y("round-off, dBFS in 1 Hz", 0, 0, script);
-    pw_text_add(script, "set offsets 0,0,graph 0.12,0\nplot $noise");
-    pw_script_line("1:2", PW_ROLE_ANALOG, script);
+    noise_range(c, full, &low, &high);
+    pw_script_y("round-off, dBFS in 1 Hz", low, high, script);
+    pw_text_add(script, "plot $noise");
+    pw_script_line("1:2", PW_ROLE_ERROR, script);
     pw_text_add(script, ", $noise");
     pw_script_line("1:3", PW_ROLE_DIGITAL, script);
     pw_text_add(script, "\n");
