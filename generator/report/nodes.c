@@ -13,6 +13,7 @@ char *pw_node_fate(const pw_results *results, const pw_node *node, char *buffer)
     char samples[PW_FIGURE_ROOM];
     if (!pw_is_fixed(&results->realisation)) return strcpy(buffer, "float");
     if (!node->integrates) return strcpy(buffer, node->can_clip ? "can clip" : "cannot clip");
+    if (!isfinite(node->samples_to_clip)) return strcpy(buffer, "integrates up to the clamp");
     snprintf(buffer, PW_FIGURE_ROOM, "clamps after %.40s",
              pw_samples(samples, node->samples_to_clip, results->stage->rate_hz));
     return buffer;

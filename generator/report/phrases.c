@@ -7,6 +7,8 @@
 
 #include "report/figures.h"
 
+#define NO_OFFSET 1e-4        /* LSB: less is not worth a figure */
+
 const char *const pw_cautions[] = {
     "The analog anti-alias filter and the protection in hardware stay: this code replaces neither.",
     "Stability of a closed loop is to be shown on the real plant.",
@@ -178,43 +180,63 @@ void pw_nodes_by_headroom(const pw_realisation *r, int order[PW_MAX_NODES])
     }
 }
 
-static void add_first_clip(const pw_results *results, pw_text *out)
+/* "0.8 of full scale (1.32 V)" */
+static void add_level(const pw_realisation *r, double level, pw_text *out)
 {
     char volts[PW_FIGURE_ROOM];
-    const pw_realisation *r = &results->realisation;
-    double level = r->first_clip_input;
-    if (!isfinite(level)) {
-        pw_text_add(out, "; no input up to full scale makes one clip");
+    pw_text_print(out, "%.3g of full scale (%s)", level,
+                  pw_figure(volts, level * r->input_full_scale, "V"));
+}
+
+static void add_first_clip(const pw_realisation *r, bool now, pw_text *out)
+{
+    if (!isfinite(r->first_clip_input) || r->first_clip_input > 1) {
+        if (r->input_peak < 1) pw_text_add(out, "; none at full scale either");
         return;
     }
-    pw_text_print(out, "; the first can clip from an input of %.3g of full scale (%s)", level,
-                  pw_figure(volts, level * r->input_full_scale, "V"));
+    pw_text_print(out, "; %sthe first can clip from ", now ? "" : "beyond that ");
+    add_level(r, r->first_clip_input, out);
+}
+
+static void add_fullest(const pw_realisation *r, pw_text *out)
+{
+    int order[PW_MAX_NODES];
+    pw_nodes_by_headroom(r, order);
+    pw_text_print(out, "; the fullest is %s at %.3g of full scale", r->node[order[0]].name,
+                  r->node[order[0]].bound);
+}
+
+static void add_integrators(int integrating, int clipping, pw_text *out)
+{
+    char buffer[PW_FIGURE_ROOM];
+    if (integrating == 1) pw_text_add(out, "1 node integrates up to the clamp; ");
+    else pw_text_print(out, "%d nodes integrate up to the clamp; ", integrating);
+    if (clipping) pw_text_print(out, "%s beside can clip", pw_count(buffer, clipping, "node"));
+    else pw_text_add(out, "proved: no other node can clip");
 }
 
 void pw_phrase_range(const pw_results *results, pw_text *out)
 {
     char buffer[PW_FIGURE_ROOM];
     const pw_realisation *r = &results->realisation;
-    int clipping = 0, integrating = 0, order[PW_MAX_NODES];
-    if (!r->nodes) {
-        pw_text_add(out, "floats do not clip");
-        return;
-    }
+    int clipping = 0, integrating = 0;
     for (int i = 0; i < r->nodes; i++) {
         clipping += r->node[i].can_clip && !r->node[i].integrates;
         integrating += r->node[i].integrates;
     }
-    pw_nodes_by_headroom(r, order);
-    if (integrating)
-        pw_text_print(out, "%s up to the clamp; ", integrating == 1 ? "1 node integrates"
-                      : strcat(pw_count(buffer, integrating, "node"), " integrate"));
-    if (!pw_is_fixed(r)) pw_text_add(out, "floats do not clip");
-    else if (clipping) pw_text_print(out, "%s can clip", pw_count(buffer, clipping, "node"));
-    else pw_text_print(out, "proved: no %snode can clip", integrating ? "other " : "");
-    if (!integrating)
-        pw_text_print(out, "; the fullest is %s at %.3g of full scale", r->node[order[0]].name,
-                      r->node[order[0]].bound);
-    if (pw_is_fixed(r)) add_first_clip(results, out);
+    if (!pw_is_fixed(r)) {
+        pw_text_add(out, "floats do not clip");
+        if (r->nodes && !integrating) add_fullest(r, out);
+    } else if (integrating) add_integrators(integrating, clipping, out);
+    else {
+        if (clipping) pw_text_print(out, "%s can clip", pw_count(buffer, clipping, "node"));
+        else {
+            pw_text_add(out, "proved: no node can clip for any input up to ");
+            add_level(r, r->input_peak, out);
+        }
+        if (r->nodes) add_fullest(r, out);
+        add_first_clip(r, clipping, out);
+    }
 }
 
 void pw_phrase_noise(const pw_results *results, pw_text *out)
@@ -229,9 +251,10 @@ void pw_phrase_noise(const pw_results *results, pw_text *out)
                       n->growth_lsb2_per_sample);
         return;
     }
+    double offset = fabs(n->output_offset_lsb) < NO_OFFSET ? 0 : n->output_offset_lsb;
     pw_text_print(out, "%.3g LSB rms at the output (%.1f dBFS), offset %.3g LSB, SNR %.1f dB,"
-                  " %.1f effective bits", n->output_rms_lsb, n->output_dbfs, n->output_offset_lsb,
-                  n->snr_db, n->effective_bits);
+                  " %.1f effective bits", n->output_rms_lsb, n->output_dbfs, offset, n->snr_db,
+                  n->effective_bits);
 }
 
 void pw_phrase_limit_cycle(const pw_results *results, pw_text *out)

@@ -36,7 +36,17 @@ static pw_text written(bool color, bool full)
 
 static void assert_has(const pw_text *text, const char *what)
 {
-    if (!strstr(pw_text_string(text), what)) fail_msg("no \"%s\" in:\n%s", what, text->data);
+    pw_text flat = {0};           /* a paragraph may be wrapped inside the phrase */
+    bool there = strstr(pw_text_string(text), what) != NULL;
+    for (const char *c = pw_text_string(text); *c; c++) {
+        if (*c == '\n' && c[1] == ' ') {
+            pw_text_add(&flat, " ");
+            c += strspn(c + 1, " ");
+        } else pw_text_add_bytes(&flat, c, 1);
+    }
+    there = there || strstr(pw_text_string(&flat), what) != NULL;
+    pw_text_free(&flat);
+    if (!there) fail_msg("no \"%s\" in:\n%s", what, text->data);
 }
 
 static int lines_within(const pw_text *text, int width)
@@ -62,7 +72,7 @@ static void the_screen_says_what_matters(void **state)
     assert_has(&text, "1.25 deg at 1 kHz");
     assert_has(&text, "section 1 accumulator    1.250000  -1.94 dB  -0.32 bits  can clip");
     assert_has(&text, "clamps after 812 samples (101.5 ms)");
-    assert_has(&text, "0.8 of full scale (1.32 V)");
+    assert_has(&text, "1 node integrates up to the clamp; 1 node beside can clip");
     assert_has(&text, "0.75 LSB rms");
     assert_has(&text, "proved at most 3 LSB");
     assert_has(&text, "41.5 cycles");
@@ -123,17 +133,7 @@ static void the_whole_has_every_table(void **state)
         "error feedback k1 1, k2 0", "cannot clip, so no clamp", "SHA-256",
         "9f86d081884c7d659a2feaa0c55ad015a3bf4f1b2b0b822cd15d6c15b0f00a08", "all 2 orders tried",
         "arithmetic.scaling: l1; vectors.seed: 1", "anti-alias filter", "licensed or qualified"};
-    for (size_t i = 0; i < sizeof parts / sizeof *parts; i++) {
-        /* A paragraph may be wrapped inside the phrase: look in the text on one line. */
-        pw_text flat = {0};
-        pw_text_add(&flat, pw_text_string(&text));
-        for (char *c; (c = strstr(flat.data, "\n  ")) != NULL;) {
-            memmove(c, c + 2, strlen(c + 2) + 1);
-            *c = ' ';
-        }
-        if (!strstr(text.data, parts[i])) assert_has(&flat, parts[i]);
-        pw_text_free(&flat);
-    }
+    for (size_t i = 0; i < sizeof parts / sizeof *parts; i++) assert_has(&text, parts[i]);
     pw_text_free(&text);
 }
 
@@ -153,6 +153,26 @@ static void color_adds_nothing_to_the_words(void **state)
         pw_text_free(&colored);
         pw_text_free(&bare);
     }
+}
+
+static void the_range_says_how_far_it_holds(void **state)
+{
+    (void)state;
+    pw_realisation *r = &results.realisation;
+    r->nodes = 3;
+    pw_text text = written(false, false);
+    assert_has(&text, "1 node can clip; the fullest is section 1 accumulator at 1.25 of full scale");
+    assert_has(&text, "the first can clip from 0.8 of full scale (1.32 V)");
+    pw_text_free(&text);
+    r->nodes = 2;
+    text = written(false, false);
+    assert_has(&text, "proved: no node can clip for any input up to 0.5 of full scale (825 mV)");
+    assert_has(&text, "beyond that the first can clip from 0.8");
+    pw_text_free(&text);
+    r->first_clip_input = INFINITY;
+    text = written(false, false);
+    assert_has(&text, "none at full scale either");
+    pw_text_free(&text);
 }
 
 static void floats_claim_no_round_off(void **state)
@@ -250,6 +270,7 @@ int main(void)
     const struct CMUnitTest tests[] = {
         TEST(the_screen_says_what_matters), TEST(the_screen_is_a_screen_even_when_there_is_much),
         TEST(the_whole_has_every_table), TEST(color_adds_nothing_to_the_words),
+        TEST(the_range_says_how_far_it_holds),
         TEST(floats_claim_no_round_off), TEST(the_verdict_counts), TEST(nodes_come_fullest_first),
         TEST(figures_have_units), TEST(tables_align_by_what_is_seen), TEST(words_wrap_at_the_edge),
         TEST(equal_roots_are_one_group),
