@@ -72,11 +72,9 @@ static bool poles_inside(const pw_stage *stage, const pw_roots *analog, const pw
 {
     for (int i = 0; i < z->poles; i++) {
         if (analog->pole[i] == 0 || cabs(z->pole[i]) < 1) continue;
-        char said[PW_NUMBER_ROOM];
         pw_error(messages, stage->rate_at,
-                 "a pole that decays at %s cannot be told from one that does not, at this rate, in "
-                 "double precision; a much lower rate would do",
-                 pw_si(said, -creal(analog->pole[i]), "rad/s", 4));
+                 "a pole that decays at %.4g rad/s cannot be told from one that does not, at this "
+                 "rate, in double precision; a much lower rate would do", -creal(analog->pole[i]));
         return false;
     }
     return true;
@@ -103,8 +101,8 @@ static bool no_match(const pw_stage *stage, double hz, pw_messages *messages)
     const pw_given *asked = &stage->transform.match_gain_hz;
     char said[PW_NUMBER_ROOM];
     pw_error(messages, asked->given ? asked->at : stage->transform.method_at,
-             "the gain cannot be matched at %s, where it is zero or without bound; a frequency away "
-             "from the roots was expected", pw_si(said, hz, "Hz", 6));
+             "the gain cannot be matched at %s, where it is zero or without bound; a frequency "
+             "away from the roots was expected", pw_si(said, hz, "Hz", 6));
     return false;
 }
 
@@ -123,7 +121,8 @@ static void warn_unused_prewarp(const pw_stage *stage, pw_messages *messages)
     const pw_transform *t = &stage->transform;
     if (t->prewarp == PW_PREWARP_DEFAULT || t->prewarp == PW_PREWARP_NONE) return;
     if (t->method == PW_BILINEAR || t->method == PW_BEST) return;
-    pw_warning(messages, t->prewarp_at, "prewarp does nothing for %s; it belongs to bilinear and best",
+    pw_warning(messages, t->prewarp_at,
+               "prewarp does nothing for %s; it belongs to bilinear and best",
                pw_method_word(t->method));
 }
 

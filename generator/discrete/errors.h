@@ -41,7 +41,8 @@ typedef struct pw_side {
  * the truth, over the sorted grid, where the judge's magnitude is within floor_db of its largest
  * on the grid; the judge is the analog stage. A level more than twice floor_db down counts as that
  * far down, so that a notch of the other side that stands beside the true one makes a large error
- * and not an infinite one; it has no phase there. All errors are >= 0; a level error stops at PW_WORST_DB. */
+ * and not an infinite one; it has no phase there. All errors are >= 0; a level error stops at
+ * PW_WORST_DB. */
 #define PW_WORST_DB 400
 void pw_compare(const pw_grid *grid, const pw_side *judge, const pw_side *truth,
                 const pw_side *other, double floor_db, pw_error_figures *out);

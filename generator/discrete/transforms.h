@@ -28,7 +28,8 @@ double pw_dominant_corner(const pw_roots *analog, double rate_hz);
 void pw_matched(const pw_roots *analog, double rate_hz, pw_infinity at_infinity, pw_roots *out);
 
 /* The frequency at which a gain is matched where the user named none: where the analog gain is
- * largest in the band; 0 Hz where the gain there is that largest one to 0.1 dB (so that a low-pass keeps its gain at 0 Hz). In Hz. */
+ * largest in the band; 0 Hz where the gain there is that largest one to 0.1 dB, so that a low-pass
+ * keeps its gain at 0 Hz. In Hz. */
 double pw_gain_place(const pw_roots *analog, const double band_hz[2]);
 
 /* Rescales the digital factor, sign kept, so that both magnitudes at hz agree. False, and nothing

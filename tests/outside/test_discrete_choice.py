@@ -88,10 +88,11 @@ def choice():
     check([c["possible"] for c in a["candidates"] if c["method"] == "impulse-invariant"] == [False],
           "impulse-invariant is told as not possible with as many zeros as poles")
     # All-pass: the bilinear forms differ in phase alone.
-    a = run([complex(w * 300, w * 900)], [complex(-w * 300, w * 900)], 1.0, 8000.0, method="best")
-    degs = [c["deg"] for c in a["candidates"] if c["possible"] and c["db"] < 1e-9]
-    check(len(degs) >= 2 and degs == sorted(degs) and a["candidates"][0]["db"] < 1e-9,
-          "equal magnitude errors: the phase decides", str(degs))
+    for f in (100, 300, 700, 1100, 1900, 2700):
+        a = run([complex(w * 300, w * f)], [complex(-w * 300, w * f)], 1.0, 8000.0, method="best")
+        degs = [c["deg"] for c in a["candidates"] if c["possible"] and c["db"] < 1e-9]
+        check(len(degs) >= 2 and all(x <= y + 1e-6 for x, y in zip(degs, degs[1:])) and
+              a["candidates"][0]["db"] < 1e-9, "equal magnitude errors: the phase decides", str(degs))
 
 
 def messages():

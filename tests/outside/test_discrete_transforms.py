@@ -114,7 +114,8 @@ def each_section():
     twin_t = ([1e4j, -1e4j], [-1e4 * (2 - 3 ** 0.5), -1e4 * (2 + 3 ** 0.5)], 1.0)
     for name, parts in (("notch, shelf, first order", [notch, shelf, first]), ("with a DC block", [shelf, block, notch]),
                         ("with an integrator", [slow, shelf, first]), ("twin-T: real poles, a zero pair", [twin_t, block])):
-        zeros, poles = [r for q in parts for r in q[0]], [r for q in parts for r in q[1]]
+        zeros = [r for q in parts for r in q[0]]
+        poles = [r for q in reversed(parts) for r in q[1]]           # which zero belongs where is to be found
         a = run(zeros, poles, float(np.prod([q[2] for q in parts])), rate, prewarp="each-section")
         worst = max(relative(value_of(a, on_circle(hz, rate)), each_section_value(parts, rate, hz))
                     for hz in (2, 333.3, 954.0, 1500, 6543, 12000, 21000))
