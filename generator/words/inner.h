@@ -73,10 +73,4 @@ void pw_line_of_words(const pw_words *words, pw_line *line);
 void pw_scale_gains(const pw_format *format, const pw_realisation *r, long double factor,
                     long double gain[]);
 
-/* ---- order.c ---- */
-
-/* Poles and zeros -> monic sections (gain 1) in the order they are computed; the factor is left to
- * the caller. Integrators (poles at exactly 1) stand alone and last. why: how the order was found. */
-void pw_order_sections(const pw_roots *z, bool as_listed, pw_sections *out, const char **why);
-
 #endif

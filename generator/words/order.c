@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-#include "words/units.h"
+#include "words/arrange.h"
 
 #include <math.h>
 
@@ -32,12 +32,82 @@ static int sharpest(const pw_units *u, const bool served[])
     return best;
 }
 
-void pw_order_sections(const pw_roots *z, bool as_listed, pw_sections *out, const char **why)
+/* The nearest zeros for each pole unit, those nearest to the circle first; order[k].pole = k. */
+static void pair_nearest(const pw_units *u, const int start[], int poles, pw_arranged *order)
 {
-    pw_units u;
     int left[PW_MAX_ROOTS], singles = 0;
     bool served[PW_MAX_SECTIONS] = {false};
+    for (int g = 0; g < u->zeros; g++) {
+        left[g] = start[g];
+        singles += u->zero[g].size == 1 ? left[g] : 0;
+    }
+    for (int k = poles; k < u->poles; k++)
+        served[k] = true;
+    for (int k = 0; k < poles; k++) {
+        int pole = sharpest(u, served), second = -1;
+        int first = nearest(u, left, pole, u->pole[pole].size, singles);
+        served[pole] = true;
+        left[first]--;
+        if (u->zero[first].size == 1) {
+            singles--;
+            if (u->pole[pole].size == 2) {
+                second = nearest(u, left, pole, 1, singles);
+                left[second]--, singles--;
+            }
+        }
+        order[pole] = (pw_arranged){pole, {first, second}};
+    }
+}
+
+/* Integrators are last and take the zeros nearest to 1: what comes before them is then free of the
+ * zero that makes their output jump. Returns how many pole units come before; counts what is left. */
+static int serve_integrators(pw_units *u, pw_arranged *order)
+{
+    int before = 0;
+    while (before < u->poles && !u->pole[before].integrates)
+        before++;
+    for (int k = before; k < u->poles; k++) {
+        int left[PW_MAX_ROOTS], singles = 0, second = -1;
+        for (int g = 0; g < u->zeros; g++) {
+            left[g] = u->zero[g].count;
+            singles += u->zero[g].size == 1 ? left[g] : 0;
+        }
+        int first = nearest(u, left, k, u->pole[k].size, singles);
+        u->zero[first].count--;
+        if (u->zero[first].size == 1 && u->pole[k].size == 2) {
+            left[first]--;
+            second = nearest(u, left, k, 1, singles - 1);
+            u->zero[second].count--;
+        }
+        order[k] = (pw_arranged){k, {first, second}};
+    }
+    return before;
+}
+
+static const char *arrange(const pw_units *u, int poles, bool as_listed,
+                           const pw_arrange_context *context, pw_arranged *order)
+{
+    int count[PW_MAX_ROOTS];
+    for (int g = 0; g < u->zeros; g++)
+        count[g] = u->zero[g].count;
+    if (!as_listed && poles >= 1 && poles <= 6 && pw_arrange_all(u, poles, context, order))
+        return "of all pairings and orders the one of least round-off noise";
+    pair_nearest(u, count, poles, order);
+    if (as_listed)
+        return "as listed; each pole has the nearest zeros";
+    if (pw_arrange_order(u, poles, context, order))
+        return "each pole has the nearest zeros; of all orders the one of least round-off noise";
+    return "each pole has the nearest zeros; the order comes from a local search that moves one section "
+           "at a time while round-off noise falls";
+}
+
+void pw_order_sections(const pw_roots *z, bool as_listed, const pw_arrange_context *context,
+                       pw_sections *out, const char **why)
+{
+    pw_units u;
+    pw_arranged order[PW_MAX_SECTIONS];
     pw_units_make(z, as_listed, &u);
+    out->count = u.poles;
     if (u.poles == 0) {
         out->count = 1;
         out->list[0] = (pw_section){.gain = 1};
@@ -45,24 +115,8 @@ void pw_order_sections(const pw_roots *z, bool as_listed, pw_sections *out, cons
         *why = "a plain gain";
         return;
     }
-    for (int g = 0; g < u.zeros; g++) {
-        left[g] = u.zero[g].count;
-        singles += u.zero[g].size == 1 ? u.zero[g].count : 0;
-    }
-    out->count = u.poles;
-    for (int k = 0; k < u.poles; k++) {
-        int pole = sharpest(&u, served), first, second = -1;
-        served[pole] = true;
-        first = nearest(&u, left, pole, u.pole[pole].size, singles);
-        left[first]--;
-        if (u.zero[first].size == 1) {
-            singles--;
-            if (u.pole[pole].size == 2) {
-                second = nearest(&u, left, pole, 1, singles);
-                left[second]--, singles--;
-            }
-        }
-        out->list[pole] = pw_units_section(&u, pole, first, second);
-    }
-    *why = as_listed ? "as listed" : "poles with the nearest zeros";
+    int before = serve_integrators(&u, order);
+    *why = before ? arrange(&u, before, as_listed, context, order) : "integrators";
+    for (int k = 0; k < u.poles; k++)
+        out->list[k] = pw_units_section(&u, order[k].pole, order[k].zero[0], order[k].zero[1]);
 }

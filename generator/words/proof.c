@@ -94,7 +94,7 @@ typedef struct section_bound {
 static section_bound bound_section(pw_proof *p, const pw_realisation *r, int from, long double peak,
                                    int k)
 {
-    section_bound s = {.clips = false};
+    section_bound s = {{0}, {0}, {0}, false};
     int places = r->section[k].structure == PW_COUPLED ? PW_PLACES : 1;
     const pw_route *in = pw_paths_input(&p->paths, from);
     for (int place = 0; place < places; place++) {
@@ -209,16 +209,20 @@ static void walk(pw_proof *p, pw_realisation *r, long double peak, bool keep)
     }
 }
 
-/* The input level up to which the whole chain is linear. */
-static double first_clip(pw_proof *p, const pw_realisation *r)
+/* The chain as long as nothing clips; the input level (of full scale) up to which that is so. */
+static double linear_walk(pw_proof *p, const pw_realisation *r)
 {
     double level = INFINITY;
+    int from = 0;
     for (int k = 0; k < r->count && p->format.fixed; k++) {
-        section_bound s = bound_section(p, r, 0, 1, k);
-        for (int i = 0; i < (r->section[k].structure == PW_COUPLED ? PW_PLACES : 1); i++)
+        section_bound s = bound_section(p, r, from, 1, k);
+        p->gain[k] = (double)s.gain[0], p->rounding[k] = (double)s.rounding[0];
+        p->inner_gain[k] = (double)fmaxl(s.gain[1], s.gain[2]);
+        p->inner_rounding[k] = (double)fmaxl(s.rounding[1], s.rounding[2]);
+        for (int i = 0; from == 0 && i < (r->section[k].structure == PW_COUPLED ? PW_PLACES : 1); i++)
             level = fmin(level, (double)((p->format.largest - s.rounding[i]) / s.gain[i]));
         if (p->paths.integrates[k])
-            return 0;
+            from = k + 1, level = 0;
     }
     return level >= 1 ? INFINITY : fmax(level, 0);
 }
@@ -246,7 +250,7 @@ void pw_proof_end(pw_proof *proof)
 void pw_prove(pw_proof *proof, pw_realisation *r)
 {
     name_nodes(r);
-    r->first_clip_input = first_clip(proof, r);
+    r->first_clip_input = linear_walk(proof, r);
     walk(proof, r, 1, false);
     walk(proof, r, r->input_peak, true);
     for (int k = 0; k < r->count; k++) {

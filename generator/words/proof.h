@@ -5,7 +5,14 @@
 
 #include "words/paths.h"
 
-typedef struct pw_proof { pw_format format; pw_paths paths; } pw_proof;
+typedef struct pw_proof {
+    pw_format format;
+    pw_paths paths;
+    /* As long as nothing clips (integrators still cut): the largest over the clamped words of each
+     * section, per unit of input, and what rounding adds, of full scale. Filled by pw_prove. */
+    double gain[PW_MAX_SECTIONS], rounding[PW_MAX_SECTIONS];
+    double inner_gain[PW_MAX_SECTIONS], inner_rounding[PW_MAX_SECTIONS];   /* coupled: u1, u2 */
+} pw_proof;
 
 /* Between start and end the norms are kept, so that proof, noise and limit cycles share them. */
 void pw_proof_start(const pw_format *format, const pw_realisation *r, pw_proof *out);

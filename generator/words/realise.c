@@ -1,4 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
+#include "words/arrange.h"
 #include "words/cycles.h"
 #include "words/job.h"
 
@@ -91,7 +92,11 @@ pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_dig
     (void)analog, (void)target;
     set_up(&j, stage, digital, out, messages);
     pw_sections sections;
-    pw_order_sections(&digital->z, stage->arithmetic.as_listed, &sections, &out->order_why);
+    pw_arrange_context context = {
+        .shaped = j.format.fixed && stage->arithmetic.structure != PW_DIRECT_1,
+        .factor = (double)fabsl(j.factor) * out->input_peak,
+    };
+    pw_order_sections(&digital->z, stage->arithmetic.as_listed, &context, &sections, &out->order_why);
     out->count = sections.count;
     memcpy(out->ideal, sections.list, sizeof sections.list);
     pw_scale_gains(&j.format, out, j.factor, j.gain);

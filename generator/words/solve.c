@@ -8,7 +8,7 @@
 #include <math.h>
 #include <string.h>
 
-#define ROUNDS 6                 /* of giving way where rounding needs room */
+#define ROUNDS 6                 /* of moving scales to where rounding leaves them */
 
 /* The first section of the segment that section k lies in: behind the last integrator. */
 static int segment_start(const pw_job *job, int k)
@@ -66,32 +66,42 @@ bool pw_job_words(pw_job *job)
     return true;
 }
 
-static bool over(const pw_job *job, const pw_node *node, double *by)
+/* The factor that brings a node to just below full scale; 1 where rounding takes most of it, and
+ * where it stands well. */
+static double correction(const pw_job *job, double gain, double rounding, double peak)
 {
-    *by = node->bound / job->format.largest;
-    return *by > 1 && *by <= 2 && !node->integrates;
+    double largest = job->format.largest, room = largest * (1 - 1e-5) - rounding;
+    double now = peak * gain + rounding;
+    if (!(room > 0.4 * largest) || (now <= largest && now >= 0.998 * largest))
+        return 1;
+    return room / (peak * gain);
 }
 
-/* Where rounding pushed a scaled node over full scale, its section gives way and the next one makes
- * up for it. True where something moved. */
-static bool give_way(pw_job *job)
+/* Moves every scaled section to just below full scale, rounding included; the next one makes up for
+ * it. True where something moved. */
+static bool settle_scales(pw_job *job, const pw_proof *proof)
 {
     pw_realisation *r = job->out;
     bool moved = false;
-    double by;
-    if (!job->format.fixed || r->scaling != PW_SCALING_L1)
+    double peak = r->input_peak, before = 1;
+    if (!job->format.fixed)
         return false;
-    for (int k = 0; k + 1 < r->count; k++)
-        if (over(job, &r->node[k], &by)) {
-            job->gain[k] /= by * 1.0005;
-            job->gain[k + 1] *= by * 1.0005;
-            moved = true;
+    for (int k = 0; k < r->count; k++) {
+        bool free = r->scaling == PW_SCALING_L1 && k + 1 < r->count && r->ideal[k].order > 0
+                 && !proof->paths.integrates[k];
+        double by = free ? correction(job, proof->gain[k], proof->rounding[k], peak) : 1;
+        job->gain[k] *= by / before;
+        if (r->section[k].structure == PW_COUPLED) {
+            double in = correction(job, proof->inner_gain[k], proof->inner_rounding[k], peak);
+            in = in > 1 ? 1 : in;
+            job->inner[k] *= in;
+            moved = moved || in != 1;
         }
-    for (int i = r->count; i < r->nodes; i++)
-        if (r->section[r->node[i].section - 1].structure == PW_COUPLED && over(job, &r->node[i], &by)) {
-            job->inner[r->node[i].section - 1] /= by * 1.0005;
-            moved = true;
-        }
+        moved = moved || by != 1;
+        before = by;
+        if (proof->paths.integrates[k])
+            peak = 1;
+    }
     return moved;
 }
 
@@ -107,7 +117,7 @@ bool pw_job_solve(pw_job *job)
             return false;
         pw_proof_start(&job->format, job->out, &proof);
         pw_prove(&proof, job->out);
-        bool again = round < ROUNDS && give_way(job);
+        bool again = round < ROUNDS && settle_scales(job, &proof);
         if (!again)
             pw_noise_find(&proof, job->stage, job->out, job->share);
         pw_proof_end(&proof);
