@@ -57,6 +57,7 @@ static void table(builder *b, int i)
 {
     const pw_kernel *k = &b->kernel[i];
     pw_text *t = &b->out->functions;
+    if (!k->words) return;
     pw_text_print(t, "static const int32_t %s_words_%d[%d] = {", b->prefix, i + 1, k->words);
     for (int w = 0; w < k->words; w++)
         if (k->word[w] == INT32_MIN) pw_text_print(t, "%sINT32_MIN", w ? ", " : "");
@@ -76,10 +77,12 @@ static void calls(builder *b, const char *state, const char *clipped)
         pw_text_print(t, "    const size_t whole = n & ~(size_t)%d;\n    size_t i;\n", multiple - 1);
     pw_text_print(t, "    if (%s) {\n", count);
     for (int i = 0; i < b->r->count; i++) {
-        char where[80];
+        const pw_kernel *k = &b->kernel[i];
+        char where[80], words[100] = "";
         snprintf(where, sizeof where, state, i);
-        pw_text_print(t, "        %s%s%s(%s, %s_words_%d, %s, out, %s);\n", b->kernel[i].clamps ? clipped : "",
-                      b->kernel[i].clamps ? " += " : "(void)", b->name[i], where, b->prefix, i + 1, i ? "out" : "in", count);
+        if (k->words) snprintf(words, sizeof words, "%.60s_words_%d, ", b->prefix, i + 1);
+        pw_text_print(t, "        %s%s%s(%s, %s%s, out, %s);\n", k->clamps ? clipped : "", k->clamps ? " += " : "(void)",
+                      b->name[i], where, words, i ? "out" : "in", count);
     }
     pw_text_add(t, "    }\n");
     if (multiple > 1)

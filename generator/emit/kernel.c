@@ -158,6 +158,51 @@ static bool choose_armv6(const facts *given, pw_kernel *k)
     return true;
 }
 
+static const char *const avr_word[5] = {"b0", "b1", "b2", "a1", "a2"};
+
+/* Sign and magnitude of every word, byte by byte; the sum of the a (negated) and b words. */
+static void plan_avr_words(pw_template_values *v, const int32_t b[3], const int32_t a[3], int bytes)
+{
+    static const char *const suffix[] = {"low", "high", "byte2", "byte3"};
+    for (int i = 0; i < 5; i++) {
+        int64_t value = i < 3 ? b[i] : -(int64_t)a[i - 2];
+        uint64_t size = (uint64_t)(value < 0 ? -value : value);
+        pw_template_set(v, pw_arena_print(v->arena, "%s_add", avr_word[i]), value < 0 ? "sub" : "add");
+        pw_template_set(v, pw_arena_print(v->arena, "%s_adc", avr_word[i]), value < 0 ? "sbc" : "adc");
+        pw_template_set_number(v, pw_arena_print(v->arena, "%s_any", avr_word[i]), size != 0);
+        for (int k = 0; k < bytes; k++)
+            pw_template_set_number(v, pw_arena_print(v->arena, "%s_%s", avr_word[i], suffix[k]), (size >> 8 * k) & 0xFFu);
+    }
+}
+
+static void set_bytes(pw_template_values *v, const char *name, uint64_t value, int bytes)
+{
+    for (int k = 0; k < bytes; k++)
+        pw_template_set_number(v, pw_arena_print(v->arena, "%s_%d", name, k), (value >> 8 * k) & 0xFFu);
+}
+
+static bool choose_avr(const facts *f, pw_kernel *k)
+{
+    const int32_t *b = f->w->b, *a = f->w->a;
+    if (!fits_32(f) || f->F < 9 || f->F > 15) return false;
+    *k = (pw_kernel){.file = "avr", .kernel = "narrow", .values = k->values, .multiple = 1, .clamps = f->clips,
+                     .narrow = true, .why = "32-bit sum of products of bytes"};
+    pw_template_values *v = &k->values;
+    set_common(v, f);
+    plan_avr_words(v, b, a, 2);
+    int64_t late = f->half + (INT64_C(1) << (15 + f->F)) + 32768 * ((int64_t)a[1] + a[2]);
+    int64_t early = f->right_half - 32768 * ((int64_t)b[0] + b[1] + b[2]);
+    set_bytes(v, "d1", (uint64_t)(f->right ? early : early + late), 4);
+    set_bytes(v, "d2", (uint64_t)-late, 4);
+    pw_template_set_number(v, "right_bytes", f->right / 8);
+    pw_template_set_number(v, "right_bits", f->right % 8);
+    pw_template_set_number(v, "up", f->F >= 12 ? 16 - f->F : 0);
+    pw_template_set_number(v, "down", f->F >= 12 ? 0 : f->F - 8);
+    pw_template_set_number(v, "limit", 1 << (f->F - 8));
+    pw_template_set_number(v, "negative", 0x80 + (1 << (f->F - 9)));
+    return true;
+}
+
 static void plan_narrow(pw_kernel *k, const facts *f)
 {
     uint32_t added = (uint32_t)(f->right_half + (f->half << f->right));
@@ -229,6 +274,9 @@ bool pw_kernel_choose(const pw_realisation *realisation, int section, const pw_t
         break;
     case PW_ARMV6_M:
         if (choose_armv6(&f, out)) return true;
+        break;
+    case PW_AVR:
+        if (choose_avr(&f, out)) return true;
         break;
     default: break;
     }

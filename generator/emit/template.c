@@ -5,6 +5,7 @@
 #include <limits.h>
 #include <stdbool.h>
 #include <stdio.h>
+#include <stdlib.h>
 #include <string.h>
 
 #include "base/files.h"
@@ -103,7 +104,8 @@ static int matching(expansion *e, int from, int to, bool or_else)
     int depth = 0;
     for (int i = from; i < to; i++) {
         const char *l = e->line[i] + strspn(e->line[i], " ");
-        if (!strncmp(l, "@if ", 4) || !strncmp(l, "@body ", 6) || !strncmp(l, "@asm", 4)) depth++;
+        if (!strncmp(l, "@if ", 4) || !strncmp(l, "@body ", 6) || !strncmp(l, "@asm", 4)
+            || !strncmp(l, "@repeat ", 8)) depth++;
         else if (!strncmp(l, "@end", 4) && depth-- == 0) return i;
         else if (or_else && !strncmp(l, "@else", 5) && depth == 0) return i;
     }
@@ -164,7 +166,11 @@ static void expand(expansion *e, int from, int to)
         if (!strcmp(word[0], "@if") && n == 2) i = expand_if(e, i, to, word[1]);
         else if (!strcmp(word[0], "@body")) i = matching(e, i + 1, to, false);
         else if (!strcmp(word[0], "@use") && n >= 2) expand_use(e, word, n);
-        else if (!strcmp(word[0], "@asm")) {
+        else if (!strcmp(word[0], "@repeat") && n == 2) {
+            int end = matching(e, i + 1, to, false);
+            for (int times = atoi(value_of(e, word[1])); times > 0; times--) expand(e, i + 1, end);
+            i = end;
+        } else if (!strcmp(word[0], "@asm")) {
             int end = matching(e, i + 1, to, false);
             e->in_asm = true;
             expand(e, i + 1, end);

@@ -7,6 +7,7 @@
  *   @if NAME / @else / @end   kept where the value NAME is not 0 (@if !NAME: where it is)
  *   @body NAME p q .. / @end  lines for later use
  *   @use NAME v w ..          those lines with p, q, .. standing for v, w, ..
+ *   @repeat NAME / @end       as often as the value NAME says
  *   @asm / @end               lines of assembler: quoted, their "// .." turned into C comments
  *   $name or ${name}          the value of name
  */
@@ -16,7 +17,7 @@
 #include "base/arena.h"
 #include "base/text.h"
 
-#define PW_TEMPLATE_VALUES 64
+#define PW_TEMPLATE_VALUES 128
 
 typedef struct pw_template_values {
     struct { const char *name, *text; } row[PW_TEMPLATE_VALUES];
