@@ -44,7 +44,7 @@ CFLAGS   := -std=gnu11 $(WARN) -ffp-contract=off $(CFLAGS_$(VARIANT)) -Igenerato
 LDLIBS   := -lgsl -lgslcblas -lyaml -ljansson -lmd -lsndfile -lmpc -lmpfr -lgmp -lm -lpthread
 
 .DEFAULT_GOAL := all
-.PHONY: all help deps demo check check-targets check-all bench sizes install uninstall clean debug san release tests probes
+.PHONY: all help deps demo check check-targets check-all bench sizes install uninstall documents deb dist clean debug san release tests probes
 
 # ---- Building ----
 
@@ -119,22 +119,41 @@ sizes: all                       ## the size of the program and of each runtime 
 # ---- Installing ----
 
 SHARE = $(DESTDIR)$(PREFIX)/share
+LIB   = $(DESTDIR)$(PREFIX)/lib
 DOCS := $(OUT)/documents
 
 $(OUT)/make-documents: $(OUT)/generator/documents.o $(OBJECTS)
 	@echo "  link    $@"
 	$(Q)$(CC) $(CFLAGS) -o $@ $^ $(LDLIBS)
 
+RUNTIME_OBJECTS := $(patsubst runtime/%.c,$(OUT)/runtime/%.o,$(sort $(wildcard runtime/*.c)))
+
+$(OUT)/runtime/%.o: runtime/%.c Makefile
+	@mkdir -p $(@D)
+	@echo "  compile $<"
+	$(Q)$(CC) -std=c99 -O2 -fPIC -ffp-contract=off -Wall -Wextra -Wconversion -pedantic -Werror -Iruntime -Iinclude -Iinclude/polewright -c -o $@ $<
+
+$(OUT)/libpolewright-runtime.a: $(RUNTIME_OBJECTS)
+	@rm -f $@
+	$(Q)$(AR) rcsD $@ $^
+
 documents: $(OUT)/make-documents ## build/release/documents: manual pages, completions, schema, made from the tables
 	@mkdir -p $(DOCS)
 	$(OUT)/make-documents $(DOCS)
 
-install: all documents           ## installs under PREFIX (default /usr/local), below DESTDIR where given
+install: all documents $(OUT)/libpolewright-runtime.a          ## installs under PREFIX (default /usr/local), below DESTDIR where given
 	install -D -m 755 build/polewright $(DESTDIR)$(PREFIX)/bin/polewright
 	install -d $(SHARE)/polewright/runtime $(SHARE)/polewright/include
 	install -m 644 runtime/*.[ch] $(SHARE)/polewright/runtime/
 	cp -R include/polewright $(SHARE)/polewright/include/
 	cp -R targets $(SHARE)/polewright/
+	install -d $(DESTDIR)$(PREFIX)/include/polewright $(LIB)/pkgconfig $(LIB)/cmake/polewright-runtime
+	install -m 644 include/polewright/*.h runtime/*.h $(DESTDIR)$(PREFIX)/include/polewright/
+	install -m 644 $(OUT)/libpolewright-runtime.a $(LIB)/
+	sed -e 's|@PREFIX@|$(PREFIX)|' -e 's|@VERSION@|$(VERSION)|' generator/packaging/polewright-runtime.pc.in \
+	  > $(LIB)/pkgconfig/polewright-runtime.pc
+	sed -e 's|@VERSION@|$(VERSION)|' generator/packaging/polewright-runtime-config.cmake.in \
+	  > $(LIB)/cmake/polewright-runtime/polewright-runtime-config.cmake
 	install -m 644 $(DOCS)/polewright-stage.schema.json $(SHARE)/polewright/
 	install -D -m 644 $(DOCS)/polewright.1 $(SHARE)/man/man1/polewright.1
 	install -D -m 644 $(DOCS)/polewright-stage.5 $(SHARE)/man/man5/polewright-stage.5
@@ -144,7 +163,17 @@ install: all documents           ## installs under PREFIX (default /usr/local), 
 uninstall:                       ## removes what install put there
 	rm -f $(DESTDIR)$(PREFIX)/bin/polewright $(SHARE)/man/man1/polewright.1 $(SHARE)/man/man5/polewright-stage.5 \
 	  $(SHARE)/bash-completion/completions/polewright $(SHARE)/zsh/site-functions/_polewright
-	rm -rf $(SHARE)/polewright
+	rm -rf $(SHARE)/polewright $(DESTDIR)$(PREFIX)/include/polewright $(LIB)/cmake/polewright-runtime
+	rm -f $(LIB)/libpolewright-runtime.a $(LIB)/pkgconfig/polewright-runtime.pc
+
+deb: all                         ## build/deb/polewright_*.deb, a Debian package
+	@mkdir -p build/deb
+	sh generator/packaging/make-deb.sh $(VERSION) build/deb
+
+dist:                            ## build/polewright-VERSION.tar.gz, the same bytes for the same commit
+	@mkdir -p build
+	git archive --format=tar --prefix=polewright-$(VERSION)/ HEAD | gzip -9n > build/polewright-$(VERSION).tar.gz
+	@ls -l build/polewright-$(VERSION).tar.gz
 
 # ---- Housekeeping ----
 
