@@ -54,12 +54,22 @@ static pw_status collect(const pw_analog_spec *spec, pw_roots *out, pw_messages 
     return status == PW_OK ? check_poles(out, spec->at, messages) : status;
 }
 
-/* Where to say that there are more zeros than poles, or too many integrators. */
-static pw_where place(const pw_analog_spec *spec, bool zeros)
+/* Where the first zero too many stands, as far as the description says. */
+static pw_where zero_place(const pw_analog_spec *spec)
 {
     if (spec->kind == PW_ANALOG_POLYNOMIALS)
-        return zeros ? spec->numerator_at : spec->denominator_at;
-    return spec->at;
+        return spec->numerator_at;
+    return spec->kind == PW_ANALOG_ROOTS ? spec->zero[spec->zeros - 1].at : spec->at;
+}
+
+/* Where the last pole at 0 stands. */
+static pw_where integrator_place(const pw_analog_spec *spec)
+{
+    pw_where at = spec->kind == PW_ANALOG_POLYNOMIALS ? spec->denominator_at : spec->at;
+    for (int i = 0; spec->kind == PW_ANALOG_ROOTS && i < spec->poles; i++)
+        if (spec->pole[i].s == 0)
+            at = spec->pole[i].at;
+    return at;
 }
 
 pw_status pw_analog_build(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages)
@@ -69,7 +79,7 @@ pw_status pw_analog_build(const pw_analog_spec *spec, pw_roots *out, pw_messages
         return status;
     if (out->zeros > out->poles) {
         int more = out->zeros - out->poles;
-        pw_error(messages, place(spec, true), "%d zero%s and %d pole%s: the gain would grow without end with "
+        pw_error(messages, zero_place(spec), "%d zero%s and %d pole%s: the gain would grow without end with "
                  "frequency; expected at least as many poles as zeros: add %s, above the frequencies that matter",
                  out->zeros, out->zeros == 1 ? "" : "s", out->poles, out->poles == 1 ? "" : "s",
                  more == 1 ? "a pole" : "poles");
@@ -77,7 +87,7 @@ pw_status pw_analog_build(const pw_analog_spec *spec, pw_roots *out, pw_messages
     }
     int integrators = pw_analog_integrators(out);
     if (integrators > MAX_INTEGRATORS) {
-        pw_error(messages, place(spec, false), "%d poles at 0; expected at most %d", integrators,
+        pw_error(messages, integrator_place(spec), "%d poles at 0; expected at most %d", integrators,
                  MAX_INTEGRATORS);
         status = PW_WRONG;
     }

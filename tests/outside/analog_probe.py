@@ -10,19 +10,18 @@ import tap
 
 PROBE = tap.ROOT + "/build/release/outside/probe_analog"
 PUBLISHED = tap.ROOT + "/tests/outside/published/"
-APPROXIMATIONS = ["butterworth", "chebyshev", "inverse-chebyshev", "elliptic", "bessel", "critically-damped",
-                  "linkwitz-riley"]
 SHAPES = ["lowpass", "highpass", "bandpass", "bandstop"]
-NORMALISATIONS = ["magnitude", "phase", "delay"]
 
 
-def ask(descriptions):
-    """A list of answers, each with lists of complex poles and zeros, or with errors."""
-    text = "".join(json.dumps(d) + "\n" for d in descriptions)
+def ask(descriptions, hz=()):
+    """A list of answers, each with lists of complex poles and zeros (and the response at these
+    frequencies), or with errors."""
+    text = "".join(json.dumps({"analog": d, "hz": list(hz)}) + "\n" for d in descriptions)
     ran = subprocess.run([PROBE], input=text, capture_output=True, text=True)
     lines = ran.stdout.splitlines()
     if ran.returncode != 0 or len(lines) != len(descriptions):
         raise RuntimeError(f"probe: status {ran.returncode}, {len(lines)} answers\n{ran.stderr}")
+    sys.stderr.write(ran.stderr)
     answers = [json.loads(line) for line in lines]
     for a in answers:
         for name in ("poles", "zeros", "response"):
@@ -31,11 +30,25 @@ def ask(descriptions):
     return answers
 
 
-def family(approximation, shape, order, corners, ripple=None, stopband=None, corner_at=None,
-           normalise="magnitude", hz=()):
-    corners = list(corners) if isinstance(corners, (list, tuple)) else [corners, 0]
-    return {"family": [APPROXIMATIONS.index(approximation), SHAPES.index(shape), order, *corners, ripple,
-                       stopband, corner_at, NORMALISATIONS.index(normalise)], "hz": list(hz)}
+def family(approximation, shape, order, corners, ripple=None, stopband=None, corner_at=None, normalise=None):
+    f = {"approximation": approximation, "shape": shape, "order": order}
+    if isinstance(corners, (list, tuple)):
+        f["corners"] = list(corners)
+    else:
+        f["corner"] = corners
+    given = {"ripple": ripple, "stopband": stopband, "corner-at": corner_at}
+    f.update({k: f"{v!r} dB" for k, v in given.items() if v is not None})
+    if normalise:
+        f["normalise"] = normalise
+    return {"family": f}
+
+
+def polynomials(numerator, denominator):
+    return {"polynomials": {"numerator": list(numerator), "denominator": list(denominator)}}
+
+
+def roots(zeros, poles, gain):
+    return {"roots": {"zeros": list(zeros), "poles": list(poles), "gain": gain}}
 
 
 def published(name):

@@ -6,7 +6,7 @@ Wilkinson's polynomial: J. H. Wilkinson, "Rounding Errors in Algebraic Processes
 import numpy as np
 from mpmath import mp, mpf, mpc
 
-from analog_probe import ask, match, tap
+from analog_probe import ask, match, polynomials, tap
 
 mp.dps = 60
 
@@ -23,12 +23,12 @@ def both(p):
 
 
 def poles_of(roots):
-    return ask([{"numerator": [1.0], "denominator": expand(roots)}])[0]["poles"]
+    return ask([polynomials([1.0], expand(roots))])[0]["poles"]
 
 
 def zeros_of(numerator):
     n = len(numerator)
-    return ask([{"numerator": numerator, "denominator": expand([-1e3] * n)}])[0]["zeros"]
+    return ask([polynomials(numerator, expand([-1e3] * n))])[0]["zeros"]
 
 
 def structure(name, roots, most):
@@ -82,14 +82,14 @@ tap.check(all(z.real == 0 for z in got) and len(set(got)) == 4, "two notches a h
 exactly("zeros in the right half plane stay there", zeros_of([1.0, -3.0, 2.0]), [1, 2])
 exactly("trailing zeros are zeros at exactly 0", zeros_of([2.0, 4.0, 0.0, 0.0]), [0, 0, -2])
 
-answer = ask([{"numerator": [3.0, 0.0], "denominator": [2.0, 8.0, 0.0, 0.0]}])[0]
+answer = ask([polynomials([3.0, 0.0], [2.0, 8.0, 0.0, 0.0])])[0]
 tap.check(answer["zeros"] == [] and answer["poles"] == [0, -4] and float(answer["factor"]) == 1.5,
           "a power of s in both polynomials cancels; the factor is the quotient of the leading ones")
 
 # Wilkinson's 20 roots are not those of the rounded coefficients: the reference solves the latter.
 c = expand([mpf(-k) for k in range(1, 21)])
 truth = mp.polyroots([mpf(x) for x in c], maxsteps=1000, extraprec=500)
-got = ask([{"numerator": [1.0], "denominator": c}])[0]["poles"]
+got = ask([polynomials([1.0], c)])[0]["poles"]
 tap.check(match(got, [complex(r) for r in truth]) < 1e-15, "Wilkinson's 20 roots, of the rounded coefficients")
 
 # Random structures from coefficients that numpy multiplied out in double precision.
@@ -102,7 +102,7 @@ for _ in range(1000 if tap.FULL else 200):
         pair = size * np.exp(1j * np.pi * (0.5 + rng.uniform(0.02, 0.48)))
         roots += ([-size] if rng.random() < 0.5 else [pair, pair.conjugate()]) * many
     cases.append(roots)
-asked = [{"numerator": [1.0], "denominator": np.poly(r).real.tolist()} for r in cases]
+asked = [polynomials([1.0], np.poly(r).real.tolist()) for r in cases]
 for roots, answer in zip(cases, ask(asked)):
     wrong += len(set(answer["poles"])) != len(set(roots))
     worst = max(worst, match(answer["poles"], roots))
@@ -111,10 +111,10 @@ tap.check(wrong == 0 and worst < 1e-12, f"{len(cases)} random products, multipli
 
 # Simple roots of random coefficients: the polynomial as given, solved by mpmath.
 worst = 0.0
-asked = [{"numerator": rng.normal(size=n).tolist(), "denominator": expand([-1] * n)}
+asked = [polynomials(rng.normal(size=n).tolist(), expand([-1] * n))
          for n in range(2, 26 if tap.FULL else 16)]
 for description, answer in zip(asked, ask(asked)):
-    truth = mp.polyroots([mpf(x) for x in description["numerator"]], maxsteps=500, extraprec=300)
+    truth = mp.polyroots([mpf(x) for x in description["polynomials"]["numerator"]], maxsteps=500, extraprec=300)
     worst = max(worst, match(answer["zeros"], [complex(r) for r in truth]))
 tap.check(worst < 3e-16, "random coefficients against mpmath", f"off by {worst:.1e}")
 tap.done()
