@@ -33,6 +33,7 @@ pw_code *pw_code_file(pw_arena *arena, const char *stage, const char *sample)
 
 void pw_put(pw_code *in, const char *line) { append(in, PW_CODE_LINE, line); }
 void pw_directive(pw_code *in, const char *text) { append(in, PW_CODE_DIRECTIVE, text); }
+void pw_raw(pw_code *in, const char *lines) { append(in, PW_CODE_RAW, lines); }
 void pw_blank(pw_code *in) { append(in, PW_CODE_BLANK, ""); }
 pw_code *pw_function(pw_code *in, const char *head) { return append(in, PW_CODE_FUNCTION, head); }
 pw_code *pw_comment(pw_code *in) { return append(in, PW_CODE_COMMENT, ""); }

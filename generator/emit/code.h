@@ -3,7 +3,7 @@
  * knows indentation, line lengths, comment marks and how a number is spelled in C.
  *
  * Text of an item may hold: $ for the name of the stage, @ for the C type of a sample, # for the
- * number of the section that the item belongs to (directives keep their #). Comments are plain
+ * number of the section that the item belongs to and ` for one less (directives keep their #). Comments are plain
  * prose without substitution; what would end or upset a comment is made harmless. */
 #ifndef PW_EMIT_CODE_H
 #define PW_EMIT_CODE_H
@@ -27,6 +27,7 @@ typedef enum pw_code_kind {
     PW_CODE_ARRAY,               /* text = {numbers}; */
     PW_CODE_BLOCK,               /* text { children }tail */
     PW_CODE_FUNCTION,            /* the same with its braces on lines of their own */
+    PW_CODE_RAW,                 /* whole lines from elsewhere, as they are */
     PW_CODE_BLANK
 } pw_code_kind;
 
@@ -52,6 +53,7 @@ void pw_code_render(const pw_code *file, pw_text *out);
 void pw_put(pw_code *in, const char *line);
 void pw_put_with(pw_code *in, const char *line, const char *note);
 void pw_directive(pw_code *in, const char *text);
+void pw_raw(pw_code *in, const char *lines);
 void pw_blank(pw_code *in);
 void pw_constant(pw_code *in, const char *declaration, pw_number number, const char *note);
 void pw_assign(pw_code *in, const char *what, pw_number number);         /* what = number; */

@@ -5,9 +5,9 @@
 #include "emit/fixed.h"
 #include "simulate/simulate.h"
 
-const char *pw_coupled_member(const pw_words *w, int k)
+const char *pw_coupled_member(const pw_emission *e, const pw_words *w, int k)
 {
-    (void)w;
+    (void)e, (void)w;
     return k == 0 ? "u1_#" : k == 1 ? "u2_#" : NULL;
 }
 

@@ -10,7 +10,12 @@
 
 enum { X1, X2, Y1, Y2, E1, E2, MEMBERS };
 
-static const char *const factor[MEMBERS] = {"s->x1_#", "s->x2_#", "s->y1_#", "s->y2_#", "s->e1_#", "s->e2_#"};
+/* Where a section keeps its words: in members of its own, or, where kernels of the part take the
+ * blocks, in the array of four that those read. */
+static const char *const own[MEMBERS] = {"s->x1_#", "s->x2_#", "s->y1_#", "s->y2_#", "s->e1_#", "s->e2_#"};
+static const char *const shared[MEMBERS] = {"s->d[`][0]", "s->d[`][1]", "s->d[`][2]", "s->d[`][3]", NULL, NULL};
+
+static const char *factor(const pw_emission *e, int k) { return e->part_kernels ? shared[k] : own[k]; }
 
 static int align_of(const pw_words *w) { return w->b_fraction - w->a_fraction; }
 
@@ -27,12 +32,12 @@ pw_accumulator pw_direct_accumulator(const pw_emission *e, const pw_words *w)
     return PW_ACC_64;
 }
 
-const char *pw_direct_member(const pw_words *w, int k)
+const char *pw_direct_member(const pw_emission *e, const pw_words *w, int k)
 {
     const bool kept[MEMBERS] = {
         w->b[1] || w->b[2], w->b[2], w->a[1] || w->a[2], w->a[2], is_shaped(w), is_shaped(w) && w->k2,
     };
-    return k < MEMBERS && kept[k] ? factor[k] + 3 : NULL;
+    return k < MEMBERS && kept[k] ? factor(e, k) + 3 : NULL;
 }
 
 void pw_direct_fields(const pw_emission *e, const pw_words *w, pw_code *in)
@@ -41,8 +46,14 @@ void pw_direct_fields(const pw_emission *e, const pw_words *w, pw_code *in)
         "input of section %d, a sample ago", "two samples ago", "output of section %d, a sample ago",
         "two samples ago", "what rounding left, in units of the accumulator", "a sample before",
     };
+    if (e->part_kernels) {
+        if (in->section == 1)
+            pw_put_with(in, pw_arena_print(e->arena, "@ d[%d][4];", e->r->count),
+                        "x1 x2 y1 y2 of each section: its input and output, one and two samples ago");
+        return;
+    }
     for (int k = 0; k < MEMBERS; k++) {
-        const char *member = pw_direct_member(w, k);
+        const char *member = pw_direct_member(e, w, k);
         if (!member) continue;
         const char *line = pw_arena_print(e->arena, "%s %s;", k < E1 ? "@" : "int32_t", member);
         const char *meaning = k == X1 ? pw_arena_print(e->arena, note[X1], in->section)
@@ -97,17 +108,17 @@ static void accumulate(const pw_emission *e, const pw_words *w, pw_accumulator a
 {
     const char *p = "", *rest = "acc";
     p = pw_fixed_term(e, p, '+', acc, w->b[0], "b0", "x");
-    p = pw_fixed_term(e, p, '+', acc, w->b[1], "b1", factor[X1]);
-    p = pw_fixed_term(e, p, '+', acc, w->b[2], "b2", factor[X2]);
+    p = pw_fixed_term(e, p, '+', acc, w->b[1], "b1", factor(e, X1));
+    p = pw_fixed_term(e, p, '+', acc, w->b[2], "b2", factor(e, X2));
     pw_put_with(body, pw_arena_print(e->arena, "%s acc = %s;", pw_accumulator_type(acc), *p ? p : "0"),
                 acc == PW_ACC_MODULO ? "modulo 2^32: its last value fits 32 bits, whatever the samples"
                                      : pw_reach_note(e, pw_direct_reach(e, w)));
     align_statement(w, body, "acc");
-    rest = pw_fixed_term(e, rest, '-', acc, w->a[1], "a1", factor[Y1]);
-    rest = pw_fixed_term(e, rest, '-', acc, w->a[2], "a2", factor[Y2]);
+    rest = pw_fixed_term(e, rest, '-', acc, w->a[1], "a1", factor(e, Y1));
+    rest = pw_fixed_term(e, rest, '-', acc, w->a[2], "a2", factor(e, Y2));
     if (is_shaped(w)) {
-        rest = pw_fixed_term(e, rest, '+', acc, w->k1, "k1", factor[E1]);
-        rest = pw_fixed_term(e, rest, '+', acc, w->k2, "k2", factor[E2]);
+        rest = pw_fixed_term(e, rest, '+', acc, w->k1, "k1", factor(e, E1));
+        rest = pw_fixed_term(e, rest, '+', acc, w->k2, "k2", factor(e, E2));
     }
     const char *note = pw_bound_note(e, body->section, "accumulator");
     if (rest[3]) pw_put_with(body, pw_arena_print(e->arena, "acc = %s;", rest), *note ? note : NULL);
@@ -123,45 +134,49 @@ static void round_off(const pw_emission *e, const pw_words *w, pw_accumulator ac
     pw_put(body, pw_arena_print(e->arena, "const %s v = %s%s%s;", wide, cast, sum, by));
 }
 
-static void remember(const pw_words *w, pw_accumulator acc, pw_code *body)
+/* "s->TO = FROM;" where the section keeps it. */
+static void keep(const pw_emission *e, const pw_words *w, pw_code *body, int to, const char *from)
 {
-    if (pw_direct_member(w, X2)) pw_put(body, "s->x2_# = s->x1_#;");
-    if (pw_direct_member(w, X1)) pw_put(body, "s->x1_# = x;");
-    if (pw_direct_member(w, Y2)) pw_put(body, "s->y2_# = s->y1_#;");
-    if (pw_direct_member(w, Y1)) pw_put(body, "s->y1_# = y;");
-    if (pw_direct_member(w, E2)) pw_put(body, "s->e2_# = s->e1_#;");
-    if (pw_direct_member(w, E1)) {
-        const char *left = acc == PW_ACC_64 ? "s->e1_# = y == v ? (int32_t)(acc - v * ((int64_t)1 << $_shift_#)) : 0;"
-            : acc == PW_ACC_32 ? "s->e1_# = y == v ? acc - v * ((int32_t)1 << $_shift_#) : 0;"
-            : "s->e1_# = y == v ? (int32_t)(acc - (uint32_t)v * ((uint32_t)1 << $_shift_#)) : 0;";
-        pw_put(body, left);
-    }
+    if (pw_direct_member(e, w, to)) pw_put(body, pw_arena_print(e->arena, "%s = %s;", factor(e, to), from));
+}
+
+static void remember(const pw_emission *e, const pw_words *w, pw_accumulator acc, pw_code *body)
+{
+    keep(e, w, body, X2, factor(e, X1));
+    keep(e, w, body, X1, "x");
+    keep(e, w, body, Y2, factor(e, Y1));
+    keep(e, w, body, Y1, "y");
+    if (!is_shaped(w)) return;
+    keep(e, w, body, E2, factor(e, E1));
+    keep(e, w, body, E1, acc == PW_ACC_64 ? "y == v ? (int32_t)(acc - v * ((int64_t)1 << $_shift_#)) : 0"
+                       : acc == PW_ACC_32 ? "y == v ? acc - v * ((int32_t)1 << $_shift_#) : 0"
+                       : "y == v ? (int32_t)(acc - (uint32_t)v * ((uint32_t)1 << $_shift_#)) : 0");
 }
 
 /* What a function of a section without state, or without input, leaves unused. */
-static void spare_parameters(const pw_words *w, pw_code *body)
+static void spare_parameters(const pw_emission *e, const pw_words *w, pw_code *body)
 {
     bool state = false;
-    for (int k = 0; k < MEMBERS; k++) state = state || pw_direct_member(w, k);
+    for (int k = 0; k < MEMBERS; k++) state = state || pw_direct_member(e, w, k);
     if (!state) pw_put(body, "(void)s;");
     if (!w->b[0] && !w->b[1] && !w->b[2]) pw_put(body, "(void)x;");
 }
 
 static void direct_step(const pw_emission *e, const pw_words *w, pw_code *body)
 {
-    spare_parameters(w, body);
+    spare_parameters(e, w, body);
     pw_accumulator acc = pw_direct_accumulator(e, w);
     accumulate(e, w, acc, body);
     round_off(e, w, acc, body);
     pw_fixed_into_word(e, w, body, "y", "v", "output");
-    remember(w, acc, body);
+    remember(e, w, acc, body);
     pw_put(body, "return y;");
 }
 
 /* A gain has no state: its steady output is one step's, uncounted. */
 static void gain_settle(const pw_emission *e, const pw_words *w, pw_code *body)
 {
-    spare_parameters(w, body);
+    spare_parameters(e, w, body);
     pw_accumulator acc = pw_direct_accumulator(e, w);
     accumulate(e, w, acc, body);
     round_off(e, w, acc, body);
@@ -174,7 +189,7 @@ void pw_direct_settle(const pw_emission *e, const pw_words *w, pw_code *body)
         gain_settle(e, w, body);
         return;
     }
-    spare_parameters(w, body);
+    spare_parameters(e, w, body);
     if (pw_direct_gain_sum(w) == 0) {
         pw_put(body, "const @ y = 0;");
     } else {
@@ -182,10 +197,10 @@ void pw_direct_settle(const pw_emission *e, const pw_words *w, pw_code *body)
         align_statement(w, body, "p");
         pw_put(body, "const @ y = $_clamp($_ratio(p, $_rest_#));");
     }
-    if (pw_direct_member(w, X1)) pw_put(body, "s->x1_# = x;");
-    if (pw_direct_member(w, X2)) pw_put(body, "s->x2_# = x;");
-    if (pw_direct_member(w, Y1)) pw_put(body, "s->y1_# = y;");
-    if (pw_direct_member(w, Y2)) pw_put(body, "s->y2_# = y;");
+    keep(e, w, body, X1, "x");
+    keep(e, w, body, X2, "x");
+    keep(e, w, body, Y1, "y");
+    keep(e, w, body, Y2, "y");
     pw_put(body, "return y;");
 }
 

@@ -8,6 +8,7 @@
 #ifndef PW_EMIT_EMISSION_H
 #define PW_EMIT_EMISSION_H
 
+#include "emit/cascade.h"
 #include "emit/code.h"
 #include "report/results.h"
 
@@ -23,6 +24,8 @@ typedef struct pw_emission {
     bool single;                 /* float32 */
     bool integrates;             /* a section does: settle is reset */
     bool counts;                 /* a clamp is left somewhere, so that there is something to count */
+    bool part_kernels;           /* blocks go through kernels in the instructions of the part */
+    pw_cascade cascade;          /* .. which are these */
     const struct pw_form *form[PW_MAX_SECTIONS];
     pw_arena *arena;
 } pw_emission;
@@ -47,11 +50,13 @@ typedef struct pw_form {
     void (*settle)(const pw_emission *e, const pw_words *w, pw_code *body);
     /* The member that holds word k of the simulation's state (x1 x2 y1 y2 e1 e2, or u1 u2), with #;
      * null where the section keeps no such word. */
-    const char *(*member)(const pw_words *w, int k);
+    const char *(*member)(const pw_emission *e, const pw_words *w, int k);
 } pw_form;
 
-/* Sets everything up; forms are chosen. */
-void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena);
+/* Sets everything up; forms are chosen. PW_FAILED with a line on stderr where the kernels of a part
+ * cannot be read. pw_emission_end in any case; the arena is the caller's. */
+PW_CHECKED pw_status pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena);
+void pw_emission_end(pw_emission *e);
 
 extern const pw_form pw_forms_runtime[], pw_forms_fixed[], pw_forms_float[];
 

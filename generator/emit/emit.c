@@ -20,7 +20,7 @@ static bool has_state(const pw_emission *e)
 {
     for (int k = 0; k < e->r->count; k++)
         for (int i = 0; i < 6; i++)
-            if (e->form[k]->member(&e->r->section[k], i)) return true;
+            if (e->form[k]->member(e, &e->r->section[k], i)) return true;
     return e->counts;
 }
 
@@ -146,8 +146,18 @@ static bool all_step(const pw_emission *e)
     return true;
 }
 
-/* Sample by sample: every section has a step. The block works on a copy of the state, so that the
- * compiler may keep it in registers though out might point into it. */
+/* The block works on a copy of the state, so that the compiler may keep it in registers though out
+ * might point into it. */
+static void block_of_steps(pw_code *file)
+{
+    pw_code *f = pw_function(file, "void $_block($_state *s, const @ *in, @ *out, size_t n)");
+    pw_put(f, "$_state local = *s;");
+    pw_put(f, "size_t i;");
+    pw_put(f, "for (i = 0; i < n; i++) out[i] = $_cascade(&local, in[i]);");
+    pw_put(f, "*s = local;");
+}
+
+/* Sample by sample: every section has a step. */
 static void stepping(const pw_emission *e, pw_code *file)
 {
     pw_blank(file);
@@ -158,11 +168,13 @@ static void stepping(const pw_emission *e, pw_code *file)
     f = pw_function(file, "@ $_step($_state *s, @ x)");
     pw_put(f, "return $_cascade(s, x);");
     pw_blank(file);
+    if (!e->part_kernels) {
+        block_of_steps(file);
+        return;
+    }
+    pw_raw(file, pw_text_string(&e->cascade.functions));
     f = pw_function(file, "void $_block($_state *s, const @ *in, @ *out, size_t n)");
-    pw_put(f, "$_state local = *s;");
-    pw_put(f, "size_t i;");
-    pw_put(f, "for (i = 0; i < n; i++) out[i] = $_cascade(&local, in[i]);");
-    pw_put(f, "*s = local;");
+    pw_raw(f, pw_text_string(&e->cascade.body));
 }
 
 /* Section by section over the block; a step is a block of one. */
@@ -247,19 +259,26 @@ static pw_status copy_runtime(const pw_emission *e, pw_fileset *out)
     return status;
 }
 
+static pw_status emit_files(const pw_emission *e, pw_fileset *out)
+{
+    pw_code *header = pw_code_file(e->arena, e->stage, e->type);
+    pw_code *source = pw_code_file(e->arena, e->stage, e->type);
+    header_file(e, header);
+    source_file(e, source);
+    pw_emit_converters(e, header, source);
+    close_header(header);
+    pw_code_render(header, pw_fileset_add(out, pw_arena_print(e->arena, "%s.h", e->stage)));
+    pw_code_render(source, pw_fileset_add(out, pw_arena_print(e->arena, "%s.c", e->stage)));
+    return e->standalone ? PW_OK : copy_runtime(e, out);
+}
+
 pw_status pw_emit_c(const pw_results *results, pw_fileset *out)
 {
     pw_arena arena = {0};
     pw_emission e;
-    pw_emission_begin(&e, results, &arena);
-    pw_code *header = pw_code_file(&arena, e.stage, e.type), *source = pw_code_file(&arena, e.stage, e.type);
-    header_file(&e, header);
-    source_file(&e, source);
-    pw_emit_converters(&e, header, source);
-    close_header(header);
-    pw_code_render(header, pw_fileset_add(out, pw_arena_print(&arena, "%s.h", e.stage)));
-    pw_code_render(source, pw_fileset_add(out, pw_arena_print(&arena, "%s.c", e.stage)));
-    pw_status status = e.standalone ? PW_OK : copy_runtime(&e, out);
+    pw_status status = pw_emission_begin(&e, results, &arena);
+    if (status == PW_OK) status = emit_files(&e, out);
+    pw_emission_end(&e);
     pw_arena_free(&arena);
     return status;
 }

@@ -35,7 +35,7 @@ void pw_fixed_helpers(const pw_emission *e, const pw_words *w, pw_code *file);
 void pw_direct_fields(const pw_emission *e, const pw_words *w, pw_code *in);
 void pw_direct_constants(const pw_emission *e, const pw_words *w, pw_code *in);
 void pw_direct_settle(const pw_emission *e, const pw_words *w, pw_code *body);
-const char *pw_direct_member(const pw_words *w, int k);
+const char *pw_direct_member(const pw_emission *e, const pw_words *w, int k);
 int64_t pw_direct_gain_sum(const pw_words *w);           /* b0 + b1 + b2: 0 blocks a constant */
 
 /* The same for the coupled form. */
@@ -43,6 +43,6 @@ void pw_coupled_fields(const pw_emission *e, const pw_words *w, pw_code *in);
 void pw_coupled_constants(const pw_emission *e, const pw_words *w, pw_code *in);
 void pw_coupled_step(const pw_emission *e, const pw_words *w, pw_code *body);
 void pw_coupled_settle(const pw_emission *e, const pw_words *w, pw_code *body);
-const char *pw_coupled_member(const pw_words *w, int k);
+const char *pw_coupled_member(const pw_emission *e, const pw_words *w, int k);
 
 #endif

@@ -26,9 +26,10 @@ static void constants(const pw_emission *e, const pw_words *w, pw_code *in)
     }
 }
 
-static const char *transposed_member(const pw_words *w, int k)
+static const char *transposed_member(const pw_emission *e, const pw_words *w, int k)
 {
     static const char *const name[] = {"s1_#", "s2_#"};
+    (void)e;
     return k < w->order ? name[k] : NULL;
 }
 
@@ -68,16 +69,17 @@ static void transposed_settle(const pw_emission *e, const pw_words *w, pw_code *
     pw_put(body, "return y;");
 }
 
-static const char *direct_member(const pw_words *w, int k)
+static const char *direct_member(const pw_emission *e, const pw_words *w, int k)
 {
     static const char *const name[] = {"x1_#", "x2_#", "y1_#", "y2_#"};
+    (void)e;
     return k < 4 && (w->order == 2 || k % 2 == 0) ? name[k] : NULL;
 }
 
 static void direct_fields(const pw_emission *e, const pw_words *w, pw_code *in)
 {
     for (int k = 0; k < 4; k++) {
-        const char *member = direct_member(w, k);
+        const char *member = direct_member(e, w, k);
         if (!member) continue;
         pw_put_with(in, pw_arena_print(e->arena, "@ %s;", member),
                     pw_arena_print(e->arena, "%s of section %d, %s ago", k < 2 ? "input" : "output",
@@ -114,7 +116,7 @@ static void direct_settle(const pw_emission *e, const pw_words *w, pw_code *body
 }
 
 static void gain_fields(const pw_emission *e, const pw_words *w, pw_code *in) { (void)e, (void)w, (void)in; }
-static const char *gain_member(const pw_words *w, int k) { (void)w, (void)k; return NULL; }
+static const char *gain_member(const pw_emission *e, const pw_words *w, int k) { (void)e, (void)w, (void)k; return NULL; }
 
 static void gain_step(const pw_emission *e, const pw_words *w, pw_code *body)
 {

@@ -22,7 +22,19 @@ static const pw_form *choose(const pw_emission *e, const pw_words *w)
     return NULL;
 }
 
-void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena)
+/* Standalone fixed-point code for a part with instructions of its own takes its kernels for blocks. */
+static pw_status choose_kernels(pw_emission *e)
+{
+    if (!e->standalone || !e->fixed || e->target->instructions == PW_ANY) return PW_OK;
+    return pw_cascade_fixed(e->r, e->target, e->stage, "s->d[%d]", "s->clipped", &e->cascade, &e->part_kernels);
+}
+
+void pw_emission_end(pw_emission *e)
+{
+    pw_cascade_free(&e->cascade);
+}
+
+pw_status pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena)
 {
     static const char *const type[] = {"float", "double", "int32_t", "int16_t"};
     static const char *const family[] = {"f32", "f64", "q31", "q15"};
@@ -40,6 +52,7 @@ void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *aren
         e->counts = e->counts || !r->section[k].cannot_clip;
     }
     e->counts = e->fixed && (e->counts || !e->standalone);
+    return choose_kernels(e);
 }
 
 double pw_direct_reach(const pw_emission *e, const pw_words *w)

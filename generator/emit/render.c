@@ -55,6 +55,7 @@ static void expand(const pw_code *item, const char *text, pw_text *out)
         if (*c == '$') pw_text_add(out, item->stage);
         else if (*c == '@') pw_text_add(out, item->sample);
         else if (*c == '#' && item->kind != PW_CODE_DIRECTIVE) pw_text_print(out, "%d", item->section);
+        else if (*c == '`') pw_text_print(out, "%d", item->section - 1);
         else pw_text_add_bytes(out, c, 1);
     }
 }
@@ -257,6 +258,7 @@ static void render(const pw_code *item, int indent, pw_text *out)
     case PW_CODE_LINE: case PW_CODE_CONSTANT: case PW_CODE_ENTRY: render_line(item, indent, out); break;
     case PW_CODE_ARRAY: put_array(item, indent, out); break;
     case PW_CODE_BLOCK: case PW_CODE_FUNCTION: render_braces(item, indent, out); break;
+    case PW_CODE_RAW: pw_text_add(out, item->text); break;
     case PW_CODE_BLANK: pw_text_add(out, "\n"); break;
     }
 }

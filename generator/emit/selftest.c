@@ -57,7 +57,7 @@ static void start_function(const pw_selftest *t, pw_code *source)
     for (int k = 0; k < r->count; k++) {
         pw_code *group = pw_section_group(f, k + 1);
         for (int i = 0; i < 6; i++) {
-            const char *member = t->e.form[k]->member(&r->section[k], i);
+            const char *member = t->e.form[k]->member(&t->e, &r->section[k], i);
             int64_t value = r->limit_cycle.state[k][i];
             if (member && value) pw_assign(group, pw_arena_print(t->e.arena, "s->%s", member), pw_word(value));
         }
@@ -179,21 +179,31 @@ static void source_file(const pw_selftest *t, pw_code *source)
     selftest_function(t, source);
 }
 
+static void emit_files(const pw_selftest *t, pw_fileset *out)
+{
+    const pw_emission *e = &t->e;
+    pw_code *header = pw_code_file(e->arena, e->stage, e->type);
+    pw_code *source = pw_code_file(e->arena, e->stage, e->type);
+    header_file(t, header);
+    source_file(t, source);
+    pw_code_render(header, pw_fileset_add(out, pw_arena_print(e->arena, "%s_selftest.h", e->stage)));
+    pw_code_render(source, pw_fileset_add(out, pw_arena_print(e->arena, "%s_selftest.c", e->stage)));
+}
+
 pw_status pw_emit_selftest(const pw_results *results, pw_fileset *out)
 {
     pw_arena arena = {0};
     pw_selftest t = {.n = 0};
-    pw_emission_begin(&t.e, results, &arena);
-    t.capitals = capitals_of(&t.e);
-    for (int s = 0; s < PW_SIGNALS; s++)
-        if (results->stage->vectors.want[s]) pw_vector_make(results, (pw_signal)s, &t.vector[t.n++]);
-    t.tolerance = rounded_up(pw_float_tolerance(results, t.vector, t.n), t.e.single);
-    pw_code *header = pw_code_file(&arena, t.e.stage, t.e.type), *source = pw_code_file(&arena, t.e.stage, t.e.type);
-    header_file(&t, header);
-    source_file(&t, source);
-    pw_code_render(header, pw_fileset_add(out, pw_arena_print(&arena, "%s_selftest.h", t.e.stage)));
-    pw_code_render(source, pw_fileset_add(out, pw_arena_print(&arena, "%s_selftest.c", t.e.stage)));
+    pw_status status = pw_emission_begin(&t.e, results, &arena);
+    if (status == PW_OK) {
+        t.capitals = capitals_of(&t.e);
+        for (int s = 0; s < PW_SIGNALS; s++)
+            if (results->stage->vectors.want[s]) pw_vector_make(results, (pw_signal)s, &t.vector[t.n++]);
+        t.tolerance = rounded_up(pw_float_tolerance(results, t.vector, t.n), t.e.single);
+        emit_files(&t, out);
+    }
     for (int i = 0; i < t.n; i++) pw_vector_free(&t.vector[i]);
+    pw_emission_end(&t.e);
     pw_arena_free(&arena);
-    return PW_OK;
+    return status;
 }

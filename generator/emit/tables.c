@@ -26,13 +26,14 @@ static void fields(const pw_emission *e, const pw_words *w, pw_code *in)
     pw_put(in, pw_arena_print(e->arena, "pw_%s_%s_state section_#;", e->family, state));
 }
 
-static const char *member(const pw_words *w, int k)
+static const char *member(const pw_emission *e, const pw_words *w, int k)
 {
     static const char *const direct[] = {"section_#.x1", "section_#.x2", "section_#.y1", "section_#.y2"};
     static const char *const shaped[] = {"section_#.direct.x1", "section_#.direct.x2", "section_#.direct.y1",
                                          "section_#.direct.y2", "section_#.e1", "section_#.e2"};
     static const char *const coupled[] = {"section_#.u1", "section_#.u2"};
     static const char *const transposed[] = {"section_#.s1", "section_#.s2"};
+    (void)e;
     switch (w->structure) {
     case PW_COUPLED: return k < 2 ? coupled[k] : NULL;
     case PW_TRANSPOSED_2: return k < 2 && w->order > 0 ? transposed[k] : NULL;

@@ -1,63 +1,14 @@
 # SPDX-License-Identifier: GPL-3.0-or-later
 """Emitted C of every format, structure, rounding and overflow, from drawn words, against the
 simulation: compiled strictly by gcc and clang at several levels, as C++, and with UBSan."""
-import math
 import random
-import struct
 import tempfile
 
+from words import coupled, direct, real, single
 from emitted import UBSAN, compile_strictly, emit, run, tap
 
 random.seed(2)
 LONG = 300
-
-
-def direct(q, bits, shaped, order, loud):
-    """A stable direct-1 section whose sums stay below 2^63; loud: with a gain that clips."""
-    af = random.choice([12, 13, 14]) if bits == 16 else random.choice([26, 29])
-    one = 1 << af
-    radius, angle = random.uniform(0.3, 0.99), random.uniform(0.05, 3.0)
-    a = [-2 * radius * math.cos(angle), radius * radius] if order == 2 else [random.uniform(-0.95, 0.5), 0]
-    if order == 0:
-        a = [0, 0]
-    gain = (2 if loud else 0.1) * max(0.05, 1 + sum(a))
-    b = [gain * random.uniform(-1, 1) for _ in range(order + 1)] + [0] * (2 - order)
-    if random.random() < 0.3 and order == 2:
-        b = [gain, -2 * gain, gain]                       # blocks a constant
-    bf = af + random.choice([-1, 0, 0, 1, 2])
-    limit = (1 << (bits - 1)) - 1
-    clip = lambda w: max(-limit, min(limit, w))
-    k = [random.choice([1, 2, -1]), random.choice([0, -1, 1])] if shaped else [0, 0]
-    word_b = [clip(round(v * (1 << bf))) for v in b]
-    word_a = [clip(round(v * one)) for v in a]
-    if b[0] == -b[1] / 2 == b[2]:
-        word_b[1] = -2 * word_b[0]
-    reach = sum(map(abs, word_b)) * 2.0 ** (af - bf) + sum(map(abs, word_a)) + sum(map(abs, k)) * one / 2**31
-    if reach * 2.0 ** (15 if q == "q15" else 31) >= 2.0**62:
-        return direct(q, bits, shaped, order, loud)       # the precondition of every kernel
-    return {"structure": "direct-1-shaped" if shaped else "direct-1", "order": order, "b": word_b, "a": word_a,
-            "bf": bf, "af": af, "k": k}
-
-
-def coupled(q, bits, loud):
-    f = 14 if bits == 16 else 30
-    one = 1 << f
-    radius, angle = random.uniform(0.5, 0.97), random.uniform(0.1, 3.0)
-    gain = (1.5 if loud else 0.2) * (1 - radius)
-    return {"structure": "coupled", "order": 2, "sigma": round(radius * math.cos(angle) * one),
-            "omega": round(radius * math.sin(angle) * one), "g": round(gain * one),
-            "c1": round(random.uniform(-1, 1) * one), "c2": round(random.uniform(-1, 1) * one),
-            "d": round(random.uniform(-0.5, 0.5) * one), "af": f, "cf": f}
-
-
-def real(single, structure, order):
-    radius, angle = random.uniform(0.3, 0.99), random.uniform(0.05, 3.0)
-    a = [-2 * radius * math.cos(angle), radius * radius] if order == 2 else [random.uniform(-0.95, 0.5), 0]
-    if order == 0:
-        a = [0, 0]
-    b = [random.uniform(-1, 1) * max(0.05, 1 + sum(a)) for _ in range(order + 1)] + [0] * (2 - order)
-    to32 = (lambda v: struct.unpack("f", struct.pack("f", v))[0]) if single else (lambda v: v)
-    return {"structure": structure, "order": order, "b": [to32(v) for v in b], "a": [to32(v) for v in a]}
 
 
 def stages(folder):
@@ -92,7 +43,7 @@ def drawn(sample):
     values += [1 if (i // 9) % 2 else -1 for i in range(100)]
     if full:
         return [round(v * full) for v in values]
-    return [struct.unpack("f", struct.pack("f", v))[0] for v in values]
+    return [single(v) for v in values]
 
 
 def main():

@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Emits C, vectors and self-test for realisations given as words, one JSON object a line on standard
  * input, each into the directory "dir". Keys: dir, name, about, sample, bits, standalone, truncate, wrap,
- * length, seed, peak, rate, input and output (low high zero bits rails), sections: list of {structure,
+ * length, seed, peak, rate, target, input and output (low high zero bits rails), sections: list of {structure,
  * order, b, a, bf, af, k} or {sigma, omega, g, c1, c2, d, af, cf}, with cannot_clip and fits_32, or for
  * floats {structure, order, b, a}; state: list of six numbers a section.
  * Prints for each: the clips of every signal, or the tolerance, as JSON. With "settle" and "x" it prints
@@ -181,6 +181,9 @@ int main(void)
         pw_results *results = calloc(1, sizeof *results);
         pw_stage *stage = calloc(1, sizeof *stage);
         if (!o || !results || !stage) return 2;
+        pw_messages messages = {.file = "probe"};
+        const char *target = json_string_value(json_object_get(o, "target"));
+        if (target && pw_target_read(target, (pw_where){0, 0}, &results->target, &messages)) return 2;
         read_stage(o, stage, results);
         if (emit(o, results)) return 3;
         out = tell(results);
