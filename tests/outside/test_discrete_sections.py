@@ -118,7 +118,8 @@ def order():
         worst = max(noise_of(q, grid) for q in itertools.permutations(a["sections"]))
         check(ours <= best * 1.02, f"elliptic of order {n}: no order of the sections is quieter",
               f"{10 * math.log10(ours / best):.3f} dB above the best, the worst is {10 * math.log10(worst / best):.1f}")
-    for what, roots in (("band-pass", sig.butter(4, [2 * np.pi * 900, 2 * np.pi * 1100], "bandpass", True, "zpk")),
+    for what, roots in (("narrow band-pass", sig.butter(8, [2 * np.pi * 900, 2 * np.pi * 1100], "bandpass", True, "zpk")),
+                        ("band-pass", sig.butter(4, [2 * np.pi * 900, 2 * np.pi * 1100], "bandpass", True, "zpk")),
                         ("wide band-pass", sig.cheby1(4, 1, [2 * np.pi * 90, 2 * np.pi * 4100], "bandpass", True, "zpk")),
                         ("elliptic band-pass", sig.ellip(4, 1, 60, [2 * np.pi * 1900, 2 * np.pi * 2500], "bandpass", True, "zpk"))):
         a = run(roots[0], roots[1], float(roots[2]), 16000.0)

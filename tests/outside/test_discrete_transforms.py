@@ -112,7 +112,9 @@ def each_section():
     block = ([0.0], [-40.0], 1.0)
     slow = ([], [0.0], 50.0)
     twin_t = ([1e4j, -1e4j], [-1e4 * (2 - 3 ** 0.5), -1e4 * (2 + 3 ** 0.5)], 1.0)
-    for name, parts in (("notch, shelf, first order", [notch, shelf, first]), ("with a DC block", [shelf, block, notch]),
+    slower = ([], [complex(-900, 6200), complex(-900, -6200)], 4e7)
+    faster = ([12566j, -12566j], [complex(-4000, 21620), complex(-4000, -21620)], 2.0)
+    for name, parts in (("a zero pair an octave above one, less below the other", [slower, faster]), ("notch, shelf, first order", [notch, shelf, first]), ("with a DC block", [shelf, block, notch]),
                         ("with an integrator", [slow, shelf, first]), ("twin-T: real poles, a zero pair", [twin_t, block])):
         zeros = [r for q in parts for r in q[0]]
         poles = [r for q in reversed(parts) for r in q[1]]           # which zero belongs where is to be found
