@@ -5,6 +5,7 @@
 
 #include "report/json_value.h"
 #include "report/phrases.h"
+#include "report/tolerance.h"
 
 /* ---- transform ---- */
 
@@ -265,6 +266,7 @@ void pw_report_json(const pw_results *results, pw_text *out)
     pw_json_put(o, "noise", noise(&r->noise));
     pw_json_put(o, "limit_cycle", limit_cycle(&r->limit_cycle));
     pw_json_put(o, "cost", cost(results));
+    pw_json_put(o, "spread", pw_json_spread(results));
     pw_json_put(o, "loop", json_null());
     pw_json_put(o, "limits", limits(results));
     pw_json_put(o, "verdict", pw_json_text(results->met ? "met" : "not met"));

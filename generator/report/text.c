@@ -10,6 +10,7 @@
 #include "report/style.h"
 #include "report/table.h"
 #include "report/text_full.h"
+#include "report/tolerance.h"
 
 #define WIDTH 100             /* columns */
 #define SCREEN 22             /* lines: two of 24 are left for what the verb adds */
@@ -117,6 +118,7 @@ static void put_screen(const pw_results *results, const pw_style *style, pw_text
     pw_text head = {0}, tail = {0}, body = {0};
     put_phrase("Stage", pw_phrase_stage, results, style, &head);
     put_errors(results, style, &head);
+    if (results->spread) put_phrase("Parts", pw_phrase_spread, results, style, &head);
     put_phrase("Range", pw_phrase_range, results, style, &head);
     put_phrase("Noise", pw_phrase_noise, results, style, &tail);
     put_phrase("Cycles", pw_phrase_limit_cycle, results, style, &tail);

@@ -9,6 +9,7 @@
 #include "report/phrases.h"
 #include "report/rootgroups.h"
 #include "report/table.h"
+#include "report/tolerance.h"
 
 #define WIDTH 100             /* columns */
 
@@ -256,6 +257,10 @@ void pw_report_text_full(const pw_results *results, const pw_style *style, pw_te
     put_roots(&results->digital.z, "", out);
     put_heading("Errors", style, out);
     put_errors(results, out);
+    if (results->spread) {
+        put_heading("Tolerances", style, out);
+        put_phrase(pw_phrase_spread, results, out);
+    }
     put_heading("Range", style, out);
     put_phrase(pw_phrase_range, results, out);
     put_nodes(results, out);

@@ -4,6 +4,7 @@
 #include <stdlib.h>
 #include <string.h>
 
+#include "analog/spread.h"
 #include "base/files.h"
 #include "report/judge.h"
 #include "report/response.h"
@@ -64,7 +65,9 @@ pw_status pw_analysis_run(const pw_call *call, pw_analysis *analysis)
     pw_response_analyse(&analysis->stage, &r->analog, &r->digital, &r->realisation, &r->response);
     pw_cost_estimate(&analysis->stage, &r->realisation, &r->target, &r->cost);
     pw_judge(r);
-    return PW_OK;
+    const pw_spread_options options = {.quiet = call->quiet};
+    status = pw_spread_compute(&analysis->stage, &r->analog, &options, &r->spread, &analysis->messages);
+    return pw_analysis_tell(call, analysis, status);
 }
 
 const char *pw_analysis_directory(const pw_call *call, pw_analysis *analysis)
@@ -80,6 +83,7 @@ pw_status pw_analysis_verdict(const pw_analysis *analysis)
 
 void pw_analysis_free(pw_analysis *analysis)
 {
+    pw_spread_free(analysis->results.spread);
     pw_target_free(&analysis->results.target);
     pw_messages_free(&analysis->messages);
     pw_stage_free(&analysis->stage);

@@ -1,0 +1,19 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What the reports say about the spread of the parts' tolerances. */
+#ifndef PW_REPORT_TOLERANCE_H
+#define PW_REPORT_TOLERANCE_H
+
+#include <jansson.h>
+
+#include "report/results.h"
+
+/* How far the tolerances move the stage, and what share of that the replacement's own error is.
+ * Nothing where results->spread is null. */
+void pw_phrase_spread(const pw_results *results, pw_text *out);
+
+/* {"parts", "draws", "seed", "unstable_draws", "magnitude_db": {"max", "at_hz"}, "phase_deg": {..},
+ * "error_share": {"magnitude", "phase"}, "table": [{"hz", "db": {"nominal", "low", "high",
+ * "corner_low", "corner_high"}, "deg": {..}, "delay_s": {..}}..]}, or null where there is none. */
+json_t *pw_json_spread(const pw_results *results);
+
+#endif
