@@ -133,19 +133,30 @@ static pw_status write_beside(const pw_fileset *set, const char *beside)
     return PW_OK;
 }
 
-/* Every name is checked before the first rename, so that what remains to fail is the system. */
-static pw_status rename_into(const pw_fileset *set, const char *beside, const char *directory)
+/* Whether a directory stands where a file of the set must go: looked at before anything is made. */
+static pw_status look_for_directories(const pw_fileset *set, const char *directory)
 {
-    char from[PATH_MAX], to[PATH_MAX];
+    char to[PATH_MAX];
     struct stat info;
     for (int i = 0; i < set->count; i++) {
         pw_status status = join(to, directory, set->list[i].name);
-        if (!status) status = make_parents(to);
         if (status) return status;
         if (!stat(to, &info) && S_ISDIR(info.st_mode)) {
             errno = EISDIR;
             return cannot("write", to);
         }
+    }
+    return PW_OK;
+}
+
+/* Folders first, so that what remains to fail during the renames is the system itself. */
+static pw_status rename_into(const pw_fileset *set, const char *beside, const char *directory)
+{
+    char from[PATH_MAX], to[PATH_MAX];
+    for (int i = 0; i < set->count; i++) {
+        pw_status status = join(to, directory, set->list[i].name);
+        if (!status) status = make_parents(to);
+        if (status) return status;
     }
     for (int i = 0; i < set->count; i++) {
         if (join(from, beside, set->list[i].name) || join(to, directory, set->list[i].name))
@@ -172,6 +183,8 @@ pw_status pw_fileset_write(const pw_fileset *set, const char *directory)
     struct stat info;
     if (!stat(target, &info) && S_ISDIR(info.st_mode) && access(target, W_OK | X_OK))
         return cannot("write into", target);
+    status = look_for_directories(set, target);
+    if (status) return status;
     if (mkdir(beside, 0777)) return cannot("make the directory", beside);
     status = write_beside(set, beside);
     if (!status) status = rename_into(set, beside, target);
