@@ -85,12 +85,11 @@ static void set_all(pw_job *job, pw_structure structure)
 
 static bool may_couple(const pw_job *job, int k)
 {
-    const pw_section *section = &job->out->ideal[k];
-    return job->structure[k] != PW_COUPLED && !zero_at_one(section)
-        && pw_coupled_suits(&job->format, section);
+    return job->structure[k] != PW_COUPLED && pw_coupled_suits(&job->format, &job->out->ideal[k]);
 }
 
-/* Solves; a section whose words fail is turned into the rotation form where it can be. */
+/* Solves; a section whose words fail is turned into the rotation form where it can be: the only case in
+ * which a zero at 1 is given up for one that is exact to a word. */
 static bool solve_or_couple(pw_job *job)
 {
     while (!pw_job_solve(job)) {
@@ -126,7 +125,8 @@ static bool straighten(pw_job *job)
     memcpy(before, job->structure, sizeof before);
     bool changed = false;
     for (int k = 0; k < job->out->count; k++)
-        if (may_couple(job, k) && pw_section_bend(job, k) > whole / (2 * job->out->count)) {
+        if (may_couple(job, k) && !zero_at_one(&job->out->ideal[k])
+            && pw_section_bend(job, k) > whole / (2 * job->out->count)) {
             job->structure[k] = PW_COUPLED;
             changed = true;
         }

@@ -25,4 +25,10 @@ void pw_prove(pw_proof *proof, pw_realisation *r);
  * behind or in an integrator. */
 long double pw_proof_rounding(pw_proof *proof, const pw_realisation *r, int section);
 
+/* ---- integrator.c ---- */
+
+/* samples_to_clip and samples_to_clip_code of the outputs that integrate: the exact response for as
+ * long as it is stepped, then its line or parabola; clamps on the way are not counted on. */
+void pw_integrators_time(const pw_proof *proof, pw_realisation *r);
+
 #endif

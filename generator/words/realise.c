@@ -19,14 +19,24 @@ static void insert_gain(pw_job *j, int at, long double gain)
     r->count++;
 }
 
-/* The gain of section k that lets its poles keep all but one bit of their words: int64_t holds no
- * more. */
+/* Fraction bits of a that this section cannot do without: where its poles come near to 1 or -1 or the
+ * circle, a step of a should move them by 1e-5 of that distance at most. One bit below what the words
+ * could hold is always let go, more than four never. */
+static int needed_fraction(const pw_format *format, const pw_section *s)
+{
+    int full = pw_pole_fraction(format, s), least = full - 4 > 1 ? full - 4 : 1;
+    double gap = fmin(fmin(1 + s->a[1] + s->a[2], 1 - s->a[1] + s->a[2]), 1 - s->a[2]);
+    int need = pw_section_has_integrator(s) || !(gap > 0) ? least : (int)ceil(-log2(2e-5 * gap));
+    need = need < least ? least : need;
+    return need < full - 1 ? need : full > 1 ? full - 1 : 1;
+}
+
+/* The gain of section k that lets its poles keep the fraction bits they need: int64_t holds no more. */
 static long double gain_that_fits(const pw_job *j, int k)
 {
     const pw_section *s = &j->out->ideal[k];
     double b = fabs(s->b[0]) + fabs(s->b[1]) + fabs(s->b[2]), a = fabs(s->a[1]) + fabs(s->a[2]);
-    int fraction = pw_pole_fraction(&j->format, s) - 1;
-    double room = ldexp(1, 64 - j->format.sample_bits - (fraction > 1 ? fraction : 1)) - a - 0.01;
+    double room = ldexp(1, 64 - j->format.sample_bits - needed_fraction(&j->format, s)) - a - 0.01;
     return room / b;
 }
 
@@ -108,6 +118,7 @@ pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_dig
         return status;
     pw_proof proof;
     pw_proof_start(&j.format, out, &proof);
+    pw_integrators_time(&proof, out);
     pw_cycles_find(&proof, out);
     pw_proof_end(&proof);
     out->enough_bits = pw_job_enough_bits(&j);
