@@ -24,12 +24,12 @@ static const char *const WHY_COUPLED =
 static double deviation_with(pw_job *job, int bits)
 {
     pw_realisation *keep = job->out, trial = *keep;
-    pw_format format = job->format;
+    pw_job saved = *job;
     job->out = &trial;
     job->format.word_bits = bits;
     double worst = pw_job_words(job) ? (pw_deviation_monic(job), trial.word_magnitude_db.max) : INFINITY;
+    *job = saved;
     job->out = keep;
-    job->format = format;
     return worst;
 }
 
@@ -88,11 +88,11 @@ static bool may_couple(const pw_job *job, int k)
     return job->structure[k] != PW_COUPLED && pw_coupled_suits(&job->format, &job->out->ideal[k]);
 }
 
-/* Solves; a section whose words fail is turned into the rotation form where it can be: the only case in
+/* Words; a section whose words fail is turned into the rotation form where it can be: the only case in
  * which a zero at 1 is given up for one that is exact to a word. */
-static bool solve_or_couple(pw_job *job)
+static bool words_or_couple(pw_job *job)
 {
-    while (!pw_job_solve(job)) {
+    while (!pw_job_words(job)) {
         int k = job->unstable - 1;
         if (!may_couple(job, k))
             return false;
@@ -133,11 +133,11 @@ static bool straighten(pw_job *job)
     if (!changed)
         return true;
     job->out->structure_why = WHY_COUPLED;
-    if (pw_job_solve(job) && excess_bend(job) < excess / 2)
+    if (pw_job_words(job) && excess_bend(job) < excess / 2)
         return true;
     memcpy(job->structure, before, sizeof before);
     job->out->structure_why = why;
-    return pw_job_solve(job);
+    return pw_job_words(job);
 }
 
 static bool shapes(const pw_section *section)
@@ -162,7 +162,7 @@ static bool quieten(pw_job *job, double limit_dbfs)
             return true;
         }
         job->structure[loudest] = PW_DIRECT_1_SHAPED;
-        if (!solve_or_couple(job))
+        if (!pw_job_solve(job))
             return false;
     }
     return true;
@@ -181,7 +181,7 @@ static bool automatic(pw_job *job)
             job->out->structure_why = WHY_SHAPED;
         }
     }
-    if (!solve_or_couple(job) || !straighten(job))
+    if (!words_or_couple(job) || !straighten(job) || !pw_job_solve(job))
         return false;
     return !noise->given || quieten(job, -fabs(noise->value));
 }

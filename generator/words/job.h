@@ -17,6 +17,7 @@ typedef struct pw_job {
     long double inner[PW_MAX_SECTIONS];      /* coupled: part of full scale that its words take */
     pw_structure structure[PW_MAX_SECTIONS];
     double share[PW_MAX_SECTIONS];           /* of the output noise, LSB^2 */
+    pw_proof proof;              /* of the last solution; pw_job_free */
     int unstable;                /* section whose words are, from 1; 0: none */
 } pw_job;
 
@@ -24,8 +25,9 @@ typedef struct pw_job {
  * False where a section finds no words (job->unstable). */
 bool pw_job_solve(pw_job *job);
 
-/* The words alone, without scales' second round or proof. */
+/* The words alone, at the first scales and without proof. */
 bool pw_job_words(pw_job *job);
+void pw_job_free(pw_job *job);
 
 /* Word length that keeps the deviation within limits.magnitude (0.5 dB where not given): the present
  * one where it does, else the shortest that would; 0: none up to 32 bits. */

@@ -8,9 +8,10 @@
 #include "base/arena.h"
 
 #define OUTWARD (1.0L + 1e-9L)   /* covers the rounding of the closed forms themselves */
-#define RELATIVE 0.003L          /* a tail below this part of the sum ends the run */
+#define RELATIVE 0.0025L         /* a tail below this part of the sum ends the run */
 #define LONGEST (1L << 26)       /* samples */
 #define BLOCK 1024
+#define FADED 1e-200L
 
 /* ---- closed forms of one section ---- */
 
@@ -80,43 +81,27 @@ typedef struct runner {
     long double sum[PW_PLACES], square[PW_PLACES], dc[PW_PLACES], tail[PW_PLACES];
 } runner;
 
-static void add(runner *r, pw_place place, long double v)
-{
-    r->sum[place] += fabsl(v);
-    r->square[place] += v * v;
-    r->dc[place] += v;
-}
+#define REAL double
+#define NAME(name) name##_double
+#include "words/norms_loop.h"
+#undef REAL
+#undef NAME
+#define REAL long double
+#define NAME(name) name##_long
+#include "words/norms_loop.h"
 
-static void run_direct(const pw_line *s, runner *r, long double *v, int n)
+/* Responses that have faded are made zero: denormal numbers are slow. What is lost is below 1e-200 with
+ * any all_pole that a word can give, and is added by conclude(). */
+static void fade(runner *r)
 {
-    long double b0 = s->b[0], b1 = s->b[1], b2 = s->b[2], a1 = s->a[1], a2 = s->a[2];
-    long double x1 = r->x1, x2 = r->x2, y1 = r->y1, y2 = r->y2;
-    long double sum = 0, square = 0, dc = 0;
-    for (int i = 0; i < n; i++) {
-        long double y = b0 * v[i] + b1 * x1 + b2 * x2 - a2 * y2 - a1 * y1;
-        x2 = x1, x1 = v[i], y2 = y1, y1 = y, v[i] = y;
-        sum += fabsl(y), square += y * y, dc += y;
-    }
-    r->x1 = x1, r->x2 = x2, r->y1 = y1, r->y2 = y2;
-    r->sum[0] += sum, r->square[0] += square, r->dc[0] += dc;
-}
-
-static void run_coupled(const pw_line *s, runner *r, long double *v, int n)
-{
-    long double u1 = r->y1, u2 = r->y2;
-    for (int i = 0; i < n; i++) {
-        long double y = s->c1 * u1 + s->c2 * u2 + s->d * v[i];
-        long double new1 = s->sigma * u1 - s->omega * u2 + s->g1 * v[i];
-        long double new2 = s->omega * u1 + s->sigma * u2 + s->g2 * v[i];
-        add(r, PW_PLACE_OUTPUT, y), add(r, PW_PLACE_U1, new1), add(r, PW_PLACE_U2, new2);
-        u1 = new1, u2 = new2, v[i] = y;
-    }
-    r->y1 = u1, r->y2 = u2;
+    if (fabsl(r->x1) + fabsl(r->x2) + fabsl(r->y1) + fabsl(r->y2) < 1e-280L)
+        r->x1 = r->x2 = r->y1 = r->y2 = 0;
 }
 
 /* Tails of every node from the states after a block; input: what may still come from before. */
 static long double close_section(const pw_line *s, runner *r, long double input)
 {
+    fade(r);
     long double through = input > 0 ? input * s->own : 0, tail;
     if (s->coupled) {
         long double size = hypotl(r->y1, r->y2);
@@ -135,9 +120,10 @@ static long double close_section(const pw_line *s, runner *r, long double input)
 
 /* >= what rounding can have added to the sum of |error| at each node, up to now. */
 static long double rounding_of(const pw_line *s, const runner *r, long double input_sum,
-                               long double input_error, long double error[PW_PLACES])
+                               long double input_error, long double epsilon,
+                               long double error[PW_PLACES])
 {
-    const long double unit = 8 * LDBL_EPSILON;
+    const long double unit = 8 * epsilon;
     if (s->coupled) {
         long double words = r->sum[PW_PLACE_U1] + r->sum[PW_PLACE_U2];
         long double step = unit * ((fabsl(s->sigma) + fabsl(s->omega)) * words
@@ -168,48 +154,121 @@ static bool settled(const pw_line *line, int count, const runner *r)
     return true;
 }
 
-static void conclude(const pw_line *line, int count, const runner *r, long samples,
-                     pw_norm out[][PW_PLACES])
+/* Returns the largest share that rounding has of a result. */
+static long double conclude(const pw_line *line, int count, const runner *r, long samples,
+                            long double epsilon, pw_norm out[][PW_PLACES])
 {
-    long double input_error = 0, input_sum = 1;
+    long double input_error = 0, input_sum = 1, share = 0;
     for (int k = 0; k < count; k++) {
         long double error[PW_PLACES] = {0};
-        input_error = rounding_of(&line[k], &r[k], input_sum, input_error, error);
+        input_error = rounding_of(&line[k], &r[k], input_sum, input_error, epsilon, error);
         for (int place = 0; place < (line[k].coupled ? PW_PLACES : 1); place++) {
             long double sum = r[k].sum[place];
-            long double slack = error[place] * OUTWARD + sum * (long double)samples * LDBL_EPSILON;
+            long double slack = error[place] * OUTWARD + sum * (BLOCK * epsilon
+                                                            + (long double)samples * LDBL_EPSILON);
             pw_norm *o = &out[k][place];
-            o->l1 = (sum + r[k].tail[place] + slack) * (1 + 8 * LDBL_EPSILON);
+            o->l1 = (sum + r[k].tail[place] + slack) * (1 + 8 * LDBL_EPSILON) + FADED;
             o->l1_low = fmaxl(0, sum - slack) * (1 - 8 * LDBL_EPSILON);
             o->l2 = sqrtl(r[k].square[place]);
             o->dc = r[k].dc[place];
+            share = sum > 0 ? fmaxl(share, slack / sum) : share;
         }
         input_sum = r[k].sum[PW_PLACE_OUTPUT];
     }
+    return share;
 }
 
-void pw_norms_run(const pw_line *line, int count, pw_norm out[][PW_PLACES])
+/* One run in double or in long double; the share that rounding has. */
+static long double run(const pw_line *line, int count, bool wide, pw_norm out[][PW_PLACES])
 {
     runner *r = pw_take((size_t)count * sizeof *r);
     memset(r, 0, (size_t)count * sizeof *r);
     memset(out, 0, (size_t)count * sizeof *out);
-    long double block[BLOCK] = {1};
+    union { double narrow[BLOCK]; long double wide[BLOCK]; } block;
     long samples = 0;
     int n = 32;
     bool done = false;
     while (!done) {
         long double tail = 0;
+        memset(&block, 0, sizeof block);
+        if (samples == 0 && wide)
+            block.wide[0] = 1;
+        else if (samples == 0)
+            block.narrow[0] = 1;
         for (int k = 0; k < count; k++) {
-            (line[k].coupled ? run_coupled : run_direct)(&line[k], &r[k], block, n);
+            if (wide)
+                (line[k].coupled ? run_coupled_long : run_direct_long)(&line[k], &r[k], block.wide, n);
+            else
+                (line[k].coupled ? run_coupled_double : run_direct_double)(&line[k], &r[k], block.narrow, n);
             tail = close_section(&line[k], &r[k], tail);
         }
         samples += n;
         done = samples >= LONGEST || settled(line, count, r) || isinf(tail);
         n = n < BLOCK / 2 ? 2 * n : BLOCK;
-        memset(block, 0, sizeof block);
     }
-    conclude(line, count, r, samples, out);
+    long double share = conclude(line, count, r, samples, wide ? LDBL_EPSILON : DBL_EPSILON, out);
     free(r);
+    return share;
+}
+
+/* ---- results that were found lately ---- */
+
+#define KEPT 64
+#define KEPT_SECTIONS 40
+
+typedef struct memory {
+    int count;
+    pw_line line[KEPT_SECTIONS];
+    pw_norm norm[KEPT_SECTIONS][PW_PLACES];
+} memory;
+
+static _Thread_local memory *remembered[KEPT];
+static _Thread_local int oldest;
+
+static bool same_line(const pw_line *p, const pw_line *q)
+{
+    for (int k = 0; k < 3; k++)
+        if (p->b[k] != q->b[k] || p->a[k] != q->a[k])
+            return false;
+    return p->coupled == q->coupled && p->sigma == q->sigma && p->omega == q->omega && p->g1 == q->g1
+        && p->g2 == q->g2 && p->c1 == q->c1 && p->c2 == q->c2 && p->d == q->d;
+}
+
+static bool recall(const pw_line *line, int count, pw_norm out[][PW_PLACES])
+{
+    for (int i = 0; i < KEPT; i++) {
+        const memory *m = remembered[i];
+        int k = 0;
+        while (m && m->count >= count && k < count && same_line(&m->line[k], &line[k]))
+            k++;
+        if (k == count) {        /* the start of a longer chain does as well */
+            memcpy(out, m->norm, (size_t)count * sizeof *out);
+            return true;
+        }
+    }
+    return false;
+}
+
+static void remember(const pw_line *line, int count, pw_norm norm[][PW_PLACES])
+{
+    if (count > KEPT_SECTIONS)
+        return;
+    memory **slot = &remembered[oldest];
+    oldest = (oldest + 1) % KEPT;
+    if (!*slot)
+        *slot = pw_take(sizeof **slot);
+    (*slot)->count = count;
+    memcpy((*slot)->line, line, (size_t)count * sizeof *line);
+    memcpy((*slot)->norm, norm, (size_t)count * sizeof *norm);
+}
+
+void pw_norms_run(const pw_line *line, int count, pw_norm out[][PW_PLACES])
+{
+    if (recall(line, count, out))
+        return;
+    if (run(line, count, false, out) > 2e-3L)
+        run(line, count, true, out);
+    remember(line, count, out);
 }
 
 void pw_line_own(pw_line *line)

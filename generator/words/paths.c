@@ -49,6 +49,7 @@ void pw_paths_free(pw_paths *paths)
         for (int s = 0; s < PW_SOURCES; s++)
             route_free(&paths->source[k][s]);
     }
+    paths->count = 0;
 }
 
 /* One past the last section from k on that a response reaches before an integrator. */

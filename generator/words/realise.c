@@ -114,13 +114,13 @@ pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_dig
         split_gains(&j);
     memcpy(j.start_gain, j.gain, sizeof j.gain);
     pw_status status = pw_job_choose(&j);
-    if (status != PW_OK)
+    if (status != PW_OK) {
+        pw_job_free(&j);
         return status;
-    pw_proof proof;
-    pw_proof_start(&j.format, out, &proof);
-    pw_integrators_time(&proof, out);
-    pw_cycles_find(&proof, out);
-    pw_proof_end(&proof);
+    }
+    pw_integrators_time(&j.proof, out);
+    pw_cycles_find(&j.proof, out);
+    pw_job_free(&j);
     out->enough_bits = pw_job_enough_bits(&j);
     ideal_gains(&j);
     return PW_OK;

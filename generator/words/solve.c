@@ -56,7 +56,7 @@ static bool section_words(pw_job *job, int k)
     return direct_words(job, k, w);
 }
 
-bool pw_job_words(pw_job *job)
+static bool all_words(pw_job *job)
 {
     for (int k = 0; k < job->out->count; k++)
         if (!section_words(job, k)) {
@@ -105,23 +105,37 @@ static bool settle_scales(pw_job *job, const pw_proof *proof)
     return moved;
 }
 
-bool pw_job_solve(pw_job *job)
+static void start(pw_job *job)
 {
     job->unstable = 0;
     memcpy(job->gain, job->start_gain, sizeof job->gain);
     for (int k = 0; k < job->out->count; k++)
         job->inner[k] = 0.999L;
+}
+
+bool pw_job_words(pw_job *job)
+{
+    start(job);
+    return all_words(job);
+}
+
+bool pw_job_solve(pw_job *job)
+{
+    start(job);
     for (int round = 1;; round++) {
-        pw_proof proof;
-        if (!pw_job_words(job))
+        if (!all_words(job))
             return false;
-        pw_proof_start(&job->format, job->out, &proof);
-        pw_prove(&proof, job->out);
-        bool again = round < ROUNDS && settle_scales(job, &proof);
-        if (!again)
-            pw_noise_find(&proof, job->stage, job->out, job->share);
-        pw_proof_end(&proof);
-        if (!again)
-            return true;
+        pw_job_free(job);
+        pw_proof_start(&job->format, job->out, &job->proof);
+        pw_prove(&job->proof, job->out);
+        if (round == ROUNDS || !settle_scales(job, &job->proof))
+            break;
     }
+    pw_noise_find(&job->proof, job->stage, job->out, job->share);
+    return true;
+}
+
+void pw_job_free(pw_job *job)
+{
+    pw_proof_end(&job->proof);
 }
