@@ -264,6 +264,21 @@ def closed_forms():
     check(r["zeros"] == [-1] and mp.mpf(r["factor"]) == mp.mpf("0.5"), "double integrator, step: (z + 1)/2 /(z - 1)^2")
 
 
+def samples_of_responses():
+    """The sections run over an impulse and a step (scipy.signal.lfilter) give the analog responses at the
+    samples: the textbook responses of a resonance, e^-at sin(wt) and its integral."""
+    a, w, rate, n = 300.0, 2500.0, 8000.0, np.arange(200)
+    t = n / rate
+    k = a * a + w * w
+    h = k / w * np.exp(-a * t) * np.sin(w * t)
+    step = 1 - np.exp(-a * t) * (np.cos(w * t) + a / w * np.sin(w * t))
+    for method, signal, truth in (("impulse-invariant", n == 0, h / rate), ("step-invariant", n >= 0, step)):
+        y = signal.astype(float)
+        for s in run([], [complex(-a, w)], k, rate, method=method)["sections"]:
+            y = sig.lfilter(s["b"], s["a"], y)
+        check(np.max(abs(y - truth)) < 1e-13, f"{method}: a resonance, sample by sample", f"{np.max(abs(y - truth)):.1e}")
+
+
 def high_orders():
     """Zeros of sampled systems tend to those of the Euler-Frobenius polynomials as T falls; the large
     orders need the digits. Compared with residues in 220 digits."""
@@ -293,5 +308,6 @@ matched_default_place()
 closed_forms()
 invariant_against_residues()
 invariant_against_scipy()
+samples_of_responses()
 high_orders()
 done()
