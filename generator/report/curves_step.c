@@ -212,22 +212,31 @@ static void digital_curve(const pw_results *results, double span, pw_step_curve 
     }
 }
 
+/* The time constants of the slowest and the fastest root, zeros included where poles are at 0. */
+static void find_times(const double complex *root, int n, double *slow, double *fast)
+{
+    for (int i = 0; i < n; i++) {
+        double away = fabs(creal(root[i]));
+        if (away == 0) continue;
+        *slow = fmax(*slow, 1 / away);
+        *fast = fmin(*fast, 1 / away);
+    }
+}
+
+static double choose_span(const pw_roots *analog, double rate_hz, bool *logarithmic)
+{
+    double slow = 0, fast = INFINITY, least = 16 / rate_hz;
+    find_times(analog->pole, analog->poles, &slow, &fast);
+    if (pw_analog_integrators(analog)) find_times(analog->zero, analog->zeros, &slow, &fast);
+    if (slow == 0) slow = 100 / rate_hz / SETTLE;
+    *logarithmic = slow > APART * fmax(fast, 1 / rate_hz);
+    return fmin(fmax(SETTLE * slow, least), MOST_SAMPLES / rate_hz);
+}
+
 pw_status pw_curve_step(const pw_results *results, pw_step_curve *out)
 {
-    const pw_roots *analog = &results->analog;
-    double rate = results->stage->rate_hz, slow = 0, fast = 0;
-    for (int i = 0; i < analog->poles; i++) {
-        double away = fabs(creal(analog->pole[i]));
-        if (away == 0) continue;
-        slow = fmax(slow, 1 / away);
-        fast = fast == 0 ? 1 / away : fmin(fast, 1 / away);
-    }
-    double span = fmax(SETTLE * slow, 8 / rate);
-    if (slow == 0) span = 100 / rate;
-    span = fmin(span, MOST_SAMPLES / rate);
-    fast = fmax(fast, 1 / rate);
-    out->logarithmic = slow > APART * fast;
-    double first = span / 300;
+    double rate = results->stage->rate_hz;
+    double span = choose_span(&results->analog, rate, &out->logarithmic), first = span / 300;
     out->analogs = 301;
     if (out->logarithmic) {
         first = 0.25 / rate / PER_OCTAVE;
@@ -235,5 +244,5 @@ pw_status pw_curve_step(const pw_results *results, pw_step_curve *out)
         out->analogs = (int)fmin(PW_CURVE_POINTS, PER_OCTAVE * (octaves + 1));
     }
     digital_curve(results, span, out);
-    return analog_curve(analog, rate, first, out);
+    return analog_curve(&results->analog, rate, first, out);
 }

@@ -200,15 +200,16 @@ static void put_node(const pw_results *results, const pw_node *n, pw_text *out)
     char fate[PW_FIGURE_ROOM];
     double share = isfinite(n->bound) ? n->bound : 1;
     bool fixed = pw_is_fixed(&results->realisation), known = fixed && isfinite(n->headroom_db);
-    pw_text_print(out, "<tr><th scope=\"row\">%s</th><td class=\"share\"><span class=\"bar%s\">"
-                  "<i style=\"width:%.1f%%\"></i></span></td><td class=\"n\">", n->name,
-                  n->can_clip ? " over" : "", fmin(share, 1) * 100);
+    pw_text_print(out, "<tr><th scope=\"row\">%s</th><td>%s</td><td class=\"share\">"
+                  "<span class=\"bar%s\"><i style=\"width:%.1f%%\"></i></span></td><td class=\"n\">",
+                  n->name, pw_node_fate(results, n, fate), n->can_clip ? " over" : "",
+                  fmin(share, 1) * 100);
     pw_text_print(out, isfinite(n->bound) ? "%.6f" : "unbounded", n->bound);
     pw_text_add(out, "</td><td class=\"n\">");
     if (known) pw_text_print(out, "%.2f dB", n->headroom_db);
     pw_text_add(out, "</td><td class=\"n\">");
     if (known) pw_text_print(out, "%.2f", n->headroom_db / (20 * log10(2)));
-    pw_text_print(out, "</td><td>%s</td></tr>\n", pw_node_fate(results, n, fate));
+    pw_text_add(out, "</td></tr>\n");
 }
 
 void pw_html_range(const pw_results *results, pw_text *out)
@@ -217,12 +218,12 @@ void pw_html_range(const pw_results *results, pw_text *out)
     pw_html_open("range", "Range", out);
     pw_html_sentence(pw_phrase_range, results, out);
     if (r->nodes) {
-        pw_text_add(out,
-                    "<div class=\"wide\" role=\"group\" aria-label=\"Nodes\" tabindex=\"0\"><table>"
-                    "<caption>Proved bound of each node for the largest input; a full bar is full"
-                    " scale</caption>\n<thead><tr><th scope=\"col\">node</th><th scope=\"col\">bound"
-                    " against full scale</th><th scope=\"col\">bound</th><th scope=\"col\">headroom</th>"
-                    "<th scope=\"col\">bits</th><th scope=\"col\">clips</th></tr></thead>\n<tbody>\n");
+        pw_text_add(out, "<div class=\"wide\" role=\"group\" aria-label=\"Nodes\" tabindex=\"0\">"
+                    "<table><caption>Proved bound of each node for the largest input; a full bar is"
+                    " full scale</caption>\n<thead><tr><th scope=\"col\">node</th>"
+                    "<th scope=\"col\">clips</th><th scope=\"col\">share of full scale</th>"
+                    "<th scope=\"col\">bound</th><th scope=\"col\">headroom</th>"
+                    "<th scope=\"col\">bits</th></tr></thead>\n<tbody>\n");
         for (int i = 0; i < r->nodes; i++) put_node(results, &r->node[i], out);
         pw_text_add(out, "</tbody></table></div>\n");
     }
@@ -286,7 +287,8 @@ void pw_html_words(const pw_results *results, pw_text *out)
     pw_html_open("words", "Words", out);
     put_sentence(r->structure_why, out);
     put_sentence(r->order_why, out);
-    pw_text_print(out, "<div class=\"wide\" role=\"group\" aria-label=\"Words\" tabindex=\"0\"><table>"
+    pw_text_print(out,
+                  "<div class=\"wide\" role=\"group\" aria-label=\"Words\" tabindex=\"0\"><table>"
                   "<thead><tr><th scope=\"col\">section</th><th scope=\"col\">name</th>%s"
                   "<th scope=\"col\">value</th></tr></thead>\n",
                   fixed ? "<th scope=\"col\">word</th><th scope=\"col\">times</th>" : "");

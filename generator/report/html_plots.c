@@ -17,8 +17,8 @@ static void put_missing(const pw_plots *plots, pw_text *out)
 {
     if (plots->wanted)
         pw_text_add(out,
-                    "<p class=\"none\">No plot here: <code>gnuplot</code> was not found when this"
-                    " report was made. Install it (on Debian: <code>apt-get install gnuplot-nox</code>)"
+                    "<p class=\"none\">No plot here: <code>gnuplot</code> was not found, or failed,"
+                    " when this report was made. Install it (on Debian: <code>apt-get install gnuplot-nox</code>)"
                     " and build again.</p>\n");
     else pw_text_add(out, "<p class=\"none\">Left out: this report was made without plots.</p>\n");
 }

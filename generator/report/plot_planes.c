@@ -4,10 +4,9 @@
 
 #include <math.h>
 
-#include "report/figures.h"
 #include "report/rootgroups.h"
 
-#define APART 30.0            /* largest over smallest root: from here on axes are compressed */
+#define APART 12.0            /* largest over smallest root: from here on axes are compressed */
 #define TOP 26
 #define BOTTOM 432
 
@@ -33,16 +32,29 @@ static void add_block(const char *name, const double complex *root, int n, const
             else pw_text_add(script, " \"\"");
             pw_text_add(script, "\n");
         }
-    pw_text_add(script, groups ? "EOD\n" : "NaN NaN \"\"\nEOD\n");
+    pw_text_add(script, "EOD\n");
 }
 
-static void add_marks(const char *name, pw_role role, pw_text *script)
+/* Nothing where there is none: gnuplot 5.4 crashes on labels without a single point. */
+static void add_marks(const char *name, int n, pw_role role, pw_text *script)
 {
-    pw_text_print(script, "$%s using 1:2 with points pt 2 ps 1 lc", name);
+    if (!n) return;
+    pw_text_print(script, ", $%s using 1:2 with points pt 2 ps 1 lc", name);
     pw_script_color(role, script);
     pw_text_print(script, " notitle, $%s using 1:2:3 with labels offset 1.1,0.6 left tc", name);
     pw_script_color(PW_ROLE_TEXT, script);
     pw_text_add(script, " notitle");
+}
+
+/* block: what is drawn under the marks. */
+static void add_plot(const char *block, const pw_roots *model, pw_text *script)
+{
+    pw_text_print(script, "plot $%s", block);
+    pw_script_line("1:2", PW_ROLE_EDGE, script);
+    add_marks("poles", model->poles, PW_ROLE_DIGITAL, script);
+    add_marks("zeros", model->zeros, PW_ROLE_ZERO, script);
+    pw_text_add(script, "\n");
+    pw_script_close(script);
 }
 
 static void add_axes(const char *x, const char *y, pw_text *script)
@@ -79,9 +91,10 @@ static void extent(const pw_roots *model, double *least, double *most)
 
 static void add_tick(const axis *a, double hz, bool first, pw_text *script)
 {
-    char figure[PW_FIGURE_ROOM];
-    pw_text_print(script, "%s'%s' %.9g", first ? "" : ", ", hz == 0 ? "0"
-                  : pw_figure(figure, hz, "Hz"),
+    static const char *const prefix[] = {"", "k", "M", "G"};
+    int group = fabs(hz) < 1000 ? 0 : (int)floor(log10(fabs(hz)) / 3 + 1e-9);
+    if (group > 3) group = 3;
+    pw_text_print(script, "%s'%g%s' %.9g", first ? "" : ", ", hz / pow(1000, group), prefix[group],
                   place(a, hz));
 }
 
@@ -92,7 +105,8 @@ static void add_ticks(char which, const axis *a, double most, pw_text *script)
     pw_text_add(script, " (");
     add_tick(a, 0, true, script);
     if (a->compressed) {
-        int from = (int)ceil(log10(a->scale)), to = (int)floor(log10(most)), every = 1 + (to - from) / 3;
+        int from = (int)ceil(log10(a->scale)), to = (int)floor(log10(most));
+        int every = 1 + (to - from) / 3;
         for (int d = to; d >= from; d -= every) {
             add_tick(a, pow(10, d), false, script);
             add_tick(a, -pow(10, d), false, script);
@@ -127,13 +141,9 @@ void pw_script_s_plane(const pw_results *results, bool *compressed, pw_text *scr
                   scale);
     add_ticks('x', &hz, most, script);
     add_ticks('y', &hz, most, script);
-    add_axes("real part / 2\317\200", "imaginary part / 2\317\200", script);
-    pw_text_add(script, "plot ");
-    add_marks("poles", PW_ROLE_DIGITAL, script);
-    pw_text_add(script, ", ");
-    add_marks("zeros", PW_ROLE_ZERO, script);
-    pw_text_add(script, "\n");
-    pw_script_close(script);
+    add_axes("real part / 2\317\200, Hz", "imaginary part / 2\317\200, Hz", script);
+    pw_text_add(script, "$origin << EOD\n0 0\nEOD\n");
+    add_plot("origin", &results->analog, script);
 }
 
 /* ---- z plane ---- */
@@ -166,12 +176,5 @@ void pw_script_z_plane(const pw_results *results, pw_text *script)
     pw_script_color(PW_ROLE_TEXT, script);
     pw_text_add(script, "\n");
     add_axes("real part", "imaginary part", script);
-    pw_text_add(script, "plot $circle");
-    pw_script_line("1:2", PW_ROLE_EDGE, script);
-    pw_text_add(script, ", ");
-    add_marks("poles", PW_ROLE_DIGITAL, script);
-    pw_text_add(script, ", ");
-    add_marks("zeros", PW_ROLE_ZERO, script);
-    pw_text_add(script, "\n");
-    pw_script_close(script);
+    add_plot("circle", z, script);
 }

@@ -9,9 +9,9 @@
 int pw_plot_height(pw_plot plot)
 {
     switch (plot) {
-    case PW_PLOT_RESPONSE: return 580;
+    case PW_PLOT_RESPONSE: return 590;
     case PW_PLOT_S_PLANE: case PW_PLOT_Z_PLANE: return 472;
-    default: return 300;
+    default: return 308;
     }
 }
 
@@ -76,7 +76,7 @@ void pw_script_log_x(double low, double high, bool labels, const char *unit, pw_
         pw_text_print(script, "' 1e%d", d);
         for (int k = 2; k < 10 && every == 1; k++) pw_text_print(script, ", '' %de%d 1", k, d);
     }
-    pw_text_print(script, ")\nset grid xtics\nset xlabel '%s' offset 0,0.4 tc", labels ? unit : "");
+    pw_text_print(script, ")\nset grid xtics\nset xlabel '%s' offset 0,0.5 tc", labels ? unit : "");
     pw_script_color(PW_ROLE_TEXT, script);
     pw_text_add(script, "\n");
 }
