@@ -5,11 +5,11 @@
 
 #include "report/results.h"
 
-#define PW_CURVE_POINTS 320
+#define PW_CURVE_POINTS 1536
 
 typedef struct pw_step_curve {
     bool logarithmic;            /* time in octaves: fast and slow poles lie far apart */
-    int analogs, digitals;
+    int analogs, digitals;       /* as many as the ringing needs to be drawn */
     double analog_t[PW_CURVE_POINTS], analog[PW_CURVE_POINTS];
     double digital_t[PW_CURVE_POINTS], digital[PW_CURVE_POINTS];
 } pw_step_curve;

@@ -5,6 +5,7 @@
 #include "report/phrases.h"
 
 #define UNIT_STEP (1.0 / 12)  /* variance of rounding to a step of 1 */
+#define POINTS 320
 
 static double power(double complex h)
 {
@@ -50,9 +51,9 @@ void pw_curve_noise(const pw_results *results, pw_noise_curve *out)
     double rate = results->stage->rate_hz, low = results->response.band_hz[0], high = rate / 2;
     out->points = 0;
     if (!pw_is_fixed(r) || low <= 0 || low >= high) return;
-    out->points = PW_CURVE_POINTS;
+    out->points = POINTS;
     for (int i = 0; i < out->points; i++) {
-        double hz = low * pow(high / low, i / (double)(PW_CURVE_POINTS - 1));
+        double hz = low * pow(high / low, i / (double)(POINTS - 1));
         double complex z = cexp(2 * M_PI * hz / rate * I), h = 1;
         for (int k = 0; k < r->count; k++)
             h *= pw_section_at(r->section[k].realised_b, r->section[k].realised_a, z);

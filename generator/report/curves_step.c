@@ -9,6 +9,9 @@
 #define SETTLE 6.0            /* time constants of the slowest pole that are shown */
 #define APART 50.0            /* slowest over fastest: from here on time is logarithmic */
 #define PER_OCTAVE 12
+#define POINTS 300            /* of a curve that does not ring for long */
+#define PER_CYCLE 16          /* points of one that does */
+#define FEW_CYCLES 6.0
 #define MOST_SAMPLES 4e6      /* that the digital side is run for */
 
 /* ---- the analog stage as a chain of blocks ---- */
@@ -199,7 +202,8 @@ static void digital_curve(const pw_results *results, double span, pw_step_curve 
 {
     const pw_realisation *r = &results->realisation;
     double state[PW_MAX_SECTIONS][2] = {{0}}, rate = results->stage->rate_hz;
-    double samples = fmin(span * rate, MOST_SAMPLES), stride = fmax(samples / 300, 1), due = 0;
+    double samples = fmin(span * rate, MOST_SAMPLES), due = 0;
+    double stride = fmax(samples / (out->analogs - 1), 1);
     double x = 1 / r->input_full_scale;
     out->digitals = 0;
     for (long n = 0; n <= (long)samples && out->digitals < PW_CURVE_POINTS; n++) {
@@ -223,21 +227,40 @@ static void find_times(const double complex *root, int n, double *slow, double *
     }
 }
 
-static double choose_span(const pw_roots *analog, double rate_hz, bool *logarithmic)
+/* How often the fastest pair swings before it has died down. */
+static double find_cycles(const pw_roots *analog, double span, double *hz)
 {
-    double slow = 0, fast = INFINITY, least = 16 / rate_hz;
+    double most = 0;
+    for (int i = 0; i < analog->poles; i++) {
+        double f = cimag(analog->pole[i]) / (2 * M_PI), away = fabs(creal(analog->pole[i]));
+        double cycles = f * fmin(span, SETTLE / away);
+        if (f <= 0 || cycles < most) continue;
+        most = cycles;
+        *hz = f;
+    }
+    return most;
+}
+
+static double choose_span(const pw_roots *analog, double rate_hz, pw_step_curve *out)
+{
+    double slow = 0, fast = INFINITY, least = 16 / rate_hz, hz = 0;
     find_times(analog->pole, analog->poles, &slow, &fast);
     if (pw_analog_integrators(analog)) find_times(analog->zero, analog->zeros, &slow, &fast);
     if (slow == 0) slow = 100 / rate_hz / SETTLE;
-    *logarithmic = slow > APART * fmax(fast, 1 / rate_hz);
-    return fmin(fmax(SETTLE * slow, least), MOST_SAMPLES / rate_hz);
+    double span = fmin(fmax(SETTLE * slow, least), MOST_SAMPLES / rate_hz);
+    double cycles = find_cycles(analog, span, &hz);
+    out->logarithmic = cycles < FEW_CYCLES && slow > APART * fmax(fast, 1 / rate_hz);
+    out->analogs = POINTS + 1;
+    if (cycles < FEW_CYCLES) return span;
+    span = fmin(span, (PW_CURVE_POINTS - 1) / (hz * PER_CYCLE));
+    out->analogs = 1 + (int)fmax(POINTS, span * hz * PER_CYCLE);
+    return span;
 }
 
 pw_status pw_curve_step(const pw_results *results, pw_step_curve *out)
 {
-    double rate = results->stage->rate_hz;
-    double span = choose_span(&results->analog, rate, &out->logarithmic), first = span / 300;
-    out->analogs = 301;
+    double rate = results->stage->rate_hz, span = choose_span(&results->analog, rate, out);
+    double first = span / (out->analogs - 1);
     if (out->logarithmic) {
         first = 0.25 / rate / PER_OCTAVE;
         double octaves = log2(span / (first * PER_OCTAVE));

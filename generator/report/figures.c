@@ -19,6 +19,8 @@ char *pw_figure(char *buffer, double value, const char *unit)
     static const char *const whole[] = {"bytes", "samples", "cycles", "nodes", NULL};
     if (isnan(value)) return strcpy(buffer, "not known");
     if (isinf(value)) return strcpy(buffer, value > 0 ? "unbounded" : "none");
+    if (!strcmp(unit, "s") && value != 0 && fabs(value) < 1e-12)
+        return strcpy(buffer, "under 1 ps");
     if (one_of(unit, prefixed)) {
         bool low = !strcmp(unit, "Hz") && fabs(value) < 1 && fabs(value) >= 0.001;
         bool long_time = !strcmp(unit, "s") && fabs(value) >= 1000;

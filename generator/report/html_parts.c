@@ -64,8 +64,8 @@ static void put_share(const pw_limit_row *row, pw_text *out)
     pw_text_add(out, "<td class=\"share\">");
     if (row->limit > 0 && isfinite(share) && share >= 0)
         pw_text_print(out, "<span class=\"bar%s\"><i style=\"width:%.1f%%\"></i></span>"
-                      "<span class=\"pc\">%.0f %%</span>", row->met ? "" : " over",
-                      fmin(share, 1) * 100, share * 100);
+                      "<span class=\"pc\">%s%.0f %%</span>", row->met ? "" : " over",
+                      fmin(share, 1) * 100, share > 9.99 ? "over " : "", fmin(share, 9.99) * 100);
     pw_text_add(out, "</td>");
 }
 
@@ -91,6 +91,8 @@ static void put_limit(const pw_results *results, const pw_limit_row *row, pw_tex
 void pw_html_verdict(const pw_results *results, pw_text *out)
 {
     const char *kind = !results->limits ? "open" : results->met ? "met" : "fail";
+    const char *met = results->met ? "\342\234\223" : "\342\234\227";
+    const char *sign = results->limits ? met : "\342\200\223";
     pw_text verdict = {0};
     pw_phrase_verdict(results, &verdict);
     pw_text_add(out, "<header>\n<h1>");
@@ -98,14 +100,16 @@ void pw_html_verdict(const pw_results *results, pw_text *out)
     pw_text_print(out, "</h1>\n<p class=\"about\">");
     pw_html_text(results->stage->about, out);
     pw_text_print(out,
-                  "</p>\n<p class=\"verdict %s\"><span class=\"sign\" aria-hidden=\"true\">%s</span>",
-                  kind, !results->limits ? "\342\200\223" : results->met ? "\342\234\223" : "\342\234\227");
+                  "</p>\n<p class=\"verdict %s\"><span class=\"sign\" aria-hidden=\"true\">%s"
+                  "</span>",
+                  kind, sign);
     pw_html_text(pw_text_string(&verdict), out);
     pw_text_add(out, "</p>\n");
     pw_text_free(&verdict);
     if (results->limits) {
         pw_text_add(out, "<div class=\"wide\" role=\"group\" aria-label=\"Limits\" tabindex=\"0\">"
-                    "<table class=\"limits\"><thead><tr><th scope=\"col\">verdict</th><th scope=\"col\">limit</th>"
+                    "<table class=\"limits\"><thead><tr><th scope=\"col\">verdict</th><th"
+                    " scope=\"col\">limit</th>"
                     "<th scope=\"col\">asked</th><th scope=\"col\">found</th>"
                     "<th scope=\"col\">used of the limit</th></tr></thead>\n<tbody>\n");
         for (int i = 0; i < results->limits; i++) put_limit(results, &results->limit[i], out);
@@ -181,7 +185,8 @@ void pw_html_roots(const pw_results *results, pw_text *out)
 {
     const pw_roots *s = &results->analog, *z = &results->digital.z;
     pw_text_add(out, "<details><summary>Every root</summary>\n<div class=\"wide\" role=\"group\""
-                " aria-label=\"Roots\" tabindex=\"0\"><table><thead><tr><th scope=\"col\">plane</th>"
+                " aria-label=\"Roots\" tabindex=\"0\"><table><thead><tr><th scope=\"col\">plane"
+                "</th>"
                 "<th scope=\"col\">kind</th><th scope=\"col\">root (s: rad/s)</th>"
                 "<th scope=\"col\">times</th></tr></thead>\n<tbody>\n");
     put_roots("s", "pole", s->pole, s->poles, out);
@@ -201,7 +206,8 @@ static void put_node(const pw_results *results, const pw_node *n, pw_text *out)
     double share = isfinite(n->bound) ? n->bound : 1;
     bool fixed = pw_is_fixed(&results->realisation), known = fixed && isfinite(n->headroom_db);
     pw_text_print(out, "<tr><th scope=\"row\">%s</th><td>%s</td><td class=\"share\">"
-                  "<span class=\"bar%s\"><i style=\"width:%.1f%%\"></i></span></td><td class=\"n\">",
+                  "<span class=\"bar%s\"><i style=\"width:%.1f%%\"></i></span></td><td"
+                  " class=\"n\">",
                   n->name, pw_node_fate(results, n, fate), n->can_clip ? " over" : "",
                   fmin(share, 1) * 100);
     pw_text_print(out, isfinite(n->bound) ? "%.6f" : "unbounded", n->bound);
@@ -338,13 +344,15 @@ void pw_html_use(const pw_results *results, pw_text *out)
     pw_text_print(out, "<pre id=\"code\" tabindex=\"0\"><code>#include \"%s.h\"\n\n"
                   "static %s_state filter;              /* one for each channel */\n\n"
                   "void start(%s first)\n{\n    %s_reset(&amp;filter);\n"
-                  "    %s_settle(&amp;filter, first);    /* as if first had been there for ever */\n}\n\n"
+                  "    %s_settle(&amp;filter, first);    /* as if first had been there for ever"
+                  " */\n}\n\n"
                   "%s on_sample(%s x)\n{\n    return %s_step(&amp;filter, x);\n}\n</code></pre>\n",
                   name, name, type, name, name, type, type, name);
     pw_text_print(out, "<p class=\"copy\"><button type=\"button\" id=\"copy\" hidden>Copy</button>"
                   "<span id=\"copied\" role=\"status\"></span></p>\n"
                   "<p>Compile every <code>.c</code> file of this folder but the self-test with"
-                  " <code>-std=c99 -O2%s</code>. Run <code>%s_selftest()</code> once on the part: it"
+                  " <code>-std=c99 -O2%s</code>. Run <code>%s_selftest()</code> once on the"
+                  " part: it"
                   " returns 0 when every sample is as expected.</p>\n",
                   pw_is_fixed(&results->realisation) ? "" : " -ffp-contract=off", name);
     pw_html_close(out);
@@ -375,7 +383,8 @@ void pw_html_end(const pw_results *results, pw_text *out)
     pw_html_close(out);
     pw_html_open("again", "Made again", out);
     pw_text_print(out, "<p><code>polewright build %s.yaml</code> with polewright %s makes this page"
-                  " again, byte for byte, from the stage file with SHA-256 <code class=\"hash\">%s</code>.</p>\n",
+                  " again, byte for byte, from the stage file with SHA-256 <code"
+                  " class=\"hash\">%s</code>.</p>\n",
                   stage->name, PW_VERSION, stage->sha256);
     pw_html_close(out);
 }

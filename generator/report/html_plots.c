@@ -18,7 +18,8 @@ static void put_missing(const pw_plots *plots, pw_text *out)
     if (plots->wanted)
         pw_text_add(out,
                     "<p class=\"none\">No plot here: <code>gnuplot</code> was not found, or failed,"
-                    " when this report was made. Install it (on Debian: <code>apt-get install gnuplot-nox</code>)"
+                    " when this report was made. Install it (on Debian: <code>apt-get install"
+                    " gnuplot-nox</code>)"
                     " and build again.</p>\n");
     else pw_text_add(out, "<p class=\"none\">Left out: this report was made without plots.</p>\n");
 }
@@ -67,9 +68,11 @@ static void put_errors(const pw_results *results, pw_text *out)
         {"transform", &r->transform}, {"words", &r->quantisation}, {"both", &r->total}};
     pw_text_print(out,
                   "<div class=\"wide\" role=\"group\" aria-label=\"Errors\" tabindex=\"0\"><table>"
-                  "<caption>Largest error from %s to %s, where the analog magnitude is within %g dB of"
+                  "<caption>Largest error from %s to %s, where the analog magnitude is within %g"
+                  " dB of"
                   " its peak</caption>\n<thead><tr><th scope=\"col\">from</th><th scope=\"col\">"
-                  "magnitude</th><th scope=\"col\">phase</th><th scope=\"col\">group delay</th></tr>"
+                  "magnitude</th><th scope=\"col\">phase</th><th scope=\"col\">group delay</th>"
+                  "</tr>"
                   "</thead>\n<tbody>\n", pw_figure(low, r->band_hz[0], "Hz"),
                   pw_figure(high, r->band_hz[1], "Hz"), results->stage->limits.floor_db);
     for (int i = 0; i < 3; i++) {
@@ -112,7 +115,8 @@ static void put_table(const pw_response *r, pw_text *out)
 static void put_reader(const pw_response *r, pw_text *out)
 {
     pw_text_print(out, "<div class=\"reader\" id=\"reader\" hidden>\n"
-                  "<label for=\"cursor\">Read at</label> <input id=\"cursor\" type=\"range\" min=\"0\""
+                  "<label for=\"cursor\">Read at</label> <input id=\"cursor\" type=\"range\""
+                  " min=\"0\""
                   " max=\"%d\" value=\"%d\" step=\"1\">\n"
                   "<output id=\"reading\" for=\"cursor\" aria-live=\"polite\"></output>\n</div>\n",
                   r->rows - 1, r->rows / 2);
@@ -191,7 +195,8 @@ void pw_html_planes(const pw_results *results, const pw_plots *plots, pw_text *o
                  results->analog.zeros);
         put_plot(plots, PW_PLOT_S_PLANE, words, out);
         pw_text_print(out, "<figcaption>s plane, as frequency%s</figcaption></figure>\n<figure>\n",
-                      plots->plane_compressed ? "; axes compressed, so that near and far roots show" : "");
+                      plots->plane_compressed ? "; axes compressed, so that near and far roots"
+                                                " show" : "");
         snprintf(words, sizeof words, "The z plane and the unit circle with %d poles and %d zeros",
                  results->digital.z.poles, results->digital.z.zeros);
         put_plot(plots, PW_PLOT_Z_PLANE, words, out);
@@ -232,7 +237,7 @@ void pw_html_rows(const pw_results *results, pw_text *out)
                                  row->digital_deg};
         for (int k = 0; k < 5; k++) {
             pw_text_add(out, k ? "," : i ? ",\n[" : "\n[");
-            if (isfinite(column[k])) pw_text_print(out, "%.6g", column[k]);
+            if (isfinite(column[k])) pw_text_print(out, "%.9g", column[k]);
             else pw_text_add(out, "null");
         }
         pw_text_add(out, "]");

@@ -90,7 +90,8 @@ static void add_phase_axis(const pw_response *r, pw_text *script)
         low = fmin(low, phase);
         high = fmax(high, phase);
     }
-    for (size_t k = 0; k < sizeof steps / sizeof *steps && step < (high - low) / 4; k++) step = steps[k];
+    for (size_t k = 0; k < sizeof steps / sizeof *steps && step < (high - low) / 4; k++)
+        step = steps[k];
     low = floor(low / step - 0.01) * step;
     pw_script_y("phase, degrees", low, ceil(high / step + 0.01) * step, script);
     pw_text_print(script, "set ytics %.9g,%.9g\n", low, step);

@@ -49,7 +49,8 @@ static void roots_have_frequency_q_and_time_constant(void **state)
     pw_text text = shown(false);
     assert_has(&text, "3 poles and 1 zero");
     assert_has(&text,
-               "pole  -1777.15 \302\261 1777.15j rad/s               400 Hz  0.7071       562.7 us");
+               "pole  -1777.15 \302\261 1777.15j rad/s               400 Hz  0.7071       562.7"
+               " us");
     assert_has(&text,
                "pole  -3.14159 rad/s                          0.5 Hz               318.3 ms");
     assert_has(&text, "zero  0 rad/s                                   0 Hz");

@@ -161,7 +161,8 @@ static void the_range_says_how_far_it_holds(void **state)
     pw_realisation *r = &results.realisation;
     r->nodes = 3;
     pw_text text = written(false, false);
-    assert_has(&text, "1 node can clip; the fullest is section 1 accumulator at 1.25 of full scale");
+    assert_has(&text, "1 node can clip; the fullest is section 1 accumulator at 1.25 of full"
+                      " scale");
     assert_has(&text, "the first can clip from 0.8 of full scale (1.32 V)");
     pw_text_free(&text);
     r->nodes = 2;
