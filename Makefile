@@ -18,9 +18,12 @@ PACKAGES_BUILD := gcc make pkg-config libgsl-dev libyaml-dev libjansson-dev libm
                   libmpc-dev libmpfr-dev libgmp-dev
 PACKAGES_RUN   := gnuplot-nox
 PACKAGES_TEST  := g++ clang libcmocka-dev python3 python3-numpy python3-scipy python3-mpmath python3-yaml \
-                  python3-jsonschema
+                  python3-jsonschema chromium chromium-driver fonts-dejavu-core \
+                  $(if $(shell command -v npm),,npm)
 PACKAGES_PART  := gcc-arm-none-eabi libnewlib-arm-none-eabi qemu-system-arm qemu-system-misc \
                   gcc-riscv64-unknown-elf picolibc-riscv64-unknown-elf gcc-avr avr-libc libsimavr-dev libelf1
+# From the npm registry, into build/node: the accessibility checker that report.html must satisfy.
+NODE_AXE       := axe-core@4.10.3
 PACKAGES       := $(PACKAGES_BUILD) $(PACKAGES_RUN) $(PACKAGES_TEST) $(PACKAGES_PART)
 
 # ---- Sources ----
@@ -88,6 +91,9 @@ deps:                            ## installs the Debian packages that are missin
 	  sudo=; [ "$$(id -u)" = 0 ] || sudo=sudo; \
 	  $$sudo apt-get update -q && \
 	  $$sudo env DEBIAN_FRONTEND=noninteractive apt-get install -y -q --no-install-recommends $$missing; fi
+	@test -f build/node/node_modules/axe-core/axe.min.js || { echo "deps: installing $(NODE_AXE) into build/node"; \
+	  mkdir -p build/node && npm install --prefix build/node --no-audit --no-fund --loglevel=error $(NODE_AXE); } || \
+	  { echo "deps: $(NODE_AXE) could not be installed; the accessibility check will be skipped"; test -z "$$CI"; }
 
 demo: all                        ## builds a shipped example and says where to look
 	build/polewright build examples/winch-current/stage.yaml -o build/demo
