@@ -23,21 +23,44 @@ def whole_pairs(roots):
 
 
 class Stage:
-    def __init__(self, zeros, poles, factor, rate, method="bilinear", prewarp="default", hz=0.0,
-                 infinity=0, match=-1.0, band=None, floor=60.0):
-        self.zeros, self.poles, self.factor, self.rate = whole_pairs(zeros), whole_pairs(poles), factor, rate
+    def __init__(
+        self,
+        zeros,
+        poles,
+        factor,
+        rate,
+        method="bilinear",
+        prewarp="default",
+        hz=0.0,
+        infinity=0,
+        match=-1.0,
+        band=None,
+        floor=60.0,
+    ):
+        self.zeros, self.poles, self.factor, self.rate = (
+            whole_pairs(zeros),
+            whole_pairs(poles),
+            factor,
+            rate,
+        )
         low, high = band or (rate / 10000, 0.4 * rate)
         numbers = " ".join(f"{r.real!r} {r.imag!r}" for r in self.poles + self.zeros)
         k = factor if isinstance(factor, str) else repr(float(factor))
-        self.line = (f"stage {method} {prewarp} {float(hz)!r} {infinity} {float(match)!r} {float(rate)!r} "
-                     f"{float(low)!r} {float(high)!r} {float(floor)!r} {k} {len(self.poles)} "
-                     f"{len(self.zeros)} {numbers}")
+        self.line = (
+            f"stage {method} {prewarp} {float(hz)!r} {infinity} {float(match)!r} {float(rate)!r} "
+            f"{float(low)!r} {float(high)!r} {float(floor)!r} {k} {len(self.poles)} "
+            f"{len(self.zeros)} {numbers}"
+        )
 
 
 def ask(lines):
     """lines: Stage, ("at", hz) or ("error", low, high); the answers in order."""
-    text = "\n".join(l.line if isinstance(l, Stage) else " ".join(repr(x) if not isinstance(x, str) else x for x in l)
-                     for l in lines)
+    text = "\n".join(
+        l.line
+        if isinstance(l, Stage)
+        else " ".join(repr(x) if not isinstance(x, str) else x for x in l)
+        for l in lines
+    )
     ran = subprocess.run([PROBE], input=text + "\n", capture_output=True, text=True, check=True)
     answers = [json.loads(l) for l in ran.stdout.splitlines()]
     for a in answers:
@@ -65,7 +88,7 @@ def sections_value(sections, z):
     v = mp.mpf(1)
     for s in sections:
         b, a = [mp.mpf(x) for x in s["b"]], [mp.mpf(x) for x in s["a"]]
-        v *= (b[0] + b[1] / z + b[2] / z ** 2) / (a[0] + a[1] / z + a[2] / z ** 2)
+        v *= (b[0] + b[1] / z + b[2] / z**2) / (a[0] + a[1] / z + a[2] / z**2)
     return v
 
 
@@ -91,5 +114,7 @@ def nearest_gap(ours, theirs):
     for r in sorted(ours, key=abs):
         near = min(left, key=lambda t: abs(t - r))
         left.remove(near)
-        worst = max(worst, float(abs(near - r)) / max(abs(complex(near)), 1e-300) if near != r else 0.0)
+        worst = max(
+            worst, float(abs(near - r)) / max(abs(complex(near)), 1e-300) if near != r else 0.0
+        )
     return worst
