@@ -23,7 +23,7 @@ STAGES = {
     "floats": {
         "stage": "sonar_band", "about": "Band of a depth sounder", "rate": "192 kHz",
         "analog": {"family": {"approximation": "elliptic", "shape": "bandpass", "order": 5, "ripple": "0.5 dB",
-                              "stopband": "60 dB", "corners": ["18 kHz", "22 kHz"]}},
+                              "stopband": "70 dB", "corners": ["18 kHz", "22 kHz"]}},
     },
     # A notch in coupled form with double roots near the circle.
     "notch": {
