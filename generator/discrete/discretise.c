@@ -116,23 +116,12 @@ static bool match_can_be(const pw_stage *stage, const pw_roots *analog, pw_messa
     return no_match(stage, asked->value, messages);
 }
 
-static void warn_unused_prewarp(const pw_stage *stage, pw_messages *messages)
-{
-    const pw_transform *t = &stage->transform;
-    if (t->prewarp == PW_PREWARP_DEFAULT || t->prewarp == PW_PREWARP_NONE) return;
-    if (t->method == PW_BILINEAR || t->method == PW_BEST) return;
-    pw_warning(messages, t->prewarp_at,
-               "prewarp does nothing for %s; it belongs to bilinear and best",
-               pw_method_word(t->method));
-}
-
 pw_status pw_discretise(const pw_stage *stage, const pw_roots *analog, pw_digital *out,
                         pw_messages *messages)
 {
     memset(out, 0, sizeof *out);
     if (!frequencies_fit(stage, messages) || !match_can_be(stage, analog, messages))
         return PW_WRONG;
-    warn_unused_prewarp(stage, messages);
     if (stage->transform.method == PW_BEST) {
         if (!pw_best(stage, analog, out)) return no_form(stage, analog, messages);
     } else {

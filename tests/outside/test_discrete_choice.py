@@ -186,14 +186,6 @@ def messages():
     told("5:1", "the gain cannot be matched at 0 Hz", zeros=[0], match=0)
     told("5:1", "the gain cannot be matched at 0 Hz", poles=[0], match=0, method="step-invariant")
     told("5:1", "the gain cannot be matched at 0 Hz", poles=[0], match=0, method="best")
-    told(
-        "4:1",
-        "warning: prewarp does nothing for matched-z",
-        method="matched-z",
-        prewarp="at",
-        hz=90,
-        status=0,
-    )
     told("2:1", "cannot be told from one that does not", poles=[-1e-14], rate=1e6)
     fast = complex(-2 * np.pi * 300, 2 * np.pi * 800)
     told(
