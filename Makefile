@@ -149,8 +149,9 @@ documents: $(OUT)/make-documents ## build/release/documents: manual pages, compl
 
 install: all documents $(OUT)/libpolewright-runtime.a          ## installs under PREFIX (default /usr/local), below DESTDIR where given
 	install -D -m 755 build/polewright $(DESTDIR)$(PREFIX)/bin/polewright
-	install -d $(SHARE)/polewright/runtime $(SHARE)/polewright/include
+	install -d $(SHARE)/polewright/runtime/kernels $(SHARE)/polewright/include
 	install -m 644 runtime/*.[ch] $(SHARE)/polewright/runtime/
+	install -m 644 runtime/kernels/* $(SHARE)/polewright/runtime/kernels/
 	cp -R include/polewright $(SHARE)/polewright/include/
 	cp -R targets $(SHARE)/polewright/
 	install -d $(DESTDIR)$(PREFIX)/include/polewright $(LIB)/pkgconfig $(LIB)/cmake/polewright-runtime

@@ -24,8 +24,7 @@ typedef struct pw_emission {
     bool single;                 /* float32 */
     bool integrates;             /* a section does: settle is reset */
     bool counts;                 /* a clamp is left somewhere, so that there is something to count */
-    bool part_kernels;           /* blocks go through kernels in the instructions of the part */
-    pw_cascade cascade;          /* .. which are these */
+    bool part_kernels;           /* all sections have kernels of the part, and state d[] that those read */
     const struct pw_form *form[PW_MAX_SECTIONS];
     pw_arena *arena;
 } pw_emission;
@@ -53,10 +52,8 @@ typedef struct pw_form {
     const char *(*member)(const pw_emission *e, const pw_words *w, int k);
 } pw_form;
 
-/* Sets everything up; forms are chosen. PW_FAILED with a line on stderr where the kernels of a part
- * cannot be read. pw_emission_end in any case; the arena is the caller's. */
-PW_CHECKED pw_status pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena);
-void pw_emission_end(pw_emission *e);
+/* Sets everything up; forms are chosen. The arena is the caller's. */
+void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena);
 
 extern const pw_form pw_forms_runtime[], pw_forms_fixed[], pw_forms_float[];
 

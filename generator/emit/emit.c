@@ -157,9 +157,17 @@ static void block_of_steps(pw_code *file)
     pw_put(f, "*s = local;");
 }
 
-/* Sample by sample: every section has a step. */
-static void stepping(const pw_emission *e, pw_code *file)
+static const char *member_of(const void *of, const pw_words *w, int k)
 {
+    const pw_emission *e = of;
+    const char *name = e->form[w - e->r->section]->member(e, w, k);
+    return name ? pw_arena_print(e->arena, "s->%s", name) : NULL;
+}
+
+/* Sample by sample: every section has a step. On a part with kernels these make the block. */
+static pw_status stepping(const pw_emission *e, pw_code *file)
+{
+    const pw_cascade kernels = {e->r, e->target, e->part_kernels, member_of, e};
     pw_blank(file);
     pw_code *f = pw_function(file, "static inline @ $_cascade($_state *s, @ x)");
     for (int k = 0; k < e->r->count; k++) pw_put(pw_section_group(f, k + 1), "x = $_section_#(s, x);");
@@ -167,14 +175,11 @@ static void stepping(const pw_emission *e, pw_code *file)
     pw_blank(file);
     f = pw_function(file, "@ $_step($_state *s, @ x)");
     pw_put(f, "return $_cascade(s, x);");
+    if (pw_cascade_fits(&kernels)) return pw_cascade_emit(&kernels, file);
     pw_blank(file);
-    if (!e->part_kernels) {
-        block_of_steps(file);
-        return;
-    }
-    pw_raw(file, pw_text_string(&e->cascade.functions));
-    f = pw_function(file, "void $_block($_state *s, const @ *in, @ *out, size_t n)");
-    pw_raw(f, pw_text_string(&e->cascade.body));
+    if (pw_cascade_floats_fit(&kernels)) pw_cascade_floats(&kernels, file);
+    else block_of_steps(file);
+    return PW_OK;
 }
 
 /* Section by section over the block; a step is a block of one. */
@@ -201,12 +206,13 @@ static void blocking(const pw_emission *e, pw_code *file)
     pw_put(f, "return x;");
 }
 
-static void interface(const pw_emission *e, pw_code *file)
+static pw_status interface(const pw_emission *e, pw_code *file)
 {
+    pw_status status = PW_OK;
     pw_blank(file);
     pw_code *f = pw_function(file, "void $_reset($_state *s)");
     pw_put(f, "memset(s, 0, sizeof *s);");
-    if (all_step(e)) stepping(e, file);
+    if (all_step(e)) status = stepping(e, file);
     else blocking(e, file);
     pw_blank(file);
     f = pw_function(file, "void $_settle($_state *s, @ x)");
@@ -216,14 +222,15 @@ static void interface(const pw_emission *e, pw_code *file)
         bool last = k == e->r->count - 1;
         pw_put(pw_section_group(f, k + 1), last ? "(void)$_settle_#(s, x);" : "x = $_settle_#(s, x);");
     }
-    if (!e->fixed) return;
+    if (!e->fixed) return status;
     pw_blank(file);
     f = pw_function(file, "uint32_t $_clipped(const $_state *s)");
     if (!e->counts) pw_put(f, "(void)s;");
     pw_put(f, e->counts ? "return s->clipped;" : "return 0;");
+    return status;
 }
 
-static void source_file(const pw_emission *e, pw_code *source)
+static pw_status source_file(const pw_emission *e, pw_code *source)
 {
     pw_comment_line(source, "SPDX-License-Identifier: 0BSD");
     pw_code *comment = pw_comment(source);
@@ -234,7 +241,7 @@ static void source_file(const pw_emission *e, pw_code *source)
     pw_directive(source, "#include <string.h>");
     machine_checks(e, source);
     sections(e, source);
-    interface(e, source);
+    return interface(e, source);
 }
 
 static pw_status copy_file(const char *shipped, const char *name, pw_fileset *out)
@@ -264,21 +271,20 @@ static pw_status emit_files(const pw_emission *e, pw_fileset *out)
     pw_code *header = pw_code_file(e->arena, e->stage, e->type);
     pw_code *source = pw_code_file(e->arena, e->stage, e->type);
     header_file(e, header);
-    source_file(e, source);
+    pw_status status = source_file(e, source);
     pw_emit_converters(e, header, source);
     close_header(header);
     pw_code_render(header, pw_fileset_add(out, pw_arena_print(e->arena, "%s.h", e->stage)));
     pw_code_render(source, pw_fileset_add(out, pw_arena_print(e->arena, "%s.c", e->stage)));
-    return e->standalone ? PW_OK : copy_runtime(e, out);
+    return status || e->standalone ? status : copy_runtime(e, out);
 }
 
 pw_status pw_emit_c(const pw_results *results, pw_fileset *out)
 {
     pw_arena arena = {0};
     pw_emission e;
-    pw_status status = pw_emission_begin(&e, results, &arena);
-    if (status == PW_OK) status = emit_files(&e, out);
-    pw_emission_end(&e);
+    pw_emission_begin(&e, results, &arena);
+    pw_status status = emit_files(&e, out);
     pw_arena_free(&arena);
     return status;
 }

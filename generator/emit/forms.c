@@ -22,19 +22,14 @@ static const pw_form *choose(const pw_emission *e, const pw_words *w)
     return NULL;
 }
 
-/* Standalone fixed-point code for a part with instructions of its own takes its kernels for blocks. */
-static pw_status choose_kernels(pw_emission *e)
+/* Standalone fixed-point code all of whose sections have kernels keeps its state as those read it. */
+static bool all_kernels(const pw_emission *e)
 {
-    if (!e->standalone || !e->fixed || e->target->instructions == PW_ANY) return PW_OK;
-    return pw_cascade_fixed(e->r, e->target, e->stage, "s->d[%d]", "s->clipped", &e->cascade, &e->part_kernels);
+    const pw_cascade cascade = {.realisation = e->r, .target = e->target};
+    return e->standalone && e->fixed && pw_cascade_fits_all(&cascade);
 }
 
-void pw_emission_end(pw_emission *e)
-{
-    pw_cascade_free(&e->cascade);
-}
-
-pw_status pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena)
+void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *arena)
 {
     static const char *const type[] = {"float", "double", "int32_t", "int16_t"};
     static const char *const family[] = {"f32", "f64", "q31", "q15"};
@@ -52,7 +47,7 @@ pw_status pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena 
         e->counts = e->counts || !r->section[k].cannot_clip;
     }
     e->counts = e->fixed && (e->counts || !e->standalone);
-    return choose_kernels(e);
+    e->part_kernels = all_kernels(e);
 }
 
 double pw_direct_reach(const pw_emission *e, const pw_words *w)

@@ -64,10 +64,10 @@ class Target:
             raise RuntimeError(f"{self.name}: {source} does not compile\n{done.stderr[:3000]}")
         return out
 
-    def build(self, out, sources, optimise="-O2", flags=(), strict=True):
+    def build(self, out, sources, optimise="-O2", flags=(), strict=True, objects=()):
         """Links the sources with the target's start-up into the program `out`."""
         os.makedirs(os.path.dirname(out), exist_ok=True)
-        objects = []
+        objects = list(objects)
         for k, source in enumerate(sources):
             objects.append(self.compile(source, f"{out}.{k}.o", optimise, [*(STRICT if strict else []), *flags]))
         for k, source in enumerate(self._words("sources")):

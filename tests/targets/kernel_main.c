@@ -21,7 +21,7 @@ static int64_t ref_value(const ref_words *w, const SAMPLE *d, SAMPLE x)
     return (p + half) >> w->af;
 }
 
-static SAMPLE probe_step(probe_state *s, SAMPLE x)
+static SAMPLE probe_cascade(probe_state *s, SAMPLE x)
 {
     for (int k = 0; k < SECTIONS; k++) {
         SAMPLE *d = s->d[k];
@@ -93,7 +93,7 @@ static int round_differs(void)
     const uint32_t kind = chance() >> 9;
     SAMPLE *const to = kind & 32u ? in + offset : out + offset;
     for (size_t i = 0; i < n; i++) in[i + offset] = sample(kind & 8u ? kind : chance() >> 5);
-    for (size_t i = 0; i < n; i++) want[i] = probe_step(&reference, in[i + offset]);
+    for (size_t i = 0; i < n; i++) want[i] = probe_cascade(&reference, in[i + offset]);
     to[n] = 77;
     probe_block(&mine, in + offset, to, n);
     return memcmp(to, want, n * sizeof *want) || memcmp(&mine, &reference, sizeof mine) || to[n] != 77;
