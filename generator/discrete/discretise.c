@@ -106,13 +106,24 @@ static bool no_match(const pw_stage *stage, double hz, pw_messages *messages)
     return false;
 }
 
+/* A zero on the axis, to the rounding of what the user wrote, within a millionth of the place. */
+static bool on_a_zero(const pw_roots *analog, double hz)
+{
+    double w = 2 * M_PI * hz;
+    for (int i = 0; i < analog->zeros; i++) {
+        double complex s = analog->zero[i];
+        if (hypot(creal(s), cimag(s) - w) <= 1e-6 * fmax(cabs(s), w)) return true;
+    }
+    return false;
+}
+
 /* The analog side of a match that the user asked for, before anything is made. */
 static bool match_can_be(const pw_stage *stage, const pw_roots *analog, pw_messages *messages)
 {
     const pw_given *asked = &stage->transform.match_gain_hz;
     if (!asked->given) return true;
     double level = cabs(pw_analog_at(analog, asked->value));
-    if (level > 0 && isfinite(level)) return true;
+    if (isfinite(level) && !on_a_zero(analog, asked->value)) return true;
     return no_match(stage, asked->value, messages);
 }
 

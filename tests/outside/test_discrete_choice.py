@@ -186,6 +186,7 @@ def messages():
     told("5:1", "the gain cannot be matched at 0 Hz", zeros=[0], match=0)
     told("5:1", "the gain cannot be matched at 0 Hz", poles=[0], match=0, method="step-invariant")
     told("5:1", "the gain cannot be matched at 0 Hz", poles=[0], match=0, method="best")
+    told("5:1", "matched at 50 Hz", zeros=[100j * np.pi], poles=[complex(-9, 314)], match=50)
     told("2:1", "cannot be told from one that does not", poles=[-1e-14], rate=1e6)
     fast = complex(-2 * np.pi * 300, 2 * np.pi * 800)
     told(
