@@ -233,6 +233,13 @@ void pw_html_range(const pw_results *results, pw_text *out)
         for (int i = 0; i < r->nodes; i++) put_node(results, &r->node[i], out);
         pw_text_add(out, "</tbody></table></div>\n");
     }
+    for (int i = 0; i < r->nodes; i++) {
+        pw_text body = {0};
+        if (!r->node[i].integrates) continue;
+        pw_phrase_integrator(results, &r->node[i], &body);
+        put_sentence(pw_text_string(&body), out);
+        pw_text_free(&body);
+    }
     pw_html_close(out);
 }
 

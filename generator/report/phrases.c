@@ -239,6 +239,19 @@ void pw_phrase_range(const pw_results *results, pw_text *out)
     }
 }
 
+void pw_phrase_integrator(const pw_results *results, const pw_node *node, pw_text *out)
+{
+    char worst[PW_FIGURE_ROOM], code[PW_FIGURE_ROOM];
+    double rate = results->stage->rate_hz;
+    pw_text_print(out, "%s integrates", node->name);
+    if (!isfinite(node->samples_to_clip)) return;
+    pw_text_print(out, ": the worst input takes it to the clamp in %s",
+                  pw_samples(worst, node->samples_to_clip, rate));
+    if (isfinite(node->samples_to_clip_code))
+        pw_text_print(out, ", one code of offset in %s; it leaves the clamp with the first sample of"
+                      " the other sign", pw_samples(code, node->samples_to_clip_code, rate));
+}
+
 void pw_phrase_noise(const pw_results *results, pw_text *out)
 {
     const pw_noise *n = &results->realisation.noise;
@@ -247,7 +260,7 @@ void pw_phrase_noise(const pw_results *results, pw_text *out)
         return;
     }
     if (n->grows) {
-        pw_text_print(out, "grows without end: its variance by %.3g LSB\302\262 a sample",
+        pw_text_print(out, "grows without end: its variance by %.3g LSB^2 a sample",
                       n->growth_lsb2_per_sample);
         return;
     }

@@ -141,6 +141,12 @@ static void put_nodes(const pw_results *results, pw_text *out)
     pw_node_head(&table);
     for (int i = 0; i < r->nodes; i++) pw_node_row(results, &r->node[i], &table);
     pw_table_print(&table, 2, out);
+    for (int i = 0; i < r->nodes; i++) {
+        pw_text body = {0};
+        if (!r->node[i].integrates) continue;
+        pw_phrase_integrator(results, &r->node[i], &body);
+        put_paragraph(&body, out);
+    }
 }
 
 /* ---- words ---- */

@@ -132,6 +132,8 @@ static void the_whole_has_every_table(void **state)
         "b0    4588  \303\227 2^-18  0.0175018310547", "a1  -25633  \303\227 2^-14  -1.56451416016",
         "error feedback k1 1, k2 0", "cannot clip, so no clamp", "SHA-256",
         "9f86d081884c7d659a2feaa0c55ad015a3bf4f1b2b0b822cd15d6c15b0f00a08", "all 2 orders tried",
+        "the worst input takes it to the clamp in 812 samples (101.5 ms)",
+        "one code of offset in 53000000 samples (6625 s)",
         "arithmetic.scaling: l1; vectors.seed: 1", "anti-alias filter", "licensed or qualified"};
     for (size_t i = 0; i < sizeof parts / sizeof *parts; i++) assert_has(&text, parts[i]);
     pw_text_free(&text);
