@@ -72,6 +72,16 @@ static pw_where integrator_place(const pw_analog_spec *spec)
     return at;
 }
 
+static bool finite_roots(const pw_roots *roots)
+{
+    double sum = 0;
+    for (int i = 0; i < roots->poles; i++)
+        sum += fabs(creal(roots->pole[i])) + fabs(cimag(roots->pole[i]));
+    for (int i = 0; i < roots->zeros; i++)
+        sum += fabs(creal(roots->zero[i])) + fabs(cimag(roots->zero[i]));
+    return isfinite(sum);
+}
+
 pw_status pw_analog_build(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages)
 {
     pw_status status = collect(spec, out, messages);
@@ -91,9 +101,9 @@ pw_status pw_analog_build(const pw_analog_spec *spec, pw_roots *out, pw_messages
                  MAX_INTEGRATORS);
         status = PW_WRONG;
     }
-    if (!isfinite(out->factor) || out->factor == 0) {
-        pw_error(messages, spec->at, "the gain factor of the stage is out of range; expected roots and "
-                 "gains of a physical size");
+    if (!isfinite(out->factor) || out->factor == 0 || !finite_roots(out)) {
+        pw_error(messages, spec->at, "the gain factor or a root of the stage is out of range; expected "
+                 "frequencies and gains of a physical size");
         status = PW_WRONG;
     }
     return status;

@@ -261,7 +261,17 @@ static bool before(const pw_factor *a, const pw_factor *b)
     return difference != 0 ? difference < 0 : crealf128(p) < crealf128(q);
 }
 
-bool pw_polynomial_roots(const double *c, int n, double complex *root)
+static void sort(pw_factor *factor, int factors)
+{
+    for (int i = 1; i < factors; i++)
+        for (int k = i; k > 0 && before(&factor[k], &factor[k - 1]); k--) {
+            pw_factor held = factor[k];
+            factor[k] = factor[k - 1];
+            factor[k - 1] = held;
+        }
+}
+
+pw_status pw_polynomial_roots(const double *c, int n, double complex *root)
 {
     pw_wide wide[PW_MAX_ROOTS + 1];
     pw_wide_complex z[PW_MAX_ROOTS];
@@ -270,24 +280,21 @@ bool pw_polynomial_roots(const double *c, int n, double complex *root)
     for (int i = 0; i <= n; i++)
         wide[i] = c[i];
     if (n == 0)
-        return true;
+        return PW_OK;
     if (!pw_wide_roots(wide, n, z))
-        return false;
+        return PW_FAILED;
     int factors = pw_factors_find(wide, n, z, factor);
-    for (int i = 1; i < factors; i++)
-        for (int k = i; k > 0 && before(&factor[k], &factor[k - 1]); k--) {
-            pw_factor held = factor[k];
-            factor[k] = factor[k - 1];
-            factor[k - 1] = held;
-        }
+    sort(factor, factors);
     for (int k = 0; k < factors; k++) {
         pw_wide_complex r = pw_factor_root(&factor[k]);
         double re = (double)crealf128(r), im = (double)cimagf128(r);
+        if (!isnormal(hypot(re, im)) || (factor[k].pair && im == 0))
+            return PW_WRONG;
         for (int m = 0; m < factor[k].multiplicity; m++) {
             root[at++] = CMPLX(re, im);
             if (factor[k].pair)
                 root[at++] = CMPLX(re, -im);
         }
     }
-    return true;
+    return PW_OK;
 }

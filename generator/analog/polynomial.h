@@ -35,7 +35,8 @@ pw_wide pw_factors_fit(const pw_wide *c, int n, pw_factor *factor, int factors);
 pw_wide_complex pw_factor_root(const pw_factor *factor);
 
 /* Roots of a polynomial of doubles, c[0] and c[n] not 0, as pw_roots wants them: exact conjugates,
- * multiple roots equal bit for bit, ascending modulus. False where it did not converge. */
-bool pw_polynomial_roots(const double *c, int n, double complex *root);
+ * multiple roots equal bit for bit, ascending modulus. PW_FAILED where it did not converge,
+ * PW_WRONG where a root is beyond the range of a double. */
+PW_CHECKED pw_status pw_polynomial_roots(const double *c, int n, double complex *root);
 
 #endif

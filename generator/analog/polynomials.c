@@ -41,22 +41,24 @@ static pw_status solve(const pw_side *side, int shared, double complex *list, in
     *count = 0;
     for (int i = shared; i < origin; i++)
         list[(*count)++] = 0;
-    if (!pw_polynomial_roots(side->c, degree, list + *count)) {
-        pw_error(messages, side->at, "the roots of the %s could not be found; expected coefficients of "
-                 "a physical size, or the roots themselves", side->name);
-        return PW_FAILED;
-    }
+    pw_status status = pw_polynomial_roots(side->c, degree, list + *count);
+    if (status == PW_FAILED)
+        pw_error(messages, side->at, "the roots of the %s did not converge; expected the roots themselves, "
+                 "under roots:", side->name);
+    else if (status == PW_WRONG)
+        pw_error(messages, side->at, "the %s has a root too large or too small for a number; expected "
+                 "coefficients of a physical size", side->name);
     *count += degree;
-    return PW_OK;
+    return status;
 }
 
+/* One message is enough: it is one polynomial that is wrong. */
 static pw_status check_poles(const pw_roots *out, pw_where at, pw_messages *messages)
 {
-    bool good = true;
     for (int i = 0; i < out->poles; i++)
-        if (cimag(out->pole[i]) >= 0)
-            good = pw_roots_check_pole(out->pole[i], at, messages) && good;
-    return good ? PW_OK : PW_WRONG;
+        if (cimag(out->pole[i]) >= 0 && !pw_roots_check_pole(out->pole[i], at, messages))
+            return PW_WRONG;
+    return PW_OK;
 }
 
 pw_status pw_analog_from_polynomials(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages)
@@ -72,6 +74,6 @@ pw_status pw_analog_from_polynomials(const pw_analog_spec *spec, pw_roots *out, 
     pw_status zeros = solve(&top, shared, out->zero, &out->zeros, messages);
     pw_status poles = solve(&bottom, shared, out->pole, &out->poles, messages);
     if (zeros != PW_OK || poles != PW_OK)
-        return PW_FAILED;
+        return zeros > poles ? zeros : poles;
     return check_poles(out, spec->denominator_at, messages);
 }
