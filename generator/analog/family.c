@@ -123,11 +123,11 @@ static bool check(const pw_family *family, pw_messages *messages)
     return good && depths;
 }
 
-/* The frequency past the pass band where the gain has fallen to target; the gain falls steadily
- * from low to the first zero. */
-static pw_wide falls_to(const pw_prototype *prototype, pw_wide target, pw_wide low)
+/* The frequency past the pass band where the gain has fallen to target. In the pass band the gain
+ * is above target, and from its end to the first zero it falls steadily. */
+static pw_wide falls_to(const pw_prototype *prototype, pw_wide target)
 {
-    pw_wide high = 2;
+    pw_wide low = 0, high = 2;
     if (prototype->zeros > 0)
         high = cimagf128(prototype->zero[prototype->zeros - 1]);    /* the nearest one */
     else
@@ -161,7 +161,7 @@ static void put_corner(const pw_family *family, pw_prototype *prototype)
     if (moves && rippled && family->corner_at_db.value == family->ripple_db.value)
         return;
     if (moves || family->approximation == PW_BESSEL || family->approximation == PW_INVERSE_CHEBYSHEV)
-        pw_prototype_scale(prototype, 1 / falls_to(prototype, target, rippled ? 1 : 0));
+        pw_prototype_scale(prototype, 1 / falls_to(prototype, target));
 }
 
 static pw_status make(const pw_family *family, pw_prototype *out, pw_messages *messages)

@@ -136,6 +136,16 @@ def shaped(z, p, dc, shape, corners):
     return expand(z) + far * excess, poles
 
 
+def factor_of(z, p, dc, shape, corners):
+    """K from H at 0 (low-pass), at infinity (high-pass, band-stop), or at the centre (band-pass)."""
+    if shape in ("highpass", "bandstop"):
+        return dc
+    w = [2 * mp.pi * mpf(c) for c in corners]
+    scale = w[0] if shape == "lowpass" else w[1] - w[0]
+    both = lambda side: mp.fprod(abs(r * scale) ** (2 if r.imag else 1) for r in side)
+    return dc * both(p) / both(z)
+
+
 def clean(root):
     """Parts that are 0 but for the 50 digits."""
     re = mpf(0) if abs(root.real) < abs(root) * mpf(10) ** -40 else root.real
@@ -186,12 +196,15 @@ for kind, make, options in KINDS:
         for shape in SHAPES:
             for corners in BANDS if shape.startswith("band") else [(1234.5,)]:
                 cases.append(family(kind, shape, n, corners if len(corners) > 1 else corners[0], **options))
-                wanted.append((n, shape, corners, shaped(z, p, dc, shape, corners)))
-    worst, where = 0.0, None
-    for answer, (n, shape, corners, (z, p)) in zip(ask(cases), wanted):
+                wanted.append((n, shape, corners, shaped(z, p, dc, shape, corners),
+                               factor_of(z, p, dc, shape, corners)))
+    worst, where, factor = 0.0, None, 0.0
+    for answer, (n, shape, corners, (z, p), k) in zip(ask(cases), wanted):
+        factor = max(factor, off(answer["factor"], k))
         here = max(compare(answer["poles"], p), compare(answer["zeros"], z))
         if here > worst:
             worst, where = here, (n, shape, corners)
     tap.check(worst < ULP, f"{kind} {options or ''}: every part of every root to {ULP}",
               f"worst {worst:.2e} at {where}, {len(cases)} designs")
+    tap.check(factor < 1e-19, f"{kind} {options or ''}: the factor, rounded once to 64 bits", f"{factor:.1e}")
 tap.done()

@@ -41,6 +41,8 @@ def structure(name, roots, most):
 
 w, p, q = 2 * mp.pi * mpf("1234.5"), mpc(-1, "2.7"), mpc(-30, 40)
 EIGHT = [mp.expjpi(mpf(2 * k + 9) / 16) for k in range(8)]
+A_WEIGHTING = [-2 * mp.pi * mpf(f) for f in
+               ("20.598997", "20.598997", "107.65265", "737.86223", "12194.217", "12194.217")]
 TABLE = [
     ("a double pole [1, 2, 1] w^2", [-w] * 2, 1e-15),
     ("(s + 1000)^4", [mpf(-1000)] * 4, 1e-15),
@@ -53,6 +55,7 @@ TABLE = [
     ("a butterworth stage of order 8, squared", EIGHT * 2, 1e-12),
     ("(s + pi)^20", [-mp.pi] * 20, 1e-15),
     ("(s + pi)^64", [-mp.pi] * 64, 1e-14),
+    ("IEC 61672-1 A weighting, multiplied out", A_WEIGHTING, 1e-15),
     ("poles 1e-4 apart", [-1, mpf("-1.0001")], 1e-10),
     ("three poles 1e-4 apart", [-1, mpf("-1.0001"), mpf("-1.0002")], 1e-6),
     ("pairs 1e-4 apart", both(p) + both(p * mpf("1.0001")), 1e-10),

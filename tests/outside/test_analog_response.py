@@ -20,7 +20,8 @@ def level(h):
 
 
 def orders(kind):
-    return range(2, 21, 2) if kind == "linkwitz-riley" else range(1, 21)
+    chosen = range(1, 21) if tap.FULL else (1, 2, 3, 4, 7, 12, 20)
+    return [n for n in chosen if kind != "linkwitz-riley" or n % 2 == 0]
 
 
 def corners(shape):
@@ -51,7 +52,7 @@ for kind, (options, depth) in FAMILIES.items():
 
 # ---- pass band and stop band, where they ripple ----
 
-def grid(low, high, n=4000):
+def grid(low, high, n=2000):
     return [low * (high / low) ** (i / (n - 1)) for i in range(n)]
 
 
@@ -67,7 +68,7 @@ for kind in ("chebyshev", "elliptic"):
         options = FAMILIES[kind][0]
         bottom, top = extremes(kind, n, grid(1e-3, 1.0), **options)
         worst_top, worst_bottom = max(worst_top, abs(top)), max(worst_bottom, abs(bottom + 0.25))
-tap.check(worst_top < 2e-4 and worst_bottom < 2e-4, "the pass band runs between 0 dB and the ripple",
+tap.check(worst_top < 1e-4 and worst_bottom < 1e-4, "the pass band runs between 0 dB and the ripple",
           f"off by {max(worst_top, worst_bottom):.1e} dB (a grid)")
 for kind in ("elliptic", "inverse-chebyshev"):
     for n in range(2, 13):

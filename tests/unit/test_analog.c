@@ -319,6 +319,15 @@ static void logarithm_and_delay_of_a_first_order_pole(void **state)
     assert_true(cabs(pw_roots_at(&pole, 0) + 1) < 1e-16);
 }
 
+/* (s - a)/(s + a): both roots delay by a/(a^2 + w^2). */
+static void delay_of_an_all_pass(void **state)
+{
+    (void)state;
+    pw_roots pass = {.poles = 1, .zeros = 1, .pole = {-40}, .zero = {40}, .factor = 1};
+    double w = 2 * M_PI * 5;
+    assert_true(fabs(pw_analog_group_delay(&pass, 5) * (40 * 40 + w * w) / 80 - 1) < 1e-15);
+}
+
 static void on_a_root(void **state)
 {
     (void)state;
@@ -350,6 +359,7 @@ int main(void)
         cmocka_unit_test(shapes_place_their_zeros_exactly),
         cmocka_unit_test(critical_damping_and_linkwitz_riley_repeat_exactly),
         cmocka_unit_test(logarithm_and_delay_of_a_first_order_pole),
+        cmocka_unit_test(delay_of_an_all_pass),
         cmocka_unit_test(on_a_root),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
