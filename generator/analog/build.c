@@ -82,29 +82,46 @@ static bool finite_roots(const pw_roots *roots)
     return isfinite(sum);
 }
 
+static bool check_proper(const pw_analog_spec *spec, const pw_roots *roots, pw_messages *messages)
+{
+    int more = roots->zeros - roots->poles;
+    if (more <= 0)
+        return true;
+    pw_error(messages, zero_place(spec),
+             "%d zero%s and %d pole%s: the gain would grow without end with frequency; expected at "
+             "least as many poles as zeros: add %s above the frequencies that matter",
+             roots->zeros, roots->zeros == 1 ? "" : "s", roots->poles, roots->poles == 1 ? "" : "s",
+             more == 1 ? "a pole" : "poles");
+    return false;
+}
+
+static bool check_integrators(const pw_analog_spec *spec, const pw_roots *roots,
+                              pw_messages *messages)
+{
+    int integrators = pw_analog_integrators(roots);
+    if (integrators <= MAX_INTEGRATORS)
+        return true;
+    pw_error(messages, integrator_place(spec), "%d poles at 0; expected at most %d", integrators,
+             MAX_INTEGRATORS);
+    return false;
+}
+
+static bool check_range(const pw_analog_spec *spec, const pw_roots *roots, pw_messages *messages)
+{
+    if (isfinite(roots->factor) && roots->factor != 0 && finite_roots(roots))
+        return true;
+    pw_error(messages, spec->at, "the gain factor or a root of the stage is out of range; expected "
+             "frequencies and gains of a physical size");
+    return false;
+}
+
 pw_status pw_analog_build(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages)
 {
     pw_status status = collect(spec, out, messages);
     if (status != PW_OK)
         return status;
-    if (out->zeros > out->poles) {
-        int more = out->zeros - out->poles;
-        pw_error(messages, zero_place(spec), "%d zero%s and %d pole%s: the gain would grow without end with "
-                 "frequency; expected at least as many poles as zeros: add %s, above the frequencies that matter",
-                 out->zeros, out->zeros == 1 ? "" : "s", out->poles, out->poles == 1 ? "" : "s",
-                 more == 1 ? "a pole" : "poles");
-        status = PW_WRONG;
-    }
-    int integrators = pw_analog_integrators(out);
-    if (integrators > MAX_INTEGRATORS) {
-        pw_error(messages, integrator_place(spec), "%d poles at 0; expected at most %d", integrators,
-                 MAX_INTEGRATORS);
-        status = PW_WRONG;
-    }
-    if (!isfinite(out->factor) || out->factor == 0 || !finite_roots(out)) {
-        pw_error(messages, spec->at, "the gain factor or a root of the stage is out of range; expected "
-                 "frequencies and gains of a physical size");
-        status = PW_WRONG;
-    }
-    return status;
+    bool good = check_proper(spec, out, messages);
+    good = check_integrators(spec, out, messages) && good;
+    good = check_range(spec, out, messages) && good;
+    return good ? PW_OK : PW_WRONG;
 }

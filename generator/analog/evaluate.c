@@ -34,7 +34,8 @@ void pw_roots_log_at(const pw_roots *roots, double complex x, double *log_magnit
     for (int i = 0; i < roots->zeros + roots->poles; i++) {
         bool zero = i < roots->zeros;
         double complex root = zero ? roots->zero[i] : roots->pole[i - roots->zeros];
-        long double re = (long double)creal(x) - creal(root), im = (long double)cimag(x) - cimag(root);
+        long double re = (long double)creal(x) - creal(root);
+        long double im = (long double)cimag(x) - cimag(root);
         long double log_size = logl(hypotl(re, im)), angle = atan2l(im, re);
         size += zero ? log_size : -log_size;
         turn += zero ? angle : -angle;
@@ -48,7 +49,7 @@ double complex pw_analog_at(const pw_roots *analog, double hz)
     return (double complex)(analog->factor * pw_roots_product_at(analog, CMPLXL(0, TWO_PI * hz)));
 }
 
-/* d(arg(jw - r))/dw = -re(r) / |jw - r|^2; a root on the axis turns the phase in a jump, not a slope. */
+/* d(arg(jw - r))/dw = -re(r) / |jw - r|^2; a root on the axis makes a jump, not a slope. */
 static long double slope(double complex root, long double w)
 {
     long double re = creal(root), im = w - cimag(root);

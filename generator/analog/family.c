@@ -23,17 +23,20 @@ static bool is_band(const pw_family *family)
 }
 
 /* One of ripple and stopband: there where it is needed, positive, and absent elsewhere. */
-static bool check_depth(const pw_given *depth, bool needed, const char *name, const char *where_used,
-                        const pw_family *family, pw_messages *messages)
+static bool check_depth(const pw_given *depth, bool needed, const char *name,
+                        const char *where_used, const pw_family *family, pw_messages *messages)
 {
     if (needed && !depth->given)
-        pw_error(messages, family->at, "%s is missing; expected a depth in dB, for this approximation "
+        pw_error(messages, family->at,
+                 "%s is missing; expected a depth in dB, for this approximation "
                  "has no default for it", name);
     else if (!needed && depth->given)
-        pw_error(messages, depth->at, "this approximation has no %s; expected it with %s only", name,
+        pw_error(messages, depth->at,
+                 "this approximation has no %s; expected it with %s only", name,
                  where_used);
     else if (depth->given && !(depth->value > 0))
-        pw_error(messages, depth->at, "%s must be above 0 dB; expected a positive depth, for instance "
+        pw_error(messages, depth->at,
+                 "%s must be above 0 dB; expected a positive depth, for instance "
                  "0.5 dB", name);
     else
         return true;
@@ -43,7 +46,8 @@ static bool check_depth(const pw_given *depth, bool needed, const char *name, co
 static bool check_order(const pw_family *family, pw_messages *messages)
 {
     if (family->order < 1 || family->order > MAX_ORDER)
-        pw_error(messages, family->order_at, "order %d is out of range; expected 1 to %d", family->order,
+        pw_error(messages, family->order_at,
+                 "order %d is out of range; expected 1 to %d", family->order,
                  MAX_ORDER);
     else if (traits[family->approximation].even && family->order % 2)
         pw_error(messages, family->order_at, "order %d is odd, and linkwitz-riley is a butterworth "
@@ -58,12 +62,14 @@ static bool check_corners(const pw_family *family, pw_messages *messages)
     bool good = true;
     for (int i = 0; i < (is_band(family) ? 2 : 1); i++)
         if (!(family->corner_hz[i] > 0)) {
-            pw_error(messages, family->corner_at[i], "a corner must be above 0 Hz; expected a frequency "
+            pw_error(messages, family->corner_at[i],
+                     "a corner must be above 0 Hz; expected a frequency "
                      "such as 1 kHz");
             good = false;
         }
     if (good && is_band(family) && !(family->corner_hz[0] < family->corner_hz[1])) {
-        pw_error(messages, family->corner_at[1], "the corners do not ascend; expected the lower one first, "
+        pw_error(messages, family->corner_at[1],
+                 "the corners do not ascend; expected the lower one first, "
                  "and two different ones");
         good = false;
     }
@@ -77,13 +83,16 @@ static bool check_corner_depth(const pw_family *family, pw_messages *messages)
     if (!depth->given)
         return true;
     if (!(depth->value > 0))
-        pw_error(messages, depth->at, "corner-at must be above 0 dB; expected a positive depth, for "
+        pw_error(messages, depth->at,
+                 "corner-at must be above 0 dB; expected a positive depth, for "
                  "instance 1 dB");
     else if (family->normalise != PW_NORMALISE_MAGNITUDE)
-        pw_error(messages, depth->at, "corner-at goes with normalise: magnitude only; expected one of "
+        pw_error(messages, depth->at,
+                 "corner-at goes with normalise: magnitude only; expected one of "
                  "the two to be left out");
     else if (family->ripple_db.given && depth->value < family->ripple_db.value)
-        pw_error(messages, depth->at, "corner-at is less than the ripple, a depth that the pass band "
+        pw_error(messages, depth->at,
+                 "corner-at is less than the ripple, a depth that the pass band "
                  "crosses many times; expected %g dB or more", family->ripple_db.value);
     else if (family->stopband_db.given && depth->value >= family->stopband_db.value)
         pw_error(messages, depth->at, "corner-at lies in the stop band; expected less than %g dB",
@@ -100,7 +109,8 @@ static bool check_stopband(const pw_family *family, pw_messages *messages)
                  : family->corner_at_db.given ? 0 : 10 * log10(2);
     if (!family->stopband_db.given || family->stopband_db.value > least)
         return true;
-    pw_error(messages, family->stopband_db.at, "the stop band is not below the pass band; expected more "
+    pw_error(messages, family->stopband_db.at,
+             "the stop band is not below the pass band; expected more "
              "than %.4g dB", least);
     return false;
 }
@@ -117,7 +127,8 @@ static bool check(const pw_family *family, pw_messages *messages)
     if (depths)
         depths = check_stopband(family, messages) && check_corner_depth(family, messages);
     if (!takes.normalise && family->normalise != PW_NORMALISE_MAGNITUDE) {
-        pw_error(messages, family->at, "normalise goes with bessel only; expected it to be left out");
+        pw_error(messages, family->at,
+                 "normalise goes with bessel only; expected it to be left out");
         good = false;
     }
     return good && depths;
@@ -150,7 +161,8 @@ static void put_corner(const pw_family *family, pw_prototype *prototype)
 {
     bool moves = family->corner_at_db.given;
     bool rippled = traits[family->approximation].ripple;
-    pw_wide target = moves ? expf128(-family->corner_at_db.value * logf128(10) / 20) : sqrtf128(0.5F128);
+    pw_wide target = moves ? expf128(-family->corner_at_db.value * logf128(10) / 20)
+                           : sqrtf128(0.5F128);
     if (family->approximation == PW_BESSEL && family->normalise == PW_NORMALISE_DELAY)
         return;
     if (family->approximation == PW_BESSEL && family->normalise == PW_NORMALISE_PHASE) {
@@ -160,7 +172,8 @@ static void put_corner(const pw_family *family, pw_prototype *prototype)
     }
     if (moves && rippled && family->corner_at_db.value == family->ripple_db.value)
         return;
-    if (moves || family->approximation == PW_BESSEL || family->approximation == PW_INVERSE_CHEBYSHEV)
+    if (moves || family->approximation == PW_BESSEL
+        || family->approximation == PW_INVERSE_CHEBYSHEV)
         pw_prototype_scale(prototype, 1 / falls_to(prototype, target));
 }
 
@@ -192,7 +205,8 @@ static pw_status make(const pw_family *family, pw_prototype *out, pw_messages *m
     case PW_ELLIPTIC:
         if (pw_prototype_elliptic(order, family->ripple_db.value, family->stopband_db.value, out))
             break;
-        pw_error(messages, family->stopband_db.at, "ripple and stopband are too near each other for "
+        pw_error(messages, family->stopband_db.at,
+                 "ripple and stopband are too near each other for "
                  "order %d; expected a deeper stop band or a lower order", order);
         return PW_WRONG;
     }

@@ -50,7 +50,7 @@ static void weights(const pw_factor *factor, int factors, pw_wide *p)
 }
 
 /* Least squares by Householder reflections: rows x columns, rows >= columns, the right side in
- * column `columns` of each row; x gets the solution. A column that depends on the others gives 0. */
+ * column `columns` of each row; x gets the solution, 0 for a column that depends on others. */
 static void least_squares(pw_wide (*a)[N + 1], int rows, int columns, pw_wide *x)
 {
     for (int k = 0; k < columns; k++) {

@@ -18,13 +18,18 @@ typedef struct pw_roots {
 /* Stage description -> zeros, poles and factor in rad/s. Messages say what is wrong at its place:
  * poles in the right half plane, poles on the axis but for up to two at 0, more zeros than poles,
  * more than PW_MAX_ROOTS. A root at 0 is exactly 0. */
-PW_CHECKED pw_status pw_analog_build(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages);
+PW_CHECKED pw_status pw_analog_build(const pw_analog_spec *spec, pw_roots *out,
+                                     pw_messages *messages);
 
 /* The parts of it, one file each; cascades multiply. */
-PW_CHECKED pw_status pw_analog_from_roots(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages);
-PW_CHECKED pw_status pw_analog_from_polynomials(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages);
-PW_CHECKED pw_status pw_analog_from_family(const pw_family *family, pw_roots *out, pw_messages *messages);
-PW_CHECKED pw_status pw_analog_from_circuit(const pw_circuit *circuit, pw_roots *out, pw_messages *messages);
+PW_CHECKED pw_status pw_analog_from_roots(const pw_analog_spec *spec, pw_roots *out,
+                                          pw_messages *messages);
+PW_CHECKED pw_status pw_analog_from_polynomials(const pw_analog_spec *spec, pw_roots *out,
+                                                pw_messages *messages);
+PW_CHECKED pw_status pw_analog_from_family(const pw_family *family, pw_roots *out,
+                                           pw_messages *messages);
+PW_CHECKED pw_status pw_analog_from_circuit(const pw_circuit *circuit, pw_roots *out,
+                                            pw_messages *messages);
 PW_CHECKED pw_status pw_analog_from_cell(const pw_cell *cell, pw_roots *out, pw_messages *messages);
 
 /* H at the complex point x, from the roots, root by root (no overflow on the way). */

@@ -12,9 +12,11 @@ static bool check(const pw_side *side, pw_messages *messages)
     while (first < side->count && side->c[first] == 0)
         first++;
     if (side->count == 0 || first == side->count)
-        pw_error(messages, side->at, "the %s is 0; expected a coefficient other than 0", side->name);
+        pw_error(messages, side->at,
+                 "the %s is 0; expected a coefficient other than 0", side->name);
     else if (first > 0)
-        pw_error(messages, side->at, "the %s begins with 0; expected the highest power of s that is "
+        pw_error(messages, side->at,
+                 "the %s begins with 0; expected the highest power of s that is "
                  "there first: leave out the leading %s", side->name, first == 1 ? "0" : "zeros");
     else if (side->count - 1 > PW_MAX_ROOTS)
         pw_error(messages, side->at, "the %s is of degree %d; expected at most %d", side->name,
@@ -43,10 +45,12 @@ static pw_status solve(const pw_side *side, int shared, double complex *list, in
         list[(*count)++] = 0;
     pw_status status = pw_polynomial_roots(side->c, degree, list + *count);
     if (status == PW_FAILED)
-        pw_error(messages, side->at, "the roots of the %s did not converge; expected the roots themselves, "
+        pw_error(messages, side->at,
+                 "the roots of the %s did not converge; expected the roots themselves, "
                  "under roots:", side->name);
     else if (status == PW_WRONG)
-        pw_error(messages, side->at, "the %s has a root too large or too small for a number; expected "
+        pw_error(messages, side->at,
+                 "the %s has a root too large or too small for a number; expected "
                  "coefficients of a physical size", side->name);
     *count += degree;
     return status;
@@ -61,10 +65,12 @@ static pw_status check_poles(const pw_roots *out, pw_where at, pw_messages *mess
     return PW_OK;
 }
 
-pw_status pw_analog_from_polynomials(const pw_analog_spec *spec, pw_roots *out, pw_messages *messages)
+pw_status pw_analog_from_polynomials(const pw_analog_spec *spec, pw_roots *out,
+                                     pw_messages *messages)
 {
     const pw_side top = {"numerator", spec->numerator, spec->numerators, spec->numerator_at};
-    const pw_side bottom = {"denominator", spec->denominator, spec->denominators, spec->denominator_at};
+    const pw_side bottom = {"denominator", spec->denominator, spec->denominators,
+                            spec->denominator_at};
     bool good = check(&top, messages);
     good = check(&bottom, messages) && good;
     if (!good)

@@ -12,7 +12,7 @@ pw_wide pw_depth(double db)
     return expm1f128(db * logf128(10) / 10);
 }
 
-/* The angle of pole k from the negative real axis, k = 0 nearest to it: of n equally spaced ones. */
+/* The angle of pole k from the negative real axis, k = 0 nearest to it, n equally spaced. */
 static pw_wide angle(int order, int k)
 {
     return PW_WIDE_PI * (2 * k + (order % 2 == 0)) / (2 * (pw_wide)order);
@@ -109,7 +109,8 @@ void pw_prototype_scale(pw_prototype *prototype, pw_wide by)
 static pw_wide relative(pw_wide_complex root, pw_wide w)
 {
     pw_wide one = cabsf128(PW_WIDE_COMPLEX(0, w) - root) / cabsf128(root);
-    return cimagf128(root) == 0 ? one : one * (cabsf128(PW_WIDE_COMPLEX(0, w) - conjf128(root)) / cabsf128(root));
+    pw_wide other = cabsf128(PW_WIDE_COMPLEX(0, w) - conjf128(root)) / cabsf128(root);
+    return cimagf128(root) == 0 ? one : one * other;
 }
 
 pw_wide pw_prototype_gain(const pw_prototype *prototype, pw_wide w)

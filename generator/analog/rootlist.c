@@ -19,7 +19,8 @@ bool pw_roots_add_pole(pw_roots *roots, double complex pole, pw_where at, pw_mes
 {
     if (add(roots->pole, &roots->poles, pole))
         return true;
-    pw_error(messages, at, "more than %d poles; expected at most %d in a whole stage, cascades included",
+    pw_error(messages, at,
+             "more than %d poles; expected at most %d in a whole stage, cascades included",
              PW_MAX_ROOTS, PW_MAX_ROOTS);
     return false;
 }
@@ -28,7 +29,8 @@ bool pw_roots_add_zero(pw_roots *roots, double complex zero, pw_where at, pw_mes
 {
     if (add(roots->zero, &roots->zeros, zero))
         return true;
-    pw_error(messages, at, "more than %d zeros; expected at most %d in a whole stage, cascades included",
+    pw_error(messages, at,
+             "more than %d zeros; expected at most %d in a whole stage, cascades included",
              PW_MAX_ROOTS, PW_MAX_ROOTS);
     return false;
 }
@@ -64,10 +66,12 @@ bool pw_roots_check_pole(double complex pole, pw_where at, pw_messages *messages
         return true;
     write_root(text, sizeof text, pole);
     if (creal(pole) > 0)
-        pw_error(messages, at, "a pole at %s rad/s is in the right half plane, so the stage is unstable; "
+        pw_error(messages, at,
+                 "a pole at %s rad/s is in the right half plane, so the stage is unstable; "
                  "expected poles with a negative real part", text);
     else
-        pw_error(messages, at, "a pole at %s rad/s is on the imaginary axis, so the stage oscillates; "
+        pw_error(messages, at,
+                 "a pole at %s rad/s is on the imaginary axis, so the stage oscillates; "
                  "expected poles with a negative real part, or at 0", text);
     return false;
 }

@@ -39,7 +39,8 @@ static bool gain_at(const pw_gain *gain, pw_roots *out, pw_messages *messages)
     long double size = w == 0 ? creall(product) : cabsl(product);
     pw_si(hz, gain->at_hz, "Hz", 6);
     if (size == 0) {
-        pw_error(messages, gain->at, "the gain at %s is 0 whatever the factor, for there is a zero; "
+        pw_error(messages, gain->at,
+                 "the gain at %s is 0 whatever the factor, for there is a zero; "
                  "expected a frequency away from the zeros", hz);
         return false;
     }

@@ -79,7 +79,7 @@ static pw_wide_complex reciprocal(pw_wide_complex r)
     return 1 / r;
 }
 
-/* The factor of the low-pass K prod(s - z)/prod(s - p) with frequency 1 at w: dc prod|p|/prod|z|. */
+/* The factor of the low-pass K prod(s - z)/prod(s - p), frequency 1 at w: dc prod|p|/prod|z|. */
 static pw_wide low_factor(const pw_prototype *prototype, pw_wide w)
 {
     pw_wide k = prototype->dc * pw_prototype_pole_product(prototype);
@@ -137,6 +137,6 @@ void pw_prototype_shape(const pw_prototype *prototype, pw_shape shape, const dou
     place_infinite(zeros, excess, shape, w2);
     for (int i = 0; i < prototype->zeros; i++)
         place(zeros, prototype->zero[i], shape, w, w2);
-    out->factor = shape == PW_LOWPASS || shape == PW_BANDPASS ? (long double)low_factor(prototype, w)
-                                                              : (long double)prototype->dc;
+    bool falls = shape == PW_LOWPASS || shape == PW_BANDPASS;
+    out->factor = (long double)(falls ? low_factor(prototype, w) : prototype->dc);
 }
