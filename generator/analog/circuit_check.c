@@ -19,13 +19,24 @@ typedef struct checker {
     bool held[PW_MAX_UNKNOWNS];          /* an ideal source or output fixes the node's voltage */
 } checker;
 
+/* Names that differ in their number only ("n1", "n2") are neighbours, not slips of the pen. */
+static bool same_but_for_digits(const char *a, const char *b)
+{
+    static const char digits[] = "0123456789";
+    size_t n = strcspn(a, digits);
+    bool numbered = a[n] && b[n] && strspn(a + n, digits) == strlen(a + n)
+                    && strspn(b + n, digits) == strlen(b + n);
+    return numbered && !strncmp(a, b, n);
+}
+
 static const char *suggest_node(const checker *c, const char *name, const char *prefix)
 {
     const char *known[PW_MAX_UNKNOWNS + 1];
     int n = 0;
     known[n++] = "ground";
     for (int i = 0; i < c->net.nodes; i++)
-        if (c->net.node[i] && strcmp(c->net.node[i], name)) known[n++] = c->net.node[i];
+        if (c->net.node[i] && strcmp(c->net.node[i], name) && !same_but_for_digits(c->net.node[i], name))
+            known[n++] = c->net.node[i];
     const char *near = pw_nearest(name, known, n);
     if (!strcasecmp(name, "gnd") || !strcmp(name, "0")) near = "ground";
     return near ? pw_arena_print((pw_arena *)&c->net.arena, "%s'%s'", prefix, near) : "";
