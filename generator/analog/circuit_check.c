@@ -171,6 +171,16 @@ static void check_connections(checker *c)
                      "more%s", c->net.node[i], suggest_node(c, c->net.node[i], ", or did you mean "));
 }
 
+static void check_tolerances(const checker *c)
+{
+    for (int i = 0; i < c->circuit->parts; i++) {
+        const pw_part *part = &c->circuit->part[i];
+        if (part->kind == PW_OP_AMP && part->tolerance > 0 && !(part->gain_bandwidth_hz > 0))
+            pw_warning(c->messages, part->at, "the tolerance of op-amp '%s' does nothing: it is that of a "
+                       "gain-bandwidth, and this one has none; expected a gain-bandwidth", part->name);
+    }
+}
+
 static void check_shorted_parts(checker *c)
 {
     for (int i = 0; i < c->circuit->parts; i++) {
@@ -418,6 +428,7 @@ void pw_circuit_check(const pw_circuit *circuit, pw_messages *messages)
     bool ports = check_ports(&c);
     check_couplings(&c);
     check_shorted_parts(&c);
+    check_tolerances(&c);
     check_connections(&c);
     check_source_loops(&c);
     mark_held(&c);

@@ -100,13 +100,13 @@ static void put_rows(const pw_sensitivity *s, int first, int last, bool gains, p
 static void put_table(const pw_sensitivity *s, pw_text *out)
 {
     pw_text_add(out, "  sensitivity to each part: percent per percent; of the gain: dB per percent\n");
-    for (int first = 0; first < s->modes || first == 0; first += MODES_A_TABLE) {
+    for (int first = 0; first < s->modes; first += MODES_A_TABLE) {
         int last = first + MODES_A_TABLE < s->modes ? first + MODES_A_TABLE : s->modes;
         if (first) pw_text_add(out, "\n");
         put_heads(s, first, last, false, out);
         put_rows(s, first, last, false, out);
     }
-    pw_text_add(out, "\n");
+    if (s->modes) pw_text_add(out, "\n");
     put_heads(s, 0, 0, true, out);
     put_rows(s, 0, 0, true, out);
 }
@@ -160,17 +160,32 @@ static void put_nearest(const pw_sensitivity *s, pw_arena *arena, pw_text *out)
     if (changed && !pw_sensitivity_compute(&rounded, arena, after)) put_effect(s, after, out);
 }
 
+/* Columns end in blanks where a cell is empty; lines do not. */
+static void add_trimmed(const pw_text *text, pw_text *out)
+{
+    for (const char *line = pw_text_string(text), *end; *line; line = end + 1) {
+        end = strchr(line, '\n');
+        size_t n = (size_t)(end - line);
+        while (n && line[n - 1] == ' ') n--;
+        pw_text_add_bytes(out, line, n);
+        pw_text_add(out, "\n");
+    }
+}
+
 static void show_one(const pw_circuit *circuit, int number, int of, pw_text *out)
 {
     pw_arena arena = {0};
+    pw_text text = {0};
     pw_sensitivity *s = pw_arena_take(&arena, sizeof *s);
     if (!pw_sensitivity_compute(circuit, &arena, s)) {
-        if (of > 1) pw_text_print(out, "Circuit %d of %d\n", number, of);
-        else pw_text_add(out, "Circuit\n");
-        put_gains(s, out);
-        if (s->parts) put_table(s, out);
-        if (circuit->series) put_nearest(s, &arena, out);
+        if (of > 1) pw_text_print(&text, "Circuit %d of %d\n", number, of);
+        else pw_text_add(&text, "Circuit\n");
+        put_gains(s, &text);
+        if (s->parts) put_table(s, &text);
+        if (circuit->series) put_nearest(s, &arena, &text);
     }
+    add_trimmed(&text, out);
+    pw_text_free(&text);
     pw_arena_free(&arena);
 }
 

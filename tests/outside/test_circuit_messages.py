@@ -107,6 +107,10 @@ def op_amps():
     refused("inputs that are one node", RC + ["U1: {op-amp: ideal, plus: out, minus: out, out: x}",
                                               "R2: {resistor: 1k, between: [x, out]}"], FIRST + 2,
             "the input of part 'U1' is node 'out' twice")
+    warned("a tolerance of nothing", [
+        "R1: {resistor: 10k, between: [in, m]}", "C1: {capacitor: 1n, between: [m, out]}",
+        "U1: {op-amp: ideal, plus: ground, minus: m, out: out, tolerance: 5 %}"], FIRST + 2,
+        "the tolerance of op-amp 'U1' does nothing")
     refused("an amplifier that contradicts itself", RC + [
         "E1: {amplifier: 1, sense: [x, ground], drive: [x, ground]}", "R2: {resistor: 1k, between: [x, out]}"],
         FIRST + 2, "the voltage of node 'x' is not determined")
