@@ -7,6 +7,7 @@
 
 #include "report/figures.h"
 #include "report/phrases.h"
+#include "report/tolerance.h"
 
 /* ---- figures ---- */
 
@@ -139,10 +140,14 @@ void pw_html_response(const pw_results *results, const pw_plots *plots, pw_text 
     if (plots->drawn) {
         put_key("analog stage", "its digital twin, words included", false, out);
         put_reader(r, out);
-        pw_text_print(out, "<figcaption>Upright lines: the band that is judged.%s</figcaption>\n",
-                      results->stage->limits.magnitude_db.given ? " Shaded: the limit." : "");
+        pw_text_print(out, "<figcaption>Upright lines: the band that is judged.%s%s</figcaption>\n",
+                      results->spread ? " Shaded about the curves: what the parts' tolerances"
+                      " span." : "",
+                      results->stage->limits.magnitude_db.given
+                      ? " Shaded about the error: the limit." : "");
     }
     pw_text_add(out, "</figure>\n");
+    if (results->spread) pw_html_sentence(pw_phrase_spread, results, out);
     put_errors(results, out);
     put_table(r, out);
     pw_html_close(out);

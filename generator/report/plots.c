@@ -4,6 +4,7 @@
 #include <math.h>
 #include <stdio.h>
 
+#include "analog/spread.h"
 #include "report/gnuplot.h"
 #include "report/phrases.h"
 #include "report/plot_script.h"
@@ -68,6 +69,42 @@ static void level_range(const pw_response *r, double *low, double *high)
     *low = fmax(*low - 1, *high - DEEPEST);
 }
 
+/* Whole turns between the spread's phase and that of the response, at the spread's first row. */
+static double turns_between(const pw_spread *s, const pw_response *r)
+{
+    double turn = 0, phase = 0;
+    for (int i = 0; i < r->rows && (!i || r->row[i].hz <= s->row[0].hz); i++)
+        phase = unturned(r, i, &turn);
+    return 360 * round((phase - s->row[0].deg.nominal) / 360);
+}
+
+/* The span of the parts' tolerances as an area under the curves. True where there is one. */
+static bool add_envelope(const pw_results *results, pw_text *script)
+{
+    const pw_spread *s = results->spread;
+    if (!s || !s->rows) return false;
+    double turns = turns_between(s, &results->response);
+    pw_text_add(script, "$envelope << EOD\n");
+    for (int i = 0; i < s->rows; i++) {
+        const pw_spread_row *row = &s->row[i];
+        pw_script_number(row->hz, script);
+        pw_script_number(fmin(row->db.low, row->db.corner_low), script);
+        pw_script_number(fmax(row->db.high, row->db.corner_high), script);
+        pw_script_number(turns + fmin(row->deg.low, row->deg.corner_low), script);
+        pw_script_number(turns + fmax(row->deg.high, row->deg.corner_high), script);
+        pw_text_add(script, "\n");
+    }
+    pw_text_add(script, "EOD\n");
+    return true;
+}
+
+static void add_area(const char *block, const char *columns, pw_role role, pw_text *script)
+{
+    pw_text_print(script, "$%s using %s with filledcurves fs solid noborder fc", block, columns);
+    pw_script_color(role, script);
+    pw_text_add(script, " notitle, ");
+}
+
 /* The limit as an area over the band, under the curve; the axis reaches a little beyond both. */
 static double add_limit(const pw_response *r, const pw_given *limit, pw_text *script)
 {
@@ -87,8 +124,9 @@ static void add_phase_axis(const pw_response *r, pw_text *script)
     double low = INFINITY, high = -INFINITY, turn = 0, step = 0;
     for (int i = 0; i < r->rows; i++) {
         double phase = unturned(r, i, &turn);
-        low = fmin(low, phase);
-        high = fmax(high, phase);
+        double other = phase + remainder(r->row[i].digital_deg - r->row[i].analog_deg, 360);
+        low = fmin(low, fmin(phase, other));
+        high = fmax(high, fmax(phase, other));
     }
     for (size_t k = 0; k < sizeof steps / sizeof *steps && step < (high - low) / 4; k++)
         step = steps[k];
@@ -102,18 +140,23 @@ static void add_panels(const pw_results *results, pw_text *script)
     const pw_response *r = &results->response;
     const pw_given *limit = &results->stage->limits.magnitude_db;
     double low, high, from = r->row[0].hz, to = r->row[r->rows - 1].hz;
+    bool envelope = add_envelope(results, script);
     level_range(r, &low, &high);
     pw_script_frame(PW_PLOT_RESPONSE, 26, 210, script);
     pw_script_log_x(from, to, false, "", script);
     pw_script_y("magnitude, dB", low, high, script);
-    pw_text_add(script, "plot $response");
+    pw_text_add(script, "plot ");
+    if (envelope) add_area("envelope", "1:2:3", PW_ROLE_ENVELOPE, script);
+    pw_text_add(script, "$response");
     pw_script_line("1:2", PW_ROLE_ANALOG, script);
     pw_text_add(script, ", $response");
     pw_script_line("1:3", PW_ROLE_DIGITAL, script);
     pw_text_add(script, "\n");
     pw_script_frame(PW_PLOT_RESPONSE, 246, 376, script);
     add_phase_axis(r, script);
-    pw_text_add(script, "plot $response");
+    pw_text_add(script, "plot ");
+    if (envelope) add_area("envelope", "1:4:5", PW_ROLE_ENVELOPE, script);
+    pw_text_add(script, "$response");
     pw_script_line("1:4", PW_ROLE_ANALOG, script);
     pw_text_add(script, ", $response");
     pw_script_line("1:5", PW_ROLE_DIGITAL, script);
@@ -123,11 +166,7 @@ static void add_panels(const pw_results *results, pw_text *script)
     pw_script_log_x(from, to, true, "frequency, Hz", script);
     pw_script_y("digital \342\210\222 analog, dB", -most, most, script);
     pw_text_add(script, "plot ");
-    if (limit->given) {
-        pw_text_add(script, "$limit using 1:2:3 with filledcurves fs solid noborder fc");
-        pw_script_color(PW_ROLE_LIMIT, script);
-        pw_text_add(script, " notitle, ");
-    }
+    if (limit->given) add_area("limit", "1:2:3", PW_ROLE_LIMIT, script);
     pw_text_add(script, "$response");
     pw_script_line("1:6", PW_ROLE_ERROR, script);
     pw_text_add(script, "\n");

@@ -25,6 +25,18 @@ STAGES = {
         "analog": {"family": {"approximation": "elliptic", "shape": "bandpass", "order": 5, "ripple": "0.5 dB",
                               "stopband": "70 dB", "corners": ["18 kHz", "22 kHz"]}},
     },
+    # A circuit with tolerances: the envelope.
+    "circuit": {
+        "stage": "sluice_level", "about": "Level filter of a sluice gate", "rate": "20 kHz",
+        "analog": {"circuit": {"input": {"voltage": "in"}, "output": "out", "parts": {
+            "R1": {"resistor": "22k", "between": ["in", "a"], "tolerance": "5 %"},
+            "R2": {"resistor": "22k", "between": ["a", "b"], "tolerance": "5 %"},
+            "C1": {"capacitor": "22 nF", "between": ["a", "out"], "tolerance": "10 %"},
+            "C2": {"capacitor": "10 nF", "between": ["b", "ground"], "tolerance": "10 %"},
+            "U1": {"op-amp": "ideal", "plus": "b", "minus": "out", "out": "out"}}}},
+        "arithmetic": {"sample": "q15"},
+        "limits": {"band": ["10 Hz", "2 kHz"], "magnitude": "0.5 dB"},
+    },
     # A notch in coupled form with double roots near the circle.
     "notch": {
         "stage": "mast_hum", "about": "Hum notch of a mast microphone", "rate": "48 kHz",

@@ -117,6 +117,10 @@ def main():
             check_page(name, stage, pages[name], json.load(f))
         fixed = stage.get("arithmetic", {}).get("sample", "float32").startswith("q")
         check(pages[name].count("<svg") == (6 if fixed else 5), f"{name}: every plot")
+    check("class=\"a r5\"" in pages["circuit"] and "class=\"a r5\"" not in pages["clipping"]
+          and "tolerances of 4 parts" in pages["circuit"].lower(), "the tolerance envelope, where there is one")
+    check("class=\"a r4\"" in pages["circuit"] and "class=\"a r4\"" not in pages["floats"],
+          "the limit is shaded, where there is one")
     check_again(STAGES["clipping"], pages["clipping"], folder)
     without_gnuplot(STAGES["clipping"], folder)
     broken_gnuplot(STAGES["clipping"], folder)
