@@ -12,7 +12,7 @@ typedef struct pw_selftest {
     pw_emission e;
     pw_vector vector[PW_SIGNALS];
     int n;
-    double tolerance;            /* floats */
+    double shift, tolerance;     /* floats: what contraction does, what is accepted */
     const char *capitals;        /* the stage's name in capitals */
 } pw_selftest;
 
@@ -147,10 +147,10 @@ static void header_file(const pw_selftest *t, pw_code *header)
         base += v->n;
     }
     if (!t->e.fixed) {
-        pw_prose(comment, "Expected samples are bit for bit those of code compiled with -ffp-contract=off. A compiler that"
-                 " contracts multiply-adds can move a sample by %.3g of full scale at most (a bound, from the rounding of"
-                 " every operation); that much is accepted. Define %s_TOLERANCE as 0 to accept nothing.", t->tolerance,
-                 t->capitals);
+        pw_prose(comment, "Expected samples are bit for bit those of code compiled with -ffp-contract=off. Contracting"
+                 " every multiply-add moves these samples by up to %.3g of full scale (measured); %.3g is accepted, four"
+                 " times that, for compilers that contract elsewhere. Define %s_TOLERANCE as 0 to accept nothing.",
+                 t->shift, t->tolerance, t->capitals);
     }
     pw_directive(header, pw_arena_print(t->e.arena, "#ifndef %s", guard));
     pw_directive(header, pw_arena_print(t->e.arena, "#define %s", guard));
@@ -198,7 +198,8 @@ pw_status pw_emit_selftest(const pw_results *results, pw_fileset *out)
     t.capitals = capitals_of(&t.e);
     for (int s = 0; s < PW_SIGNALS; s++)
         if (results->stage->vectors.want[s]) pw_vector_make(results, (pw_signal)s, &t.vector[t.n++]);
-    t.tolerance = rounded_up(pw_float_tolerance(results, t.vector, t.n), t.e.single);
+    t.shift = pw_contraction_shift(results, t.vector, t.n);
+    t.tolerance = rounded_up(pw_float_tolerance(results, t.vector, t.n, t.shift), t.e.single);
     emit_files(&t, out);
     for (int i = 0; i < t.n; i++) pw_vector_free(&t.vector[i]);
     pw_arena_free(&arena);

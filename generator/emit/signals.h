@@ -34,13 +34,13 @@ typedef struct pw_vector {
 void pw_vector_make(const pw_results *results, pw_signal signal, pw_vector *out);
 void pw_vector_free(pw_vector *vector);
 
-/* How far any compiler's contraction of multiply-adds can move an output sample of these vectors,
- * of full scale. 0 for fixed point.
- * Method: in each run every operation errs by at most u = 2^-24 or 2^-53 of its result, so two runs
- * differ by at most twice the sum over operations of u |result| times the L1 norm of the impulse
- * response from there to the output, over the length. Results are bounded by the words and the
- * largest section inputs and outputs met in the vectors. Norms are summed up to the length, or
- * until the rest is extrapolated to be below a thousandth. */
-double pw_float_tolerance(const pw_results *results, const pw_vector *vectors, int n);
+/* The largest change of an output sample of these vectors, of full scale, when every multiply-add
+ * is contracted (rounded once) that can be; measured by running them so, both ways round where two
+ * products meet. 0 for fixed point. */
+double pw_contraction_shift(const pw_results *results, const pw_vector *vectors, int n);
+
+/* What a self-test of these vectors accepts, given that shift: four times it, since a compiler may
+ * contract some and not others, and one unit in the last place of the largest output. 0 for 0. */
+double pw_float_tolerance(const pw_results *results, const pw_vector *vectors, int n, double shift);
 
 #endif

@@ -168,7 +168,8 @@ static json_t *tell(const pw_results *results)
         pw_vector_make(results, (pw_signal)s, &v[s]);
         json_object_set_new(clips, pw_signal_word((pw_signal)s), json_integer((json_int_t)v[s].clipped));
     }
-    double tolerance = pw_float_tolerance(results, v, PW_SIGNALS);
+    double shift = pw_contraction_shift(results, v, PW_SIGNALS);
+    double tolerance = pw_float_tolerance(results, v, PW_SIGNALS, shift);
     for (int s = 0; s < PW_SIGNALS; s++) pw_vector_free(&v[s]);
     return json_pack("{s:o, s:f}", "clips", clips, "tolerance", tolerance);
 }
