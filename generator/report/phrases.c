@@ -248,8 +248,8 @@ void pw_phrase_integrator(const pw_results *results, const pw_node *node, pw_tex
     pw_text_print(out, ": the worst input takes it to the clamp in %s",
                   pw_samples(worst, node->samples_to_clip, rate));
     if (isfinite(node->samples_to_clip_code))
-        pw_text_print(out, ", one code of offset in %s; it leaves the clamp with the first sample of"
-                      " the other sign", pw_samples(code, node->samples_to_clip_code, rate));
+        pw_text_print(out, ", one code of offset in %s; it leaves the clamp with the first sample"
+                      " of the other sign", pw_samples(code, node->samples_to_clip_code, rate));
 }
 
 void pw_phrase_noise(const pw_results *results, pw_text *out)

@@ -29,7 +29,7 @@ void pw_phrase_limit(const pw_results *results, const pw_limit_row *row, pw_text
 
 /* Whether and where anything can clip, and from which input level; one or two sentences. */
 void pw_phrase_range(const pw_results *results, pw_text *out);
-/* When a node that integrates reaches its clamp: for the worst input, and for one code of offset. */
+/* When a node that integrates reaches its clamp: by the worst input, by one code of offset. */
 void pw_phrase_integrator(const pw_results *results, const pw_node *node, pw_text *out);
 /* Noise, limit cycles and cost in a line each; floats say why there is none. */
 void pw_phrase_noise(const pw_results *results, pw_text *out);

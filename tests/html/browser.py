@@ -34,6 +34,7 @@ class Browser:
                                    "args": FLAGS + [f"--user-data-dir={self.folder}"]},
             "goog:loggingPrefs": {"browser": "ALL", "performance": "ALL"}}}
         self.session = "/session/" + self.call("/session", {"capabilities": capabilities})["sessionId"]
+        self.call(self.session + "/url", {"url": "about:blank"})
 
     def __enter__(self):
         return self

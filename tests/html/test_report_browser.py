@@ -106,7 +106,8 @@ def check_quiet(page, path, name):
     noise = [entry["message"] for entry in page.log("browser")]
     check(not noise, f"{name}: the console is silent", "; ".join(noise))
     sent = [json.loads(e["message"])["message"] for e in page.log("performance")]
-    asked = [m["params"]["request"]["url"] for m in sent if m["method"] == "Network.requestWillBeSent"]
+    asked = [m["params"]["request"]["url"] for m in sent if m["method"] == "Network.requestWillBeSent"
+             and m["params"]["documentURL"] == "file://" + path]   # the browser's own start page aside
     beyond = [u for u in asked if u != "file://" + path and not u.startswith("data:")]
     check("file://" + path in asked and not beyond, f"{name}: nothing but the file is asked for", str(beyond))
 
