@@ -6,6 +6,8 @@
 #include <stdio.h>
 #include <string.h>
 
+#define HOUR 3600.0           /* s */
+
 static int one_of(const char *unit, const char *const *list)
 {
     for (; *list; list++)
@@ -43,8 +45,11 @@ char *pw_count(char *buffer, long n, const char *thing)
 char *pw_samples(char *buffer, double samples, double rate_hz)
 {
     char time[PW_FIGURE_ROOM];
+    double seconds = ceil(samples) / rate_hz;
     if (!isfinite(samples)) return pw_figure(buffer, samples, "samples");
-    snprintf(buffer, PW_FIGURE_ROOM, "%.0f samples (%s)", ceil(samples),
-             pw_figure(time, ceil(samples) / rate_hz, "s"));
+    if (seconds >= 48 * HOUR) snprintf(time, sizeof time, "%.3g days", seconds / (24 * HOUR));
+    else if (seconds >= 2 * HOUR) snprintf(time, sizeof time, "%.3g hours", seconds / HOUR);
+    else pw_figure(time, seconds, "s");
+    snprintf(buffer, PW_FIGURE_ROOM, "%.12g samples (%.30s)", ceil(samples), time);
     return buffer;
 }

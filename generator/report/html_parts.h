@@ -12,6 +12,11 @@ void pw_html_text(const char *text, pw_text *out);
 typedef void pw_html_phrase(const pw_results *results, pw_text *out);
 void pw_html_sentence(pw_html_phrase *say, const pw_results *results, pw_text *out);
 
+/* The same for a text; nothing for an empty one. */
+void pw_html_say(const char *text, pw_text *out);
+/* A name and a value of a <dl>. */
+void pw_html_fact(const char *name, const char *value, pw_text *out);
+
 /* <section> with its heading, and its end. id is unique in the page. */
 void pw_html_open(const char *id, const char *heading, pw_text *out);
 void pw_html_close(pw_text *out);

@@ -11,7 +11,7 @@
 char *pw_node_fate(const pw_results *results, const pw_node *node, char *buffer)
 {
     char samples[PW_FIGURE_ROOM];
-    if (!pw_is_fixed(&results->realisation)) return strcpy(buffer, "float");
+    if (!pw_is_fixed(&results->realisation)) return strcpy(buffer, "");
     if (!node->integrates) return strcpy(buffer, node->can_clip ? "can clip" : "cannot clip");
     if (!isfinite(node->samples_to_clip)) return strcpy(buffer, "integrates up to the clamp");
     snprintf(buffer, PW_FIGURE_ROOM, "clamps after %.40s",

@@ -11,7 +11,7 @@
 void pw_node_head(pw_table *table);
 void pw_node_row(const pw_results *results, const pw_node *node, pw_table *table);
 
-/* "can clip", "cannot clip", "clamps after 812 samples (101 ms)", "float" in buffer
+/* "can clip", "cannot clip", "clamps after 812 samples (101 ms)", "" for floats, in buffer
  * (PW_FIGURE_ROOM bytes), which is returned. */
 char *pw_node_fate(const pw_results *results, const pw_node *node, char *buffer);
 

@@ -63,6 +63,26 @@ void pw_phrase_transform(const pw_digital *digital, pw_text *out)
         pw_text_print(out, ", gain matched at %s", pw_figure(buffer, digital->match_gain_hz, "Hz"));
 }
 
+void pw_phrase_candidate(const pw_candidate *c, pw_text *out)
+{
+    static const char *const zeros[] = {"zeros at infinity to half the rate",
+                                        "one zero at infinity kept", "zeros at infinity kept"};
+    if (!c->possible) pw_text_add(out, "does not exist");
+    else if (c->method == PW_BILINEAR) pw_phrase_prewarp(c->prewarp, c->prewarp_hz, out);
+    else if (c->method == PW_MATCHED_Z) pw_text_add(out, zeros[c->zeros_at_infinity]);
+}
+
+void pw_phrase_choice(const pw_digital *digital, pw_text *out)
+{
+    char figure[PW_FIGURE_ROOM];
+    const pw_candidate *next = &digital->candidate[1];
+    if (digital->candidates < 2) return;
+    pw_text_print(out, "best of %d tried", digital->candidates);
+    if (next->possible)
+        pw_text_print(out, ", next %s with %s", pw_method_word(next->method),
+                      pw_figure(figure, next->magnitude_error_db, "dB"));
+}
+
 void pw_phrase_arithmetic(const pw_realisation *r, pw_text *out)
 {
     pw_text_add(out, pw_sample_word(r->sample));

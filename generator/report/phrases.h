@@ -17,6 +17,12 @@ void pw_phrase_transform(const pw_digital *digital, pw_text *out);
 /* "prewarped at 400 Hz", "each section prewarped", "no prewarp" */
 void pw_phrase_prewarp(pw_prewarp prewarp, double hz, pw_text *out);
 
+/* How one of the tried transforms was set: "prewarped at 400 Hz", "zeros at infinity to half the
+ * rate", "does not exist"; nothing where there is nothing to set. */
+void pw_phrase_candidate(const pw_candidate *candidate, pw_text *out);
+/* By how much the chosen transform beats the next of those tried; nothing where only one was. */
+void pw_phrase_choice(const pw_digital *digital, pw_text *out);
+
 /* "q15, 16-bit coefficients, rounds to nearest, saturates, l1 scaling" */
 void pw_phrase_arithmetic(const pw_realisation *realisation, pw_text *out);
 

@@ -13,6 +13,7 @@
 #define ACROSS (2 * COLUMNS)
 #define UP (4 * ROWS)
 #define LABEL 8               /* columns of the level at the left */
+#define FINE 8                /* steps within a column of dots */
 #define DEEPEST 100.0         /* dB below the top: what lies lower is cut */
 
 typedef struct canvas { unsigned char cell[ROWS][COLUMNS]; } canvas;
@@ -24,38 +25,66 @@ static void set_dot(canvas *to, int x, int y)
     to->cell[y / 4][x / 2] |= bit[y % 4][x % 2];
 }
 
-/* From the last point to this one, upright, so that a steep curve stays whole. */
-static void join(canvas *to, int x, int last, int y)
+/* The lowest and highest level within a column of dots. */
+typedef struct reach { double low, high; } reach;
+
+static void add_level(const pw_roots *analog, double hz, reach *to)
 {
-    int step = y > last ? 1 : -1;
-    set_dot(to, x, y);
-    if (last < 0 || last == y) return;
-    for (int i = last + step; i != y && i >= 0 && i < UP; i += step) set_dot(to, x, i);
+    double log_magnitude, phase;
+    pw_roots_log_at(analog, 2 * M_PI * hz * I, &log_magnitude, &phase);
+    double db = log_magnitude * 20 / M_LN10;
+    if (isnan(db)) return;
+    to->low = fmin(to->low, db);
+    to->high = fmax(to->high, db);
 }
 
-static double level(const pw_roots *analog, const double span[2], int x)
+static void add_roots(const pw_roots *analog, const double complex *root, int n,
+                      const double span[2], reach *column)
 {
-    double hz = span[0] * pow(span[1] / span[0], x / (double)(ACROSS - 1)), log_magnitude, phase;
-    pw_roots_log_at(analog, 2 * M_PI * hz * I, &log_magnitude, &phase);
-    return log_magnitude * 20 / M_LN10;
+    for (int i = 0; i < n; i++) {
+        double hz = cabs(root[i]) / (2 * M_PI), at = log(hz / span[0]) / log(span[1] / span[0]);
+        int x = hz > 0 ? (int)floor(at * ACROSS) : -1;
+        if (x >= 0 && x < ACROSS) add_level(analog, hz, &column[x]);
+    }
+}
+
+/* Fine steps through each column, its edges shared with its neighbours so that a steep curve stays
+ * whole, and every root's own frequency, so that a narrow peak or notch is not stepped over. */
+static void measure(const pw_roots *analog, const double span[2], reach *column)
+{
+    for (int x = 0; x < ACROSS; x++) {
+        column[x] = (reach){INFINITY, -INFINITY};
+        for (int k = 0; k <= FINE; k++) {
+            double at = (x + k / (double)FINE) / ACROSS;
+            add_level(analog, span[0] * pow(span[1] / span[0], at), &column[x]);
+        }
+    }
+    add_roots(analog, analog->pole, analog->poles, span, column);
+    add_roots(analog, analog->zero, analog->zeros, span, column);
 }
 
 /* Ends of the axis, so that ROWS lines take whole steps of dB. */
-static void choose_axis(const double *db, double *top, double *step)
+static void choose_axis(const reach *column, double *top, double *step)
 {
     static const double steps[] = {1, 2, 5, 10, 20, 50};
     double least = INFINITY, most = -INFINITY;
     for (int x = 0; x < ACROSS; x++) {
-        if (!isfinite(db[x])) continue;
-        most = fmax(most, db[x]);
-        least = fmin(least, db[x]);
+        if (isfinite(column[x].high)) most = fmax(most, column[x].high);
+        least = fmin(least, column[x].low);
     }
+    if (!isfinite(most)) most = 0;
     least = fmax(least, most - DEEPEST);
     size_t k = 0;
     do {
         *step = steps[k];
         *top = ceil(most / *step - 0.05) * *step + 0.0;   /* + 0.0: no -0 */
     } while (*top - ROWS * *step > least && ++k < sizeof steps / sizeof *steps);
+}
+
+static int row_of(double db, double top, double step)
+{
+    double y = (top - db) / step * 4;
+    return y < UP ? (int)lrint(y) : UP;
 }
 
 static void put_row(const canvas *from, int row, pw_text *out)
@@ -90,23 +119,20 @@ static void put_scale(const double span[2], pw_text *out)
         memcpy(line + at, figure, strlen(figure));
         free_from = at + (int)strlen(figure) + 1;
     }
-    line[free_from] = 0;
+    line[free_from ? free_from - 1 : 0] = 0;
     pw_text_print(out, "%*s\342\224\224%s\n%s\n", LABEL, "", tick, line);
 }
 
 void pw_show_plot(const pw_roots *analog, const double span_hz[2], pw_text *out)
 {
     canvas dots = {0};
-    double db[ACROSS], top, step;
-    int last = -1;
-    for (int x = 0; x < ACROSS; x++) db[x] = level(analog, span_hz, x);
-    choose_axis(db, &top, &step);
-    for (int x = 0; x < ACROSS; x++) {
-        int y = isfinite(db[x]) ? (int)lrint((top - db[x]) / step * 4) : UP;
-        if (y > UP) y = UP;
-        join(&dots, x, last, y);
-        last = y;
-    }
+    reach column[ACROSS];
+    double top, step;
+    measure(analog, span_hz, column);
+    choose_axis(column, &top, &step);
+    for (int x = 0; x < ACROSS; x++)
+        for (int y = row_of(column[x].high, top, step); y <= row_of(column[x].low, top, step); y++)
+            set_dot(&dots, x, y);
     for (int row = 0; row < ROWS; row++) {
         if (row % 2) pw_text_print(out, "%*s\342\224\202", LABEL, "");
         else pw_text_print(out, "%*.0f dB\342\224\244", LABEL - 3, top - row * step + 0.0);

@@ -75,6 +75,11 @@ static void put_errors(const pw_results *results, const pw_style *style, pw_text
     pw_phrase_peak(&e->delay_s, "s", &body);
     put_line("Error", &body, style, out);
     add_peaks("transform", &r->transform, &body);
+    if (results->digital.candidates > 1) {
+        pw_text_add(&body, " (");
+        pw_phrase_choice(&results->digital, &body);
+        pw_text_add(&body, ")");
+    }
     add_peaks("; words", &r->quantisation, &body);
     pw_text_print(&body, "; band %s to %s", pw_figure(low, r->band_hz[0], "Hz"),
                   pw_figure(high, r->band_hz[1], "Hz"));

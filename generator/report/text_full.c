@@ -56,9 +56,9 @@ static void put_candidates(const pw_digital *digital, pw_text *out)
         const pw_candidate *c = &digital->candidate[i];
         char figure[PW_FIGURE_ROOM];
         pw_text how = {0};
-        if (c->method == PW_BILINEAR) pw_phrase_prewarp(c->prewarp, c->prewarp_hz, &how);
+        pw_phrase_candidate(c, &how);
         pw_table_cell(&table, "%s", pw_method_word(c->method));
-        pw_table_cell(&table, "%s", c->possible ? pw_text_string(&how) : "does not exist");
+        pw_table_cell(&table, "%s", pw_text_string(&how));
         const double error[] = {c->magnitude_error_db, c->phase_error_deg};
         for (int k = 0; k < 2; k++)
             pw_table_cell(&table, "%s", c->possible ? pw_figure(figure, error[k], unit[k]) : "");
@@ -71,6 +71,8 @@ static void put_transform(const pw_results *results, pw_text *out)
 {
     pw_text body = {0};
     pw_phrase_transform(&results->digital, &body);
+    if (results->digital.candidates > 1) pw_text_add(&body, "; ");
+    pw_phrase_choice(&results->digital, &body);
     put_paragraph(&body, out);
 }
 
@@ -154,13 +156,13 @@ static void put_nodes(const pw_results *results, pw_text *out)
 static void put_direct(const pw_words *w, pw_text *out)
 {
     pw_table table = {.align = "lrll"};
-    for (int k = 0; k < 3; k++) {
+    for (int k = 0; k <= w->order; k++) {
         pw_table_cell(&table, "b%d", k);
         pw_table_cell(&table, "%d", w->b[k]);
         pw_table_cell(&table, "\303\227 2^-%d", w->b_fraction);
         pw_table_cell(&table, "%.12g", w->realised_b[k]);
     }
-    for (int k = 1; k < 3; k++) {
+    for (int k = 1; k <= w->order; k++) {
         pw_table_cell(&table, "a%d", k);
         pw_table_cell(&table, "%d", w->a[k]);
         pw_table_cell(&table, "\303\227 2^-%d", w->a_fraction);
@@ -190,11 +192,11 @@ static void put_coupled(const pw_words *w, pw_text *out)
 static void put_floats(const pw_words *w, pw_text *out)
 {
     pw_table table = {.align = "ll"};
-    for (int k = 0; k < 3; k++) {
+    for (int k = 0; k <= w->order; k++) {
         pw_table_cell(&table, "b%d", k);
         pw_table_cell(&table, "%.17g", w->fb[k]);
     }
-    for (int k = 1; k < 3; k++) {
+    for (int k = 1; k <= w->order; k++) {
         pw_table_cell(&table, "a%d", k);
         pw_table_cell(&table, "%.17g", w->fa[k]);
     }
@@ -237,7 +239,7 @@ static void put_noise(const pw_results *results, pw_text *out)
 {
     const pw_noise *n = &results->realisation.noise;
     put_phrase(pw_phrase_noise, results, out);
-    if (n->given)
+    if (n->given && isfinite(n->input_quantisation_rms_lsb))
         pw_text_print(out, "  The input's own rounding adds %.3g LSB rms at the output.\n",
                       n->input_quantisation_rms_lsb);
 }
