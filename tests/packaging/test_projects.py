@@ -36,7 +36,7 @@ def test_projects(scratch):
     sketch = scratch + "/use/sketch/bridge_logger"
     tap.polewright("build", EXAMPLES + "/hull-strain/stage.yaml", "-o", sketch, "--target", "avr", "--no-plots", "--quiet")
     flags = "-mmcu=atmega1284p -Os -Wall -Wextra -Werror"
-    ran = sh(f"avr-g++ {flags} -I. -I{tap.ROOT}/tests/packaging/arduino -include Arduino.h -x c++ -c bridge_logger.ino -o ino.o && "
+    ran = sh(f"avr-g++ {flags} -std=gnu++11 -I. -I{tap.ROOT}/tests/packaging/arduino -include Arduino.h -x c++ -c bridge_logger.ino -o ino.o && "
              f"avr-gcc {flags} -std=c99 -c hull_strain.c pw_*.c && ls *.o", sketch)
     tap.check(ran.returncode == 0 and "hull_strain.o" in ran.stdout, "a sketch folder compiles for an 8-bit part", ran.stderr)
 
