@@ -205,7 +205,6 @@ void pw_stage_free(pw_stage *stage);
 
 /* Words of the enumerations as the stage file spells them ("matched-z", "q15", "direct-1"). */
 const char *pw_method_word(pw_method method);
-const char *pw_infinity_word(pw_infinity infinity);
 const char *pw_sample_word(pw_sample sample);
 const char *pw_structure_word(pw_structure structure);
 const char *pw_scaling_word(pw_scaling scaling);

@@ -105,7 +105,6 @@ const pw_word pw_op_amp_words[] = {{"ideal", "no current into its inputs, no vol
 const pw_word pw_q_words[] = {{"infinite", "on the imaginary axis; zeros only"}, {0}};
 const pw_word pw_flag_words[] = {{"false", "no"}, {"true", "yes"}, {0}};
 
-const char *pw_infinity_word(pw_infinity infinity) { return pw_infinity_words[infinity].word; }
 const char *pw_method_word(pw_method method) { return pw_method_words[method].word; }
 const char *pw_sample_word(pw_sample sample) { return pw_sample_words[sample].word; }
 const char *pw_structure_word(pw_structure structure) { return pw_structure_words[structure].word; }
