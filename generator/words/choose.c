@@ -140,10 +140,13 @@ static bool straighten(pw_job *job)
     return pw_job_words(job);
 }
 
-static bool shapes(const pw_section *section)
+/* Whether error feedback does anything for section k. */
+static bool shapes(const pw_job *job, int k)
 {
     int32_t k1, k2;
-    pw_choose_feedback(section->a, &k1, &k2);
+    if (job->out->ideal[k].order == 0)
+        return false;
+    pw_choose_feedback(job->out->ideal[k].a, pw_integrates_from(job->out, k), &k1, &k2);
     return k1 != 0 || k2 != 0;
 }
 
@@ -154,7 +157,7 @@ static bool quieten(pw_job *job, double limit_dbfs)
     while (job->out->noise.output_dbfs > limit_dbfs) {
         int loudest = -1;
         for (int k = 0; k < job->out->count; k++)
-            if (job->structure[k] == PW_DIRECT_1 && shapes(&job->out->ideal[k])
+            if (job->structure[k] == PW_DIRECT_1 && shapes(job, k)
                 && (loudest < 0 || job->share[k] > job->share[loudest]))
                 loudest = k;
         if (loudest < 0) {
@@ -176,7 +179,7 @@ static bool automatic(pw_job *job)
     for (int k = 0; k < job->out->count; k++) {
         const pw_section *section = &job->out->ideal[k];
         bool loud = !noise->given && pw_feedback_power(section->a, 0, 0) / 12 > QUIET;
-        if ((loud || pw_section_has_integrator(section)) && shapes(section)) {
+        if ((loud || pw_integrates_from(job->out, k)) && shapes(job, k)) {
             job->structure[k] = PW_DIRECT_1_SHAPED;
             job->out->structure_why = WHY_SHAPED;
         }
@@ -200,7 +203,7 @@ static bool named_coupled(pw_job *job)
     for (int k = 0; k < job->out->count; k++) {
         const pw_section *section = &job->out->ideal[k];
         bool suits = pw_coupled_suits(&job->format, section);
-        job->structure[k] = suits ? PW_COUPLED : shapes(section) ? PW_DIRECT_1_SHAPED : PW_DIRECT_1;
+        job->structure[k] = suits ? PW_COUPLED : shapes(job, k) ? PW_DIRECT_1_SHAPED : PW_DIRECT_1;
         any = any || suits;
     }
     return any;

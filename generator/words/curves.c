@@ -66,7 +66,7 @@ static void feedback_of(const pw_pole_unit *unit, const pw_arrange_context *cont
     double a[3] = {1, -creal(p + q), creal(p * q)};
     *k1 = *k2 = 0;
     if (context->shaped && pw_feedback_power(a, 0, 0) > 12)
-        pw_choose_feedback(a, k1, k2);
+        pw_choose_feedback(a, false, k1, k2);
 }
 
 static void pole_curves(const pw_units *units, int u, const pw_arrange_context *context,

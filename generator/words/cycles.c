@@ -17,7 +17,7 @@
 #include <string.h>
 
 #define STEPS 600000             /* section steps of the whole search */
-#define TRIALS_RANDOM 24
+#define TRIALS_RANDOM 1500         /* most; the steps end earlier where runs are long */
 
 typedef struct hunt {
     const pw_format *format;
@@ -89,12 +89,12 @@ static void attempt(hunt *h, int64_t input)
     if (h->left <= 0 || !find_cycle(h, input, h->left / (6 * h->r->count) + 64, state, &period))
         return;
     double size = amplitude(h, input, state, period);
-    if (!(size > found->found_lsb))
+    if (input)
+        found->found_constant_lsb = fmax(found->found_constant_lsb, size);
+    if (input || !(size > found->found_lsb))
         return;
     found->found_lsb = size;
     found->found_period = period;
-    if (input)
-        return;
     found->has_state = true;
     memset(found->state, 0, sizeof found->state);
     memcpy(found->state, state, (size_t)h->r->count * sizeof state[0]);
@@ -142,7 +142,7 @@ static void section_attempts(hunt *h, int k)
 
 static void random_attempts(hunt *h)
 {
-    for (int i = 0; i < TRIALS_RANDOM; i++) {
+    for (int i = 0; i < TRIALS_RANDOM && h->left > 0; i++) {
         clear(h);
         for (int k = 0; k < h->r->count; k++) {
             bool coupled = h->r->section[k].structure == PW_COUPLED;
@@ -151,7 +151,7 @@ static void random_attempts(hunt *h)
             if (k == 0 && !coupled)
                 h->start[k][0] = h->start[k][1] = 0;
         }
-        attempt(h, i % 3 == 2 ? 1 + i / 3 : 0);
+        attempt(h, i % 8 == 7 ? 1 + i / 8 : 0);
     }
 }
 

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* How soon an integrator reaches its clamp. */
 #include "words/proof.h"
+#include "words/step.h"
 
 #include <math.h>
 #include <stdlib.h>
@@ -20,12 +21,21 @@ static double extrapolate(double sum, double h, double d, double target)
     return h > 0 ? left / h : INFINITY;
 }
 
-/* A step of less than half an LSB never moves a plain rounded integrator. */
-static bool stands_still(const pw_realisation *r, int k)
+/* Whether a constant input of one LSB is lost in rounding on its way: a bit-true run that should move
+ * the output by eight LSB moves it by less than four. */
+static bool stands_still(const pw_format *format, const pw_realisation *r, int k, double samples_to_clip)
 {
-    const pw_words *w = &r->section[k];
-    double sum = fabs(w->realised_b[0] + w->realised_b[1] + w->realised_b[2]);
-    return w->structure == PW_DIRECT_1 && k == 0 && (r->truncate ? sum < 1 : sum < 0.5);
+    int64_t state[PW_MAX_SECTIONS][6] = {{0}}, y = 0;
+    double samples = 8 * samples_to_clip * format->lsb;
+    if (!(samples < RUN))
+        samples = RUN;           /* then anything short of what it should be counts */
+    double wanted = samples / (samples_to_clip * format->lsb) / 2;
+    for (long n = 0; n < (long)samples + 64; n++) {
+        y = 1;
+        for (int i = 0; i <= k; i++)
+            y = pw_step_section(format, r->wrap, &r->section[i], state[i], y, NULL);
+    }
+    return wanted >= 0.6 && (double)(y < 0 ? -y : y) < wanted;
 }
 
 /* The response of sections 0..k to an impulse: |h| times the peak adds up for the worst input, h times
@@ -75,6 +85,7 @@ void pw_integrators_time(const pw_proof *proof, pw_realisation *r)
         reach out = find_reach(proof->paths.line, i, r->input_peak, lsb);
         r->node[i].samples_to_clip = out.worst;
         r->node[i].samples_to_clip_code = !proof->format.fixed ? NAN
-                                        : stands_still(r, i) ? INFINITY : out.code;
+                                        : stands_still(&proof->format, r, i, out.code) ? INFINITY
+                                        : out.code;
     }
 }

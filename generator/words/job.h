@@ -56,7 +56,10 @@ bool pw_coupled_suits(const pw_format *format, const pw_section *section);
 
 /* ---- feedback.c ---- */
 
-/* k1 and k2 of the quietest error feedback for these poles. */
-void pw_choose_feedback(const double a[3], int32_t *k1, int32_t *k2);
+/* k1 and k2 of the quietest error feedback for these poles. hold: of those that lose nothing at rest
+ * (k1 + k2 = 1), for a section that an integrator follows or that integrates. */
+void pw_choose_feedback(const double a[3], bool hold, int32_t *k1, int32_t *k2);
+/* Whether a section from k on integrates. */
+bool pw_integrates_from(const pw_realisation *r, int k);
 
 #endif

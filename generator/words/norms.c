@@ -79,6 +79,7 @@ static long double free_tail(const pw_line *line, long double y1, long double y2
 typedef struct runner {
     long double x1, x2, y1, y2;  /* direct; coupled: u1, u2 in y1, y2 */
     long double sum[PW_PLACES], square[PW_PLACES], dc[PW_PLACES], tail[PW_PLACES];
+    long double peak[PW_PLACES];
 } runner;
 
 #define REAL double
@@ -171,6 +172,7 @@ static long double conclude(const pw_line *line, int count, const runner *r, lon
             o->l1_low = fmaxl(0, sum - slack) * (1 - 8 * LDBL_EPSILON);
             o->l2 = sqrtl(r[k].square[place]);
             o->dc = r[k].dc[place];
+            o->peak = fmaxl(r[k].peak[place], r[k].tail[place]) + slack + FADED;
             share = sum > 0 ? fmaxl(share, slack / sum) : share;
         }
         input_sum = r[k].sum[PW_PLACE_OUTPUT];

@@ -23,6 +23,7 @@ typedef struct pw_norm {
     long double l1_low;          /* <= the sum of |h| */
     long double l2;              /* root of the sum of h^2, to 0.5 % */
     long double dc;              /* sum of h, to 0.5 % of l1 */
+    long double peak;            /* >= the largest |h| */
 } pw_norm;
 
 typedef enum pw_place { PW_PLACE_OUTPUT, PW_PLACE_U1, PW_PLACE_U2, PW_PLACES } pw_place;

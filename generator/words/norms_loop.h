@@ -4,12 +4,15 @@
 
 static void NAME(tally)(runner *r, pw_place place, const REAL *v, int n)
 {
-    REAL sum = 0, square = 0, dc = 0;
+    REAL sum = 0, square = 0, dc = 0, peak = 0;
     for (int i = 0; i < n; i++) {
-        sum += v[i] < 0 ? -v[i] : v[i];
+        REAL size = v[i] < 0 ? -v[i] : v[i];
+        sum += size;
+        peak = size > peak ? size : peak;
         square += v[i] * v[i];
         dc += v[i];
     }
+    r->peak[place] = peak > r->peak[place] ? peak : r->peak[place];
     r->sum[place] += sum, r->square[place] += square, r->dc[place] += dc;
 }
 

@@ -46,6 +46,7 @@ void pw_paths_free(pw_paths *paths)
     for (int k = 0; k < paths->count; k++) {
         route_free(&paths->input[k]);
         route_free(&paths->shift[k]);
+        route_free(&paths->settle[k]);
         for (int s = 0; s < PW_SOURCES; s++)
             route_free(&paths->source[k][s]);
     }
@@ -132,6 +133,17 @@ const pw_route *pw_paths_shift(pw_paths *paths, int section)
         run(paths, section, &s, &paths->shift[section]);
     }
     return &paths->shift[section];
+}
+
+/* The free response from y1 = y2 = 1 is that to an impulse through -(a1 + a2) - a2/z. */
+const pw_route *pw_paths_settle(pw_paths *paths, int section)
+{
+    if (!paths->settle[section].norm) {
+        pw_line s = paths->line[section];
+        s.b[0] = -(s.a[1] + s.a[2]), s.b[1] = -s.a[2], s.b[2] = 0;
+        run(paths, section, &s, &paths->settle[section]);
+    }
+    return &paths->settle[section];
 }
 
 long double pw_paths_shift_bound(const pw_paths *paths, int j, int k)

@@ -23,6 +23,7 @@ typedef struct pw_paths {
     pw_route input[PW_MAX_SECTIONS];                 /* from the input of section k */
     pw_route source[PW_MAX_SECTIONS][PW_SOURCES];    /* from a rounding in section k */
     pw_route shift[PW_MAX_SECTIONS];                 /* from the alignment of b in section k */
+    pw_route settle[PW_MAX_SECTIONS];                /* direct: from y1 = y2 = 1 in section k */
 } pw_paths;
 
 /* Runs are made when first asked for, and kept. Free when done. */
@@ -31,6 +32,7 @@ void pw_paths_free(pw_paths *paths);
 const pw_route *pw_paths_input(pw_paths *paths, int from);
 const pw_route *pw_paths_source(pw_paths *paths, const pw_words *words, int section, pw_source source);
 const pw_route *pw_paths_shift(pw_paths *paths, int section);
+const pw_route *pw_paths_settle(pw_paths *paths, int section);
 /* The section as such a source sees it: what stands for it in the chain. */
 pw_line pw_paths_source_line(const pw_paths *paths, const pw_words *words, int section, pw_source source);
 pw_line pw_paths_shift_line(const pw_paths *paths, int section);

@@ -22,39 +22,29 @@ static long double source_reach(const pw_format *format, const pw_norm *norm)
     return half * (norm->l1 + (format->truncate ? fabsl(norm->dc) + 0.005L * norm->l1 : 0));
 }
 
-/* The largest amplitude of the free response of 1/A from y1 = y2 = 1. */
-static long double rest_reach(const pw_line *line)
+/* A filter that was settled starts up to half a step (truncating: one) from rest in y, or in both
+ * words. Where rounding itself can keep it there this is nothing new; where the error is fed back, or
+ * 1/A is less than one at rest, it is an impulse more. */
+static long double settle_from(pw_proof *p, const pw_words *w, int j, int k, pw_place place)
 {
-    long double a1 = line->a[1], a2 = line->a[2], split = a1 * a1 / 4 - a2;
-    if (split < 0)
-        return hypotl(1, (a2 + a1 / 2) / sqrtl(-split)) * (1 + 1e-9L);
-    if (a1 <= 0 && a2 >= 0)
-        return 1;                /* real poles in [0, 1]: it falls from 1 */
-    return (fabsl(a1 + a2) + fabsl(a2)) * line->all_pole;
-}
-
-/* A filter that was settled starts up to half a step (coupled: in both words) from rest; where the
- * error is fed back this can lie outside of what rounding reaches by itself. */
-static long double settle_reach(const pw_format *format, const pw_words *w, const pw_line *line)
-{
-    if (w->structure == PW_COUPLED)
-        return format->lsb * (fabsl(line->c1) + fabsl(line->c2));
-    bool inside = w->structure == PW_DIRECT_1 && fabsl(1 + line->a[1] + line->a[2]) <= 1;
-    return w->order == 0 || inside ? 0 : format->lsb / 2 * rest_reach(line);
+    long double off = p->format.lsb * (p->format.truncate ? 1 : 0.5L);
+    const pw_line *line = &p->paths.line[j];
+    if (w->structure == PW_COUPLED) {
+        const pw_route *u1 = pw_paths_source(&p->paths, w, j, PW_SOURCE_U1);
+        const pw_route *u2 = pw_paths_source(&p->paths, w, j, PW_SOURCE_U2);
+        return off * (u1->norm[k - j][place].peak + u2->norm[k - j][place].peak);
+    }
+    if (w->order == 0 || (w->structure == PW_DIRECT_1 && fabsl(1 + line->a[1] + line->a[2]) <= 1))
+        return 0;
+    const pw_route *rest = pw_paths_settle(&p->paths, j);
+    return rest->reach > k ? off * rest->norm[k - j][place].peak : INFINITY;
 }
 
 static long double settle_at(pw_proof *p, const pw_realisation *r, int from, int k, pw_place place)
 {
     long double sum = 0;
-    for (int j = from; j <= k; j++) {
-        long double through = 1;
-        for (int i = j + 1; i <= k; i++)
-            through *= p->paths.line[i].own;
-        if (place == PW_PLACE_OUTPUT || j < k)
-            sum += settle_reach(&p->format, &r->section[j], &p->paths.line[j]) * through;
-        else
-            sum += p->format.lsb;
-    }
+    for (int j = from; j <= k; j++)
+        sum += settle_from(p, &r->section[j], j, k, place);
     return sum;
 }
 

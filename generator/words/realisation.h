@@ -87,7 +87,8 @@ typedef struct pw_limit_cycle {
     bool given;                  /* false for floats */
     double bound_lsb;            /* proved: no zero-input cycle at the output is larger; INFINITY
                                     after an integrator */
-    double found_lsb;            /* largest amplitude that the search met */
+    double found_lsb;            /* largest amplitude that the search met without input */
+    double found_constant_lsb;   /* largest half swing that it met under a small constant input */
     int found_period;            /* samples; 0 none found, 1 a constant */
     bool has_state;              /* worst state found, for the silence vector: */
     int64_t state[PW_MAX_SECTIONS][6];    /* direct: x1 x2 y1 y2 e1 e2; coupled: u1 u2 0 0 0 0 */

@@ -20,12 +20,19 @@ static int segment_start(const pw_job *job, int k)
     return from;
 }
 
+bool pw_integrates_from(const pw_realisation *r, int k)
+{
+    while (k < r->count && !pw_section_has_integrator(&r->ideal[k]))
+        k++;
+    return k < r->count;
+}
+
 static bool direct_words(pw_job *job, int k, pw_words *w)
 {
     const pw_section *section = &job->out->ideal[k];
     w->structure = job->structure[k];
     if (w->structure == PW_DIRECT_1_SHAPED) {
-        pw_choose_feedback(section->a, &w->k1, &w->k2);
+        pw_choose_feedback(section->a, pw_integrates_from(job->out, k), &w->k1, &w->k2);
         if (w->k1 == 0 && w->k2 == 0)
             w->structure = PW_DIRECT_1;
     }

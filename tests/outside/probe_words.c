@@ -1,13 +1,19 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Realises digital models given as JSON, one a line on standard input, and prints what was found,
  * one JSON object a line. Keys: poles, zeros ([re, im], conjugates both), factor, sample,
- * bits, structure, scaling, rate, peak, band, truncate, wrap, probe (a length), in, out (volts). */
+ * bits, structure, scaling, rate, peak, band, truncate, wrap, as-listed, in, out (volts), noise-limit,
+ * magnitude-limit; and what to do beside: probe (a length: the overflow probe, and the largest value
+ * that each node reaches under it), random (a length: the rms of the output against the same words in
+ * long double, on random input), input (words: what the simulation gives back).
+ * A line {"chain": [{"b": [..], "a": [..]}, ..]} gives the norms from its input to each section. */
 #include <jansson.h>
 #include <math.h>
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
 
+#include "simulate/simulate.h"
+#include "words/norms.h"
 #include "words/realisation.h"
 
 static int word_in(const char *word, const char *const *list, int n, int otherwise)
@@ -107,9 +113,127 @@ static json_t *nodes_json(const pw_realisation *r)
     return list;
 }
 
-static json_t *result(const pw_realisation *r, int probe)
+/* ---- runs ---- */
+
+static void *room_for(size_t n, size_t size)
+{
+    void *p = calloc(n + 1, size);
+    if (!p)
+        exit(3);
+    return p;
+}
+
+static double unit(const pw_realisation *r) { return r->sample == PW_Q15 ? 32768 : 2147483648.0; }
+
+static json_t *probe_json(const pw_realisation *r, int n)
+{
+    double *x = room_for((size_t)n, sizeof *x), *node = room_for((size_t)r->nodes, sizeof *node);
+    double *most = room_for((size_t)r->nodes, sizeof *most);
+    pw_simulation sim;
+    pw_overflow_probe(r, n, x);
+    pw_simulation_reset(&sim, r);
+    for (int i = 0; i < n; i++) {
+        int32_t y;
+        pw_simulation_step_nodes(&sim, (int32_t)x[i], &y, node);
+        for (int k = 0; k < r->nodes; k++)
+            most[k] = fmax(most[k], fabs(node[k]));
+    }
+    json_t *o = json_pack("{s:o,s:o,s:I}", "input", list_of(x, n), "most", list_of(most, r->nodes),
+                          "clipped", (json_int_t)sim.clipped);
+    free(x), free(node), free(most);
+    return o;
+}
+
+static uint64_t draw(uint64_t *s)
+{
+    *s ^= *s << 13, *s ^= *s >> 7, *s ^= *s << 17;
+    return *s;
+}
+
+/* One section in long double, from its words. */
+static long double exact_step(const pw_words *w, long double s[4], long double x)
+{
+    if (w->structure == PW_COUPLED) {
+        long double a = ldexpl(1, -w->a_fraction), c = ldexpl(1, -w->c_fraction);
+        long double y = c * (w->c1 * s[0] + w->c2 * s[1] + w->d * x);
+        long double u = a * (w->sigma * s[0] - w->omega * s[1] + w->g * x);
+        s[1] = a * (w->omega * s[0] + w->sigma * s[1]);
+        s[0] = u;
+        return y;
+    }
+    const double *b = w->realised_b, *a = w->realised_a;
+    long double y = b[0] * x + b[1] * s[0] + b[2] * s[1] - a[1] * s[2] - a[2] * s[3];
+    s[1] = s[0], s[0] = x, s[3] = s[2], s[2] = y;
+    return y;
+}
+
+/* Mean and rms about it of the output error in LSB, after a quarter of the run; uniform random input. */
+static json_t *random_json(const pw_realisation *r, int n, double level)
+{
+    long double state[PW_MAX_SECTIONS][4] = {{0}};
+    double sum = 0, square = 0;
+    uint64_t seed = 20250914;
+    pw_simulation sim;
+    pw_simulation_reset(&sim, r);
+    for (int i = 0; i < n; i++) {
+        double u = (double)(draw(&seed) >> 11) * 0x1p-52 - 1;
+        int32_t x = (int32_t)rint(u * level * (unit(r) - 1)), y;
+        pw_simulation_run_words(&sim, &x, &y, 1);
+        long double v = x;
+        for (int k = 0; k < r->count; k++)
+            v = exact_step(&r->section[k], state[k], v);
+        double e = (double)(y - v);
+        if (i >= n / 4)
+            sum += e, square += e * e;
+    }
+    double m = n - n / 4, mean = sum / m;
+    return json_pack("{s:o,s:o,s:I}", "mean", real(mean), "rms", real(sqrt(square / m - mean * mean)),
+                     "clipped", (json_int_t)sim.clipped);
+}
+
+static json_t *run_json(const pw_realisation *r, json_t *input)
+{
+    size_t n = json_array_size(input), i;
+    int32_t *x = room_for(n, sizeof *x);
+    json_t *v, *o = json_array();
+    json_array_foreach(input, i, v)
+        x[i] = (int32_t)json_integer_value(v);
+    pw_simulation sim;
+    pw_simulation_reset(&sim, r);
+    pw_simulation_run_words(&sim, x, x, n);
+    for (i = 0; i < n; i++)
+        json_array_append_new(o, json_integer(x[i]));
+    free(x);
+    return o;
+}
+
+static json_t *chain_json(json_t *chain)
+{
+    pw_line line[PW_MAX_SECTIONS];
+    pw_norm norm[PW_MAX_SECTIONS][PW_PLACES];
+    size_t n = json_array_size(chain), i;
+    json_t *s, *o = json_array();
+    json_array_foreach(chain, i, s) {
+        line[i] = (pw_line){.coupled = false};
+        for (size_t k = 0; k < 3; k++) {
+            line[i].b[k] = json_number_value(json_array_get(json_object_get(s, "b"), k));
+            line[i].a[k] = json_number_value(json_array_get(json_object_get(s, "a"), k));
+        }
+        pw_line_close(&line[i]);
+        pw_line_own(&line[i]);
+    }
+    pw_norms_run(line, (int)n, norm);
+    for (i = 0; i < n; i++)
+        json_array_append_new(o, json_pack("{s:o,s:o,s:o,s:o}", "l1", real((double)norm[i][0].l1),
+            "low", real((double)norm[i][0].l1_low), "l2", real((double)norm[i][0].l2),
+            "dc", real((double)norm[i][0].dc)));
+    return json_pack("{s:o}", "norms", o);
+}
+
+static json_t *result(const pw_realisation *r, json_t *in)
 {
     json_t *sections = json_array(), *o;
+    int probe = (int)number(in, "probe", 0), random = (int)number(in, "random", 0);
     for (int k = 0; k < r->count; k++)
         json_array_append_new(sections, words_json(r, k));
     const pw_noise *n = &r->noise;
@@ -124,17 +248,33 @@ static json_t *result(const pw_realisation *r, int probe)
         "dbfs", real(n->output_dbfs), "snr_db", real(n->snr_db), "bits", real(n->effective_bits),
         "input_rms_lsb", real(n->input_quantisation_rms_lsb), "growth", real(n->growth_lsb2_per_sample),
         "grows", n->grows));
-    json_object_set_new(o, "cycle", json_pack("{s:b,s:o,s:o,s:i,s:b}", "given", c->given,
-        "bound_lsb", real(c->bound_lsb), "found_lsb", real(c->found_lsb), "period", c->found_period,
+    json_object_set_new(o, "cycle", json_pack("{s:b,s:o,s:o,s:o,s:i,s:b}", "given", c->given,
+        "bound_lsb", real(c->bound_lsb), "found_lsb", real(c->found_lsb), "found_constant_lsb", real(c->found_constant_lsb), "period", c->found_period,
         "has_state", c->has_state));
-    if (probe > 0) {
-        double *x = calloc((size_t)probe, sizeof *x);
-        if (!x)
-            exit(3);
-        pw_overflow_probe(r, probe, x);
-        json_object_set_new(o, "probe", list_of(x, probe));
-        free(x);
-    }
+    json_object_set_new(o, "enough_bits", json_integer(r->enough_bits));
+    if (probe > 0)
+        json_object_set_new(o, "probe", probe_json(r, probe));
+    if (random > 0)
+        json_object_set_new(o, "random", random_json(r, random, number(in, "level", 0.5)));
+    if (json_object_get(in, "input"))
+        json_object_set_new(o, "output", run_json(r, json_object_get(in, "input")));
+    return o;
+}
+
+static json_t *answer(json_t *in)
+{
+    static pw_stage stage;
+    static pw_digital digital;
+    static pw_realisation r;
+    if (json_object_get(in, "chain"))
+        return chain_json(json_object_get(in, "chain"));
+    read_stage(in, &stage, &digital);
+    pw_messages messages = {.file = "probe"};
+    pw_status status = pw_realise(&stage, &digital.z, &digital, NULL, &r, &messages);
+    json_t *o = status == PW_OK ? result(&r, in) : json_object();
+    json_object_set_new(o, "status", json_integer(status));
+    pw_messages_print(&messages, stderr, false);
+    pw_messages_free(&messages);
     return o;
 }
 
@@ -142,25 +282,16 @@ int main(void)
 {
     char *line = NULL;
     size_t room = 0;
-    static pw_stage stage;
-    static pw_digital digital;
-    static pw_realisation r;
     while (getline(&line, &room, stdin) > 0) {
         json_error_t fault;
         json_t *in = json_loads(line, 0, &fault);
         if (!in)
             return fprintf(stderr, "probe_words: %s\n", fault.text), 2;
-        read_stage(in, &stage, &digital);
-        pw_messages messages = {.file = "probe"};
-        pw_status status = pw_realise(&stage, &digital.z, &digital, NULL, &r, &messages);
-        json_t *o = status == PW_OK ? result(&r, (int)number(in, "probe", 0)) : json_object();
-        json_object_set_new(o, "status", json_integer(status));
+        json_t *o = answer(in);
         char *text = json_dumps(o, JSON_COMPACT | JSON_REAL_PRECISION(17));
         puts(text);
         fflush(stdout);
         free(text);
-        pw_messages_print(&messages, stderr, false);
-        pw_messages_free(&messages);
         json_decref(o);
         json_decref(in);
     }
