@@ -140,7 +140,8 @@ void pw_html_cost(const pw_results *results, pw_text *out)
     pw_html_fact("multiplies a sample", figure, out);
     pw_html_fact("flash", pw_figure(figure, (double)c->flash_bytes, "bytes"), out);
     pw_html_fact("RAM a channel", pw_figure(figure, (double)c->ram_bytes, "bytes"), out);
-    if (c->stack_bytes) pw_html_fact("stack", pw_figure(figure, (double)c->stack_bytes, "bytes"), out);
+    if (c->stack_bytes)
+        pw_html_fact("stack", pw_figure(figure, (double)c->stack_bytes, "bytes"), out);
     pw_text_add(out, "</dl>\n");
     pw_html_close(out);
 }
@@ -155,23 +156,39 @@ static const char *sample_type(pw_sample sample)
     }
 }
 
+/* What an interrupt does: with converter codes where the stage file tells the converters' bits. */
+static void put_handler(const pw_results *results, pw_text *out)
+{
+    const pw_stage *stage = results->stage;
+    const char *name = stage->name, *type = sample_type(results->realisation.sample);
+    if (stage->input.bits && stage->output.bits) {
+        const char *in = stage->input.bits > 16 ? "uint32_t" : "uint16_t";
+        const char *back = stage->output.bits > 16 ? "uint32_t" : "uint16_t";
+        pw_text_print(out, "%s on_code(%s code)\n{\n    %s x = %s_from_code(code);\n"
+                      "    return %s_to_code(%s_step(&amp;filter, x));\n}\n", back, in, type, name,
+                      name, name);
+    } else
+        pw_text_print(out, "%s on_sample(%s x)\n{\n    return %s_step(&amp;filter, x);\n}\n", type,
+                      type, name);
+}
+
 void pw_html_use(const pw_results *results, pw_text *out)
 {
     const char *name = results->stage->name, *type = sample_type(results->realisation.sample);
     pw_html_open("use", "Using the C", out);
     pw_text_print(out, "<pre id=\"code\" tabindex=\"0\"><code>#include \"%s.h\"\n\n"
-                  "static %s_state filter;              /* one for each channel */\n\n"
-                  "void start(%s first)\n{\n    %s_reset(&amp;filter);\n"
-                  "    %s_settle(&amp;filter, first);    /* as if first had been there for ever"
-                  " */\n}\n\n"
-                  "%s on_sample(%s x)\n{\n    return %s_step(&amp;filter, x);\n}\n</code></pre>\n",
-                  name, name, type, name, name, type, type, name);
+                  "static %s_state filter;               /* one for each channel */\n\n"
+                  "void start(%s first)\n{\n"
+                  "    %s_settle(&amp;filter, first);     /* as if first had been there for ever"
+                  " */\n}\n\n",
+                  name, name, type, name);
+    put_handler(results, out);
+    pw_text_add(out, "</code></pre>\n");
     pw_text_print(out, "<p class=\"copy\"><button type=\"button\" id=\"copy\" hidden>Copy</button>"
                   "<span id=\"copied\" role=\"status\"></span></p>\n"
                   "<p>Compile every <code>.c</code> file of this folder but the self-test with"
-                  " <code>-std=c99 -O2%s</code>. Run <code>%s_selftest()</code> once on the"
-                  " part: it"
-                  " returns 0 when every sample is as expected.</p>\n",
+                  " <code>-std=c99 -O2%s</code>. Run <code>%s_selftest()</code> once on the part:"
+                  " it returns 0 when every sample is as expected.</p>\n",
                   pw_is_fixed(&results->realisation) ? "" : " -ffp-contract=off", name);
     pw_html_close(out);
 }

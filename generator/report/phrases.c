@@ -180,6 +180,8 @@ void pw_phrase_limit(const pw_results *results, const pw_limit_row *row, pw_text
     else if (!strcmp(row->name, "overflow"))
         pw_text_print(found, "%s can clip",
                       row->value > 0 ? pw_count(figure, lrint(row->value), "node") : "no node");
+    else if (!strcmp(row->name, "noise") && !results->realisation.noise.given)
+        pw_text_add(found, "floats, which have no figure");
     else pw_text_add(found, pw_figure(figure, row->value, row->unit));
 }
 

@@ -35,6 +35,8 @@ STAGES = {
             "C2": {"capacitor": "10 nF", "between": ["b", "ground"], "tolerance": "10 %"},
             "U1": {"op-amp": "ideal", "plus": "b", "minus": "out", "out": "out"}}}},
         "arithmetic": {"sample": "q15"},
+        "signal": {"input": {"high": "3.3 V", "bits": 12, "zero": "1.65 V", "peak": "1 V"},
+                   "output": {"high": "5 V", "bits": 10, "zero": "2.5 V"}},
         "limits": {"band": ["10 Hz", "2 kHz"], "magnitude": "0.5 dB"},
     },
     # A notch in coupled form with double roots near the circle.

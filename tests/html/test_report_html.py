@@ -1,17 +1,19 @@
 # SPDX-License-Identifier: GPL-3.0-or-later
 """report.html as a file: what stands in it, that the same bytes come out again, and how it does
 without gnuplot. How it looks and behaves is in test_report_browser.py."""
+import html
 import html.parser
 import json
 import os
 import re
 import shutil
+import subprocess
 import sys
 import tempfile
 
 sys.path.insert(0, os.path.join(os.path.dirname(os.path.abspath(__file__)), ".."))
 from stages import STAGES
-from tap import check, done, polewright
+from tap import SANITISED, check, done, polewright, skip
 
 SECTIONS = ["stage", "response", "delay", "step", "roots", "range", "noise", "words", "cost", "use", "cautions",
             "again"]
@@ -49,8 +51,8 @@ class Reader(html.parser.HTMLParser):
             self.text.append(data)
 
 
-def build(stage, folder, *options, env=None):
-    ran = polewright("build", "-", "-o", folder, *options, stdin=json.dumps(stage), env=env)
+def build(stage, folder, *options, **how):
+    ran = polewright("build", "-", "-o", folder, *options, stdin=json.dumps(stage), **how)
     path = os.path.join(folder, "report.html")
     return ran, open(path, encoding="utf-8").read() if os.path.exists(path) else ""
 
@@ -78,12 +80,32 @@ def check_page(name, stage, page, report):
     check(report["stage_file_sha256"] in text and report["version"] in text, f"{name}: how to make it again")
 
 
+def check_code(name, page, folder):
+    """The lines that the page gives to copy compile, and link with the emitted files."""
+    code = re.search(r'<pre id="code"[^>]*><code>(.*?)</code></pre>', page, re.S).group(1)
+    with open(folder + "/use.c", "w", encoding="utf-8") as f:
+        f.write(html.unescape(code))
+    ran = subprocess.run("gcc -std=c99 -Wall -Wextra -Wconversion "
+                         "-pedantic -Werror -O0 -shared -fPIC -Wl,-z,defs -o use.so *.c", cwd=folder, shell=True,
+                         capture_output=True, text=True)
+    lines = html.unescape(code).strip().count("\n") + 1
+    check(ran.returncode == 0 and lines <= 15, f"{name}: the C to copy compiles and links", ran.stderr[:300])
+
+
 def check_again(stage, page, other):
     ran, again = build(stage, os.path.join(other, "elsewhere", "out"))
     check(again == page, "the same bytes from another folder")
     plots = page[page.find("<svg"):page.rfind("</svg>")]
     check(not re.search(r"20\d\d-|gnuplot|rgb\(|font-family", plots, re.I) and other not in page,
           "no date, path, program or look in the plots")
+
+
+def check_sanitised(name, stage, page, folder):
+    if not os.path.exists(SANITISED):
+        return skip(f"{name}: the sanitised program writes the same page", "it is not built: make check")
+    ran, again = build(stage, f"{folder}/{name}-sanitised", program=SANITISED)
+    return check(ran.returncode in (0, 1) and again == page, f"{name}: the sanitised program writes the same page",
+                 ran.stderr[:500])
 
 
 def without_gnuplot(stage, folder):
@@ -115,6 +137,8 @@ def main():
         check(ran.returncode in (0, 1), f"{name}: builds", ran.stderr.strip())
         with open(f"{folder}/{name}/report.json", encoding="utf-8") as f:
             check_page(name, stage, pages[name], json.load(f))
+        check_code(name, pages[name], f"{folder}/{name}")
+        check_sanitised(name, stage, pages[name], folder)
         fixed = stage.get("arithmetic", {}).get("sample", "float32").startswith("q")
         check(pages[name].count("<svg") == (6 if fixed else 5), f"{name}: every plot")
     check("class=\"a r5\"" in pages["circuit"] and "class=\"a r5\"" not in pages["clipping"]
