@@ -87,8 +87,27 @@ void pw_messages_print(pw_messages *messages, FILE *to, bool errors_only)
     messages->count = 0;
 }
 
+static void forget_options(pw_messages *messages)
+{
+    for (int i = 0; i < messages->n_sets; i++) free(messages->sets[i]);
+    free(messages->sets);
+    messages->sets = NULL;
+    messages->n_sets = 0;
+}
+
+void pw_messages_set_options(pw_messages *messages, const char *const *sets, int n_sets)
+{
+    forget_options(messages);
+    if (n_sets <= 0) return;
+    messages->sets = pw_take((size_t)n_sets * sizeof *messages->sets);
+    for (int i = 0; i < n_sets; i++)
+        messages->sets[i] = strcpy(pw_take(strlen(sets[i]) + 1), sets[i]);
+    messages->n_sets = n_sets;
+}
+
 void pw_messages_free(pw_messages *messages)
 {
+    forget_options(messages);
     for (int i = 0; i < messages->count; i++) free(messages->list[i].text);
     free(messages->list);
     messages->list = NULL;

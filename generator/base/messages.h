@@ -16,9 +16,12 @@ typedef struct pw_messages {
     const char *file;                    /* as messages name it: the path, or "stdin" */
     struct pw_message *list;
     int count, errors;
-    const char *const *sets;             /* the --set options; null where there are none */
+    char **sets;                         /* the --set options; null where there are none */
     int n_sets;
 } pw_messages;                           /* {.file = name} is empty */
+
+/* Keeps the texts of the --set options, as copies, in place of earlier ones. */
+void pw_messages_set_options(pw_messages *messages, const char *const *sets, int n_sets);
 
 /* The text reads "what is wrong; what was expected", without a full stop or a newline. The same
  * text at the same place is kept once. */

@@ -39,8 +39,7 @@ pw_status pw_stage_read(const pw_text *yaml, const char *const *sets, int n_sets
     pw_port_default(&out->input);
     pw_port_default(&out->output);
     out->file = messages->file;
-    messages->sets = sets;
-    messages->n_sets = n_sets;
+    pw_messages_set_options(messages, sets, n_sets);
     SHA256Data((const uint8_t *)pw_text_string(yaml), yaml->size, out->sha256);
     pw_tree *root = read_tree(yaml, sets, n_sets, &out->arena, messages);
     if (root) {

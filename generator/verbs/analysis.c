@@ -20,17 +20,20 @@ pw_status pw_analysis_tell(const pw_call *call, pw_analysis *analysis, pw_status
 
 pw_status pw_analysis_read(const pw_call *call, pw_analysis *analysis)
 {
-    pw_text yaml = {0};
+    pw_text yaml = {0}, target = {0};
     analysis->messages.file = strcmp(call->stage, "-") ? call->stage : "stdin";
     pw_status status = pw_file_read(call->stage, LARGEST_STAGE_FILE, &yaml);
     if (!status) {
         const char **sets = pw_arena_take(&analysis->stage.arena, (size_t)(call->sets + 1) * sizeof *sets);
         int n = call->sets;
         if (n) memcpy(sets, call->set, (size_t)n * sizeof *sets);
-        if (call->target)
-            sets[n++] = pw_arena_print(&analysis->stage.arena, "target=%s", call->target);
+        if (call->target) {
+            pw_text_print(&target, "target=%s", call->target);
+            sets[n++] = pw_text_string(&target);
+        }
         status = pw_stage_read(&yaml, sets, n, &analysis->stage, &analysis->messages);
     }
+    pw_text_free(&target);
     pw_text_free(&yaml);
     return pw_analysis_tell(call, analysis, status);
 }
