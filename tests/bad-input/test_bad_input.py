@@ -24,7 +24,7 @@ CASES = HERE + "/cases/"
 def run(verb, name, content, args, folder):
     with open(f"{folder}/{name}.yaml", "wb") as f:
         f.write(content)
-    return subprocess.run([tap.SANITISED, verb, name + ".yaml", *args], cwd=folder, capture_output=True)
+    return subprocess.run([tap.SANITISED, verb, name + ".yaml", *args], cwd=folder, capture_output=True, timeout=60)
 
 
 def judge(name, verb):
@@ -68,13 +68,13 @@ def judge_large():
         with tempfile.TemporaryDirectory() as folder:
             ran = run("check", "large", content, [], folder)
         said = ran.stderr.decode()
-        tap.check(ran.returncode == 2 and words in said, f"1 MiB and {more} bytes", said[:300])
+        tap.check(ran.returncode == 2 and words in said, f"1 MiB and {more} bytes")
 
 
 def judge_standard_input():
     ran = tap.polewright("check", "-", stdin="stage: int\n", program=tap.SANITISED)
-    tap.check(ran.returncode == 2 and ran.stderr.startswith("stdin:1:8: stage: 'int'"),
-              "standard input is called stdin", ran.stderr)
+    tap.check(ran.returncode == 2 and "\nstdin:1:8: stage: 'int' is" in ran.stderr,
+              "standard input is called stdin")
 
 
 def judge_accepted():
