@@ -18,8 +18,10 @@ static pw_code *append(pw_code *in, pw_code_kind kind, const char *text)
     item->sample = in->sample;
     item->section = in->section;
     item->arena = in->arena;
-    if (in->last) in->last->next = item;
-    else in->first = item;
+    if (in->last)
+        in->last->next = item;
+    else
+        in->first = item;
     in->last = item;
     return item;
 }
@@ -76,7 +78,8 @@ void pw_array_words(pw_code *in, const char *declaration, const int32_t *words, 
     item->count = count;
 }
 
-void pw_array_reals(pw_code *in, const char *declaration, const double *reals, long count, bool single)
+void pw_array_reals(pw_code *in, const char *declaration, const double *reals, long count,
+                    bool single)
 {
     pw_code *item = append(in, PW_CODE_ARRAY, declaration);
     item->reals = reals;

@@ -3,8 +3,9 @@
  * knows indentation, line lengths, comment marks and how a number is spelled in C.
  *
  * Text of an item may hold: $ for the name of the stage, @ for the C type of a sample, # for the
- * number of the section that the item belongs to and ` for one less (directives keep their #). Comments are plain
- * prose without substitution; what would end or upset a comment is made harmless. */
+ * number of the section that the item belongs to and ` for one less (directives keep their #).
+ * Comments are plain prose without substitution; what would end or upset a comment is made
+ * harmless. */
 #ifndef PW_EMIT_CODE_H
 #define PW_EMIT_CODE_H
 
@@ -59,7 +60,8 @@ void pw_constant(pw_code *in, const char *declaration, pw_number number, const c
 void pw_assign(pw_code *in, const char *what, pw_number number);         /* what = number; */
 void pw_entry(pw_code *in, pw_number number, const char *note);
 void pw_array_words(pw_code *in, const char *declaration, const int32_t *words, long count);
-void pw_array_reals(pw_code *in, const char *declaration, const double *reals, long count, bool single);
+void pw_array_reals(pw_code *in, const char *declaration, const double *reals, long count,
+                    bool single);
 pw_code *pw_block(pw_code *in, const char *head, const char *tail);
 pw_code *pw_function(pw_code *in, const char *head);
 pw_code *pw_comment(pw_code *in);

@@ -14,7 +14,8 @@ const char *pw_coupled_member(const pw_emission *e, const pw_words *w, int k)
 void pw_coupled_fields(const pw_emission *e, const pw_words *w, pw_code *in)
 {
     (void)w;
-    pw_put_with(in, "@ u1_#;", pw_arena_print(e->arena, "rotating state of section %d", in->section));
+    pw_put_with(in, "@ u1_#;",
+                pw_arena_print(e->arena, "rotating state of section %d", in->section));
     pw_put(in, "@ u2_#;");
 }
 
@@ -27,12 +28,15 @@ static void steady_constants(const pw_emission *e, const pw_words *w, pw_code *i
     if (e->integrates) return;
     pw_coupled_steady(w, gain, &fraction);
     for (int i = 0; i < 2; i++) {
-        const char *note = pw_arena_print(e->arena, "for a constant input u%d is %.9g times it: 2^31 high + low", i + 1,
-                                          ldexp((double)gain[i], -fraction));
+        const char *note = pw_arena_print(
+            e->arena, "for a constant input u%d is %.9g times it: 2^31 high + low", i + 1,
+            ldexp((double)gain[i], -fraction));
         pw_fixed_constant(e, in, high[i], gain[i] >> 31, 0, note);
-        pw_fixed_constant(e, in, low[i], gain[i] & INT32_MAX, 0, pw_arena_print(e->arena, "with %d fraction bits", fraction));
+        pw_fixed_constant(e, in, low[i], gain[i] & INT32_MAX, 0,
+                          pw_arena_print(e->arena, "with %d fraction bits", fraction));
     }
-    pw_fixed_constant(e, in, "steady_shift", fraction - 31, 0, "fraction bits of the gains, less 31");
+    pw_fixed_constant(e, in, "steady_shift", fraction - 31, 0,
+                      "fraction bits of the gains, less 31");
 }
 
 void pw_coupled_constants(const pw_emission *e, const pw_words *w, pw_code *in)
@@ -48,7 +52,8 @@ void pw_coupled_constants(const pw_emission *e, const pw_words *w, pw_code *in)
     if (!e->r->truncate && w->a_fraction > 0)
         pw_fixed_constant(e, in, "half", INT64_C(1) << (w->a_fraction - 1), 0, "half a step of u");
     if (!e->r->truncate && w->c_fraction > 0)
-        pw_fixed_constant(e, in, "c_half", INT64_C(1) << (w->c_fraction - 1), 0, "half a step of the output");
+        pw_fixed_constant(e, in, "c_half", INT64_C(1) << (w->c_fraction - 1), 0,
+                          "half a step of the output");
     steady_constants(e, w, in);
 }
 
@@ -59,16 +64,18 @@ static double reach(const pw_emission *e, int64_t a, int64_t b, int64_t c, int f
 }
 
 /* "const int64_t NAME = (SUM + half) >> shift;" */
-static void rounded(const pw_emission *e, pw_code *body, const char *name, const char *sum, const char *half,
-                    const char *by, int fraction, double most)
+static void rounded(const pw_emission *e, pw_code *body, const char *name, const char *sum,
+                    const char *half, const char *by, int fraction, double most)
 {
     const char *text = *sum ? sum : "0";
     if (!e->r->truncate && fraction > 0) text = pw_arena_print(e->arena, "%s + %s", text, half);
     if (fraction > 0) text = pw_arena_print(e->arena, "(%s) >> %s", text, by);
-    pw_put_with(body, pw_arena_print(e->arena, "const int64_t %s = %s;", name, text), pw_reach_note(e, most));
+    pw_put_with(body, pw_arena_print(e->arena, "const int64_t %s = %s;", name, text),
+                pw_reach_note(e, most));
 }
 
-static void output_sum(const pw_emission *e, const pw_words *w, pw_code *body, const char *u1, const char *u2)
+static void output_sum(const pw_emission *e, const pw_words *w, pw_code *body, const char *u1,
+                       const char *u2)
 {
     const char *y = pw_fixed_term(e, "", '+', PW_ACC_64, w->c1, "c1", u1);
     y = pw_fixed_term(e, y, '+', PW_ACC_64, w->c2, "c2", u2);
@@ -101,11 +108,13 @@ void pw_coupled_step(const pw_emission *e, const pw_words *w, pw_code *body)
 }
 
 /* (high 2^31 + low) x, rounded: the low 31 bits of the product cannot reach the rounding. */
-static const char *steady_product(const pw_emission *e, int64_t gain, const char *high, const char *low)
+static const char *steady_product(const pw_emission *e, int64_t gain, const char *high,
+                                  const char *low)
 {
     const char *sum = pw_fixed_term(e, "", '+', PW_ACC_64, gain >> 31, high, "x");
     if (gain & INT32_MAX)
-        sum = pw_arena_print(e->arena, "%s%s(((int64_t)$_%s_# * x) >> 31)", sum, *sum ? " + " : "", low);
+        sum = pw_arena_print(e->arena, "%s%s(((int64_t)$_%s_# * x) >> 31)", sum, *sum ? " + " : "",
+                             low);
     return *sum ? sum : "0";
 }
 

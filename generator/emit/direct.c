@@ -12,10 +12,15 @@ enum { X1, X2, Y1, Y2, E1, E2, MEMBERS };
 
 /* Where a section keeps its words: in members of its own, or, where kernels of the part take the
  * blocks, in the array of four that those read. */
-static const char *const own[MEMBERS] = {"s->x1_#", "s->x2_#", "s->y1_#", "s->y2_#", "s->e1_#", "s->e2_#"};
-static const char *const shared[MEMBERS] = {"s->d[`][0]", "s->d[`][1]", "s->d[`][2]", "s->d[`][3]", NULL, NULL};
+static const char *const own[MEMBERS] = {"s->x1_#", "s->x2_#", "s->y1_#",
+                                         "s->y2_#", "s->e1_#", "s->e2_#"};
+static const char *const shared[MEMBERS] = {"s->d[`][0]", "s->d[`][1]", "s->d[`][2]",
+                                            "s->d[`][3]", NULL,         NULL};
 
-static const char *factor(const pw_emission *e, int k) { return e->part_kernels ? shared[k] : own[k]; }
+static const char *factor(const pw_emission *e, int k)
+{
+    return e->part_kernels ? shared[k] : own[k];
+}
 
 static int align_of(const pw_words *w) { return w->b_fraction - w->a_fraction; }
 
@@ -35,7 +40,8 @@ pw_accumulator pw_direct_accumulator(const pw_emission *e, const pw_words *w)
 const char *pw_direct_member(const pw_emission *e, const pw_words *w, int k)
 {
     const bool kept[MEMBERS] = {
-        w->b[1] || w->b[2], w->b[2], w->a[1] || w->a[2], w->a[2], is_shaped(w), is_shaped(w) && w->k2,
+        w->b[1] || w->b[2],    w->b[2], w->a[1] || w->a[2], w->a[2], is_shaped(w),
+        is_shaped(w) && w->k2,
     };
     return k < MEMBERS && kept[k] ? factor(e, k) + 3 : NULL;
 }
@@ -43,28 +49,37 @@ const char *pw_direct_member(const pw_emission *e, const pw_words *w, int k)
 void pw_direct_fields(const pw_emission *e, const pw_words *w, pw_code *in)
 {
     static const char *const note[MEMBERS] = {
-        "input of section %d, a sample ago", "two samples ago", "output of section %d, a sample ago",
-        "two samples ago", "what rounding left, in units of the accumulator", "a sample before",
+        "input of section %d, a sample ago",
+        "two samples ago",
+        "output of section %d, a sample ago",
+        "two samples ago",
+        "what rounding left, in units of the accumulator",
+        "a sample before",
     };
     if (e->part_kernels) {
         if (in->section == 1)
-            pw_put_with(in, pw_arena_print(e->arena, "@ d[%d][4];", e->r->count),
-                        "x1 x2 y1 y2 of each section: its input and output, one and two samples ago");
+            pw_put_with(
+                in, pw_arena_print(e->arena, "@ d[%d][4];", e->r->count),
+                "x1 x2 y1 y2 of each section: its input and output, one and two samples ago");
         return;
     }
     for (int k = 0; k < MEMBERS; k++) {
         const char *member = pw_direct_member(e, w, k);
         if (!member) continue;
         const char *line = pw_arena_print(e->arena, "%s %s;", k < E1 ? "@" : "int32_t", member);
-        const char *meaning = k == X1 ? pw_arena_print(e->arena, note[X1], in->section)
-                            : k == Y1 ? pw_arena_print(e->arena, note[Y1], in->section) : note[k];
+        const char *meaning = k == X1   ? pw_arena_print(e->arena, note[X1], in->section)
+                              : k == Y1 ? pw_arena_print(e->arena, note[Y1], in->section)
+                                        : note[k];
         pw_put_with(in, line, meaning);
     }
 }
 
 int64_t pw_direct_gain_sum(const pw_words *w) { return (int64_t)w->b[0] + w->b[1] + w->b[2]; }
 
-static int64_t rest_of(const pw_words *w) { return (INT64_C(1) << w->a_fraction) + w->a[1] + w->a[2]; }
+static int64_t rest_of(const pw_words *w)
+{
+    return (INT64_C(1) << w->a_fraction) + w->a[1] + w->a[2];
+}
 
 static void settle_constants(const pw_emission *e, const pw_words *w, pw_code *in)
 {
@@ -86,9 +101,12 @@ void pw_direct_constants(const pw_emission *e, const pw_words *w, pw_code *in)
     pw_fixed_constant(e, in, "shift", shift, 0, "fraction bits of a and of the accumulator");
     if (align > 0) {
         pw_fixed_constant(e, in, "align", align, 0, "fraction bits that b has more");
-        pw_fixed_constant(e, in, "align_half", INT64_C(1) << (align - 1), 0, "half of its last bit");
+        pw_fixed_constant(e, in, "align_half", INT64_C(1) << (align - 1), 0,
+                          "half of its last bit");
     }
-    if (align < 0) pw_fixed_constant(e, in, "align", INT64_C(1) << -align, 0, "2^(fraction bits that b has fewer)");
+    if (align < 0)
+        pw_fixed_constant(e, in, "align", INT64_C(1) << -align, 0,
+                          "2^(fraction bits that b has fewer)");
     if (!e->r->truncate && shift > 0)
         pw_fixed_constant(e, in, "half", INT64_C(1) << (shift - 1), 0, "half a step of the output");
     settle_constants(e, w, in);
@@ -110,9 +128,10 @@ static void accumulate(const pw_emission *e, const pw_words *w, pw_accumulator a
     p = pw_fixed_term(e, p, '+', acc, w->b[0], "b0", "x");
     p = pw_fixed_term(e, p, '+', acc, w->b[1], "b1", factor(e, X1));
     p = pw_fixed_term(e, p, '+', acc, w->b[2], "b2", factor(e, X2));
-    pw_put_with(body, pw_arena_print(e->arena, "%s acc = %s;", pw_accumulator_type(acc), *p ? p : "0"),
-                acc == PW_ACC_MODULO ? "modulo 2^32: its last value fits 32 bits, whatever the samples"
-                                     : pw_reach_note(e, pw_direct_reach(e, w)));
+    pw_put_with(
+        body, pw_arena_print(e->arena, "%s acc = %s;", pw_accumulator_type(acc), *p ? p : "0"),
+        acc == PW_ACC_MODULO ? "modulo 2^32: its last value fits 32 bits, whatever the samples"
+                             : pw_reach_note(e, pw_direct_reach(e, w)));
     align_statement(w, body, "acc");
     rest = pw_fixed_term(e, rest, '-', acc, w->a[1], "a1", factor(e, Y1));
     rest = pw_fixed_term(e, rest, '-', acc, w->a[2], "a2", factor(e, Y2));
@@ -121,14 +140,16 @@ static void accumulate(const pw_emission *e, const pw_words *w, pw_accumulator a
         rest = pw_fixed_term(e, rest, '+', acc, w->k2, "k2", factor(e, E2));
     }
     const char *note = pw_bound_note(e, body->section, "accumulator");
-    if (rest[3]) pw_put_with(body, pw_arena_print(e->arena, "acc = %s;", rest), *note ? note : NULL);
+    if (rest[3])
+        pw_put_with(body, pw_arena_print(e->arena, "acc = %s;", rest), *note ? note : NULL);
 }
 
 static void round_off(const pw_emission *e, const pw_words *w, pw_accumulator acc, pw_code *body)
 {
     const char *wide = acc == PW_ACC_64 ? "int64_t" : "int32_t";
     const char *sum = e->r->truncate || w->a_fraction == 0 ? "acc"
-                    : acc == PW_ACC_MODULO ? "(acc + (uint32_t)$_half_#)" : "(acc + $_half_#)";
+                      : acc == PW_ACC_MODULO               ? "(acc + (uint32_t)$_half_#)"
+                                                           : "(acc + $_half_#)";
     const char *cast = acc == PW_ACC_MODULO ? "(int32_t)" : "";
     const char *by = w->a_fraction > 0 ? " >> $_shift_#" : "";
     pw_put(body, pw_arena_print(e->arena, "const %s v = %s%s%s;", wide, cast, sum, by));
@@ -137,7 +158,8 @@ static void round_off(const pw_emission *e, const pw_words *w, pw_accumulator ac
 /* "s->TO = FROM;" where the section keeps it. */
 static void keep(const pw_emission *e, const pw_words *w, pw_code *body, int to, const char *from)
 {
-    if (pw_direct_member(e, w, to)) pw_put(body, pw_arena_print(e->arena, "%s = %s;", factor(e, to), from));
+    if (pw_direct_member(e, w, to))
+        pw_put(body, pw_arena_print(e->arena, "%s = %s;", factor(e, to), from));
 }
 
 static void remember(const pw_emission *e, const pw_words *w, pw_accumulator acc, pw_code *body)
@@ -148,9 +170,11 @@ static void remember(const pw_emission *e, const pw_words *w, pw_accumulator acc
     keep(e, w, body, Y1, "y");
     if (!is_shaped(w)) return;
     keep(e, w, body, E2, factor(e, E1));
-    keep(e, w, body, E1, acc == PW_ACC_64 ? "y == v ? (int32_t)(acc - v * ((int64_t)1 << $_shift_#)) : 0"
-                       : acc == PW_ACC_32 ? "y == v ? acc - v * ((int32_t)1 << $_shift_#) : 0"
-                       : "y == v ? (int32_t)(acc - (uint32_t)v * ((uint32_t)1 << $_shift_#)) : 0");
+    keep(e, w, body, E1,
+         acc == PW_ACC_64 ? "y == v ? (int32_t)(acc - v * ((int64_t)1 << $_shift_#)) : 0"
+         : acc == PW_ACC_32
+             ? "y == v ? acc - v * ((int32_t)1 << $_shift_#) : 0"
+             : "y == v ? (int32_t)(acc - (uint32_t)v * ((uint32_t)1 << $_shift_#)) : 0");
 }
 
 /* What a function of a section without state, or without input, leaves unused. */
@@ -222,13 +246,29 @@ static bool coupled_fits(const pw_emission *e, const pw_words *w)
 }
 
 const pw_form pw_forms_fixed[] = {
-    {.name = "gain", .fits = gain_fits, .fields = pw_direct_fields, .constants = pw_direct_constants,
-     .helpers = pw_fixed_helpers, .step = direct_step, .settle = pw_direct_settle, .member = pw_direct_member},
-    {.name = "direct form 1", .fits = direct_fits, .fields = pw_direct_fields,
-     .constants = pw_direct_constants, .helpers = pw_fixed_helpers, .step = direct_step,
-     .settle = pw_direct_settle, .member = pw_direct_member},
-    {.name = "coupled form", .fits = coupled_fits, .fields = pw_coupled_fields,
-     .constants = pw_coupled_constants, .helpers = pw_fixed_helpers, .step = pw_coupled_step,
-     .settle = pw_coupled_settle, .member = pw_coupled_member},
+    {.name = "gain",
+     .fits = gain_fits,
+     .fields = pw_direct_fields,
+     .constants = pw_direct_constants,
+     .helpers = pw_fixed_helpers,
+     .step = direct_step,
+     .settle = pw_direct_settle,
+     .member = pw_direct_member},
+    {.name = "direct form 1",
+     .fits = direct_fits,
+     .fields = pw_direct_fields,
+     .constants = pw_direct_constants,
+     .helpers = pw_fixed_helpers,
+     .step = direct_step,
+     .settle = pw_direct_settle,
+     .member = pw_direct_member},
+    {.name = "coupled form",
+     .fits = coupled_fits,
+     .fields = pw_coupled_fields,
+     .constants = pw_coupled_constants,
+     .helpers = pw_fixed_helpers,
+     .step = pw_coupled_step,
+     .settle = pw_coupled_settle,
+     .member = pw_coupled_member},
     {.name = NULL},
 };

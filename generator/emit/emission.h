@@ -23,14 +23,14 @@ typedef struct pw_emission {
     bool fixed, standalone;
     bool single;                 /* float32 */
     bool integrates;             /* a section does: settle is reset */
-    bool counts;                 /* a clamp is left somewhere, so that there is something to count */
-    bool part_kernels;           /* all sections have kernels of the part, and state d[] that those read */
+    bool counts;                 /* a clamp is left somewhere: there is something to count */
+    bool part_kernels;           /* all sections have kernels of the part, which read s->d[] */
     const struct pw_form *form[PW_MAX_SECTIONS];
     pw_arena *arena;
 } pw_emission;
 
 typedef struct pw_form {
-    const char *name;            /* for the comment above a section: "direct-1, 64-bit accumulator" */
+    const char *name;            /* for the comment above a section: "direct form 1" */
     bool (*fits)(const pw_emission *e, const pw_words *w);
     /* Members of the state struct. */
     void (*fields)(const pw_emission *e, const pw_words *w, pw_code *in);
@@ -38,7 +38,7 @@ typedef struct pw_form {
     void (*constants)(const pw_emission *e, const pw_words *w, pw_code *in);
     /* Functions that it needs, at file scope; once a file, by pw_once on file. null: none. */
     void (*helpers)(const pw_emission *e, const pw_words *w, pw_code *file);
-    /* The body of "static @ $_section_#($_state *s, @ x)", which returns y. null: has block instead. */
+    /* The body of "static @ $_section_#($_state *s, @ x)", which returns y. null: has block. */
     void (*step)(const pw_emission *e, const pw_words *w, pw_code *body);
     /* Statements that take the section over the n samples at IN to out, in a scope that has s, in,
      * out, n; in is the text of the input pointer: "in" for the first section, "out" after it.

@@ -32,7 +32,8 @@ static void state_struct(const pw_emission *e, pw_code *file)
     for (int k = 0; k < e->r->count; k++)
         e->form[k]->fields(e, &e->r->section[k], pw_section_group(members, k + 1));
     if (e->counts)
-        pw_put_with(members, "uint32_t clipped;", pw_arena_print(e->arena, "see %s_clipped", e->stage));
+        pw_put_with(members, "uint32_t clipped;",
+                    pw_arena_print(e->arena, "see %s_clipped", e->stage));
     if (!has_state(e)) pw_put_with(members, "char none;", "a gain keeps nothing");
 }
 
@@ -44,18 +45,22 @@ static void prototypes(const pw_emission *e, pw_code *file)
     pw_blank(file);
     pw_code *comment = pw_comment(file);
     if (e->integrates)
-        pw_prose(comment, "This stage integrates: no steady state goes with a constant input, so settle does what reset does.");
+        pw_prose(comment, "This stage integrates: no steady state goes with a constant input, so "
+                          "settle does what reset does.");
     else if (e->fixed)
-        pw_prose(comment, "The state as if x had been there for ever, so that a filter starts without a thump. Also clears the count of clips.");
+        pw_prose(comment, "The state as if x had been there for ever, so that a filter starts "
+                          "without a thump. Also clears the count of clips.");
     else
-        pw_prose(comment, "The state as if x had been there for ever, so that a filter starts without a thump.");
+        pw_prose(
+            comment,
+            "The state as if x had been there for ever, so that a filter starts without a thump.");
     pw_put(file, "void $_settle($_state *s, @ x);");
     if (!e->fixed) return;
     pw_blank(file);
-    pw_comment_line(file, e->counts
-        ? (e->r->wrap ? "How many times a node wrapped since reset, modulo 2^32."
-                      : "How many times a node clipped since reset, modulo 2^32.")
-        : "How many times a node clipped since reset: always 0, no node can.");
+    pw_comment_line(
+        file, e->counts ? (e->r->wrap ? "How many times a node wrapped since reset, modulo 2^32."
+                                      : "How many times a node clipped since reset, modulo 2^32.")
+                        : "How many times a node clipped since reset: always 0, no node can.");
     pw_put(file, "uint32_t $_clipped(const $_state *s);");
 }
 
@@ -74,7 +79,8 @@ static void header_file(const pw_emission *e, pw_code *header)
         pw_directive(header, pw_arena_print(e->arena, "#include \"pw_%s.h\"", e->family));
         pw_blank(header);
         pw_directive(header, "#if PW_RUNTIME_FORMAT != 1");
-        pw_directive(header, "#error \"$ was made for format 1 of the runtime: build it again, or take the pw_ files that were made with it\"");
+        pw_directive(header, "#error \"$ was made for format 1 of the runtime: build it again, or "
+                             "take the pw_ files that were made with it\"");
         pw_directive(header, "#endif");
     }
     pw_blank(header);
@@ -99,7 +105,8 @@ static void machine_checks(const pw_emission *e, pw_code *file)
     pw_blank(file);
     if (e->fixed) {
         pw_directive(file, "#if !defined(INT16_MAX) || !defined(INT32_MAX) || !defined(INT64_MAX)");
-        pw_directive(file, "#error \"$ needs int16_t, int32_t and int64_t: use a compiler with C99's <stdint.h>\"");
+        pw_directive(file, "#error \"$ needs int16_t, int32_t and int64_t: use a compiler with "
+                           "C99's <stdint.h>\"");
         pw_directive(file, "#endif");
         pw_put(file, "typedef char $_needs_a_compiler_whose_right_shift_is_arithmetic"
                      "[((int32_t)-3 >> 1) == -2 && ((int64_t)-3 >> 1) == -2 ? 1 : -1];");
@@ -124,8 +131,10 @@ static void sections(const pw_emission *e, pw_code *file)
         const pw_form *form = e->form[k];
         pw_code *group = pw_section_group(file, k + 1);
         pw_blank(group);
-        pw_comment_line(group, pw_arena_print(e->arena, "---- Section %d: %s, order %d ----", k + 1,
-                                              e->standalone ? form->name : pw_structure_word(w->structure), w->order));
+        pw_comment_line(group,
+                        pw_arena_print(e->arena, "---- Section %d: %s, order %d ----", k + 1,
+                                       e->standalone ? form->name : pw_structure_word(w->structure),
+                                       w->order));
         pw_blank(group);
         form->constants(e, w, group);
         if (form->step) {
@@ -170,15 +179,18 @@ static pw_status stepping(const pw_emission *e, pw_code *file)
     const pw_cascade kernels = {e->r, e->target, e->part_kernels, member_of, e};
     pw_blank(file);
     pw_code *f = pw_function(file, "static inline @ $_cascade($_state *s, @ x)");
-    for (int k = 0; k < e->r->count; k++) pw_put(pw_section_group(f, k + 1), "x = $_section_#(s, x);");
+    for (int k = 0; k < e->r->count; k++)
+        pw_put(pw_section_group(f, k + 1), "x = $_section_#(s, x);");
     pw_put(f, "return x;");
     pw_blank(file);
     f = pw_function(file, "@ $_step($_state *s, @ x)");
     pw_put(f, "return $_cascade(s, x);");
     if (pw_cascade_fits(&kernels)) return pw_cascade_emit(&kernels, file);
     pw_blank(file);
-    if (pw_cascade_floats_fit(&kernels)) pw_cascade_floats(&kernels, file);
-    else block_of_steps(file);
+    if (pw_cascade_floats_fit(&kernels))
+        pw_cascade_floats(&kernels, file);
+    else
+        block_of_steps(file);
     return PW_OK;
 }
 
@@ -212,15 +224,18 @@ static pw_status interface(const pw_emission *e, pw_code *file)
     pw_blank(file);
     pw_code *f = pw_function(file, "void $_reset($_state *s)");
     pw_put(f, "memset(s, 0, sizeof *s);");
-    if (all_step(e)) status = stepping(e, file);
-    else blocking(e, file);
+    if (all_step(e))
+        status = stepping(e, file);
+    else
+        blocking(e, file);
     pw_blank(file);
     f = pw_function(file, "void $_settle($_state *s, @ x)");
     pw_put(f, "$_reset(s);");
     if (e->integrates) pw_put(f, "(void)x;");
     for (int k = 0; k < e->r->count && !e->integrates; k++) {
         bool last = k == e->r->count - 1;
-        pw_put(pw_section_group(f, k + 1), last ? "(void)$_settle_#(s, x);" : "x = $_settle_#(s, x);");
+        pw_put(pw_section_group(f, k + 1),
+               last ? "(void)$_settle_#(s, x);" : "x = $_settle_#(s, x);");
     }
     if (!e->fixed) return status;
     pw_blank(file);
@@ -234,7 +249,8 @@ static pw_status source_file(const pw_emission *e, pw_code *source)
 {
     pw_comment_line(source, "SPDX-License-Identifier: 0BSD");
     pw_code *comment = pw_comment(source);
-    pw_prose(comment, "Made by polewright %s; the story is in %s.h. Build: %s", PW_VERSION, e->stage, pw_build_line(e));
+    pw_prose(comment, "Made by polewright %s; the story is in %s.h. Build: %s", PW_VERSION,
+             e->stage, pw_build_line(e));
     pw_directive(source, "#include \"$.h\"");
     pw_blank(source);
     if (e->standalone && !e->fixed) pw_directive(source, "#include <float.h>");
@@ -261,8 +277,10 @@ static pw_status copy_runtime(const pw_emission *e, pw_fileset *out)
     const char *source = pw_arena_print(e->arena, "pw_%s.c", e->family);
     pw_status status = copy_file("include/polewright/pw_runtime.h", "pw_runtime.h", out);
     if (status == PW_OK && e->fixed) status = copy_file("runtime/pw_fixed.h", "pw_fixed.h", out);
-    if (status == PW_OK) status = copy_file(pw_arena_print(e->arena, "runtime/%s", header), header, out);
-    if (status == PW_OK) status = copy_file(pw_arena_print(e->arena, "runtime/%s", source), source, out);
+    if (status == PW_OK)
+        status = copy_file(pw_arena_print(e->arena, "runtime/%s", header), header, out);
+    if (status == PW_OK)
+        status = copy_file(pw_arena_print(e->arena, "runtime/%s", source), source, out);
     return status;
 }
 

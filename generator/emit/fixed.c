@@ -15,8 +15,8 @@ static const char *smallest_type(int64_t value)
     return value >= INT32_MIN && value <= INT32_MAX ? "int32_t" : "int64_t";
 }
 
-void pw_fixed_constant(const pw_emission *e, pw_code *in, const char *name, int64_t value, int fraction,
-                       const char *note)
+void pw_fixed_constant(const pw_emission *e, pw_code *in, const char *name, int64_t value,
+                       int fraction, const char *note)
 {
     if (value == 0) return;
     if (!note) note = pw_word_note(e, name, ldexp((double)value, -fraction));
@@ -30,8 +30,10 @@ const char *pw_fixed_term(const pw_emission *e, const char *sum, char sign, pw_a
     const char *lead = *sum ? (sign == '-' ? " - " : " + ") : (sign == '-' ? "-" : "");
     if (value == 0) return sum;
     if (acc == PW_ACC_MODULO)
-        return pw_arena_print(e->arena, "%s%s(uint32_t)((int32_t)$_%s_# * %s)", sum, lead, name, factor);
-    return pw_arena_print(e->arena, "%s%s(%s)$_%s_# * %s", sum, lead, pw_accumulator_type(acc), name, factor);
+        return pw_arena_print(e->arena, "%s%s(uint32_t)((int32_t)$_%s_# * %s)", sum, lead, name,
+                              factor);
+    return pw_arena_print(e->arena, "%s%s(%s)$_%s_# * %s", sum, lead, pw_accumulator_type(acc),
+                          name, factor);
 }
 
 static void counting_helper(const pw_emission *e, pw_code *file)
@@ -42,13 +44,16 @@ static void counting_helper(const pw_emission *e, pw_code *file)
     pw_blank(file);
     pw_comment_line(file, comment);
     pw_code *f = pw_function(file, "static @ $_into_word($_state *s, int64_t v)");
-    pw_put(f, pw_arena_print(e->arena, "if (v >= INT%d_MIN && v <= INT%d_MAX) return (@)v;", e->bits, e->bits));
+    pw_put(f, pw_arena_print(e->arena, "if (v >= INT%d_MIN && v <= INT%d_MAX) return (@)v;",
+                             e->bits, e->bits));
     pw_put(f, "s->clipped++;");
     if (!e->r->wrap) {
-        pw_put(f, pw_arena_print(e->arena, "return v < 0 ? INT%d_MIN : INT%d_MAX;", e->bits, e->bits));
+        pw_put(f,
+               pw_arena_print(e->arena, "return v < 0 ? INT%d_MIN : INT%d_MAX;", e->bits, e->bits));
         return;
     }
-    const char *half = e->bits == 16 ? "0x8000" : "0x80000000", *mask = e->bits == 16 ? "0xffff" : "0xffffffff";
+    const char *half = e->bits == 16 ? "0x8000" : "0x80000000",
+               *mask = e->bits == 16 ? "0xffff" : "0xffffffff";
     pw_put(f, pw_arena_print(e->arena, "v = (int64_t)(((uint64_t)v + %su) & %su);", half, mask));
     pw_put(f, pw_arena_print(e->arena, "return (@)(v - (int64_t)%s);", half));
 }
@@ -59,7 +64,8 @@ static void clamp_helper(const pw_emission *e, pw_code *file)
     pw_blank(file);
     pw_code *f = pw_function(file, "static @ $_clamp(int64_t v)");
     pw_put(f, pw_arena_print(e->arena, "if (v > INT%d_MAX) return INT%d_MAX;", e->bits, e->bits));
-    pw_put(f, pw_arena_print(e->arena, "return v < INT%d_MIN ? INT%d_MIN : (@)v;", e->bits, e->bits));
+    pw_put(f,
+           pw_arena_print(e->arena, "return v < INT%d_MIN ? INT%d_MIN : (@)v;", e->bits, e->bits));
 }
 
 static void ratio_helper(const pw_emission *e, pw_code *file)
@@ -78,7 +84,7 @@ void pw_fixed_helpers(const pw_emission *e, const pw_words *w, pw_code *file)
 {
     if (!w->cannot_clip) counting_helper(e, file);
     bool direct = w->structure != PW_COUPLED && w->order > 0;
-    if (e->integrates || (direct && pw_direct_gain_sum(w) == 0)) return;   /* settle needs none */
+    if (e->integrates || (direct && pw_direct_gain_sum(w) == 0)) return; /* settle needs none */
     clamp_helper(e, file);
     if (direct) ratio_helper(e, file);
 }
@@ -88,7 +94,7 @@ void pw_fixed_into_word(const pw_emission *e, const pw_words *w, pw_code *body, 
 {
     const char *note = pw_bound_note(e, body->section, node);
     const char *line = w->cannot_clip
-        ? pw_arena_print(e->arena, "const @ %s = (@)%s;", name, v)
-        : pw_arena_print(e->arena, "const @ %s = $_into_word(s, %s);", name, v);
+                           ? pw_arena_print(e->arena, "const @ %s = (@)%s;", name, v)
+                           : pw_arena_print(e->arena, "const @ %s = $_into_word(s, %s);", name, v);
     pw_put_with(body, line, *note ? note : NULL);
 }

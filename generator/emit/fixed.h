@@ -11,12 +11,15 @@ typedef enum pw_accumulator { PW_ACC_64, PW_ACC_32, PW_ACC_MODULO } pw_accumulat
 
 pw_accumulator pw_direct_accumulator(const pw_emission *e, const pw_words *w);
 
-/* A constant "static const TYPE $_NAME_#" in the smallest of int16_t, int32_t, int64_t; nothing where
- * the value is 0. fraction gives the real value of the note; note replaces it where not null. */
-void pw_fixed_constant(const pw_emission *e, pw_code *in, const char *name, int64_t value, int fraction,
+/* A constant "static const TYPE $_NAME_#" in the smallest of int16_t, int32_t, int64_t; nothing
+ * where the value is 0. fraction gives the real value of the note; note replaces it where not null.
+ * */
+void pw_fixed_constant(const pw_emission *e, pw_code *in, const char *name, int64_t value,
+                       int fraction,
                        const char *note);
 
-/* The sum with one product more: "SUM + (TYPE)$_NAME_# * FACTOR"; SUM itself where the word is 0. */
+/* The sum with one product more: "SUM + (TYPE)$_NAME_# * FACTOR"; SUM itself where the word is 0.
+ * */
 const char *pw_fixed_term(const pw_emission *e, const char *sum, char sign, pw_accumulator acc,
                           int64_t value, const char *name, const char *factor);
 

@@ -22,7 +22,8 @@ static const pw_form *choose(const pw_emission *e, const pw_words *w)
     return NULL;
 }
 
-/* Standalone fixed-point code all of whose sections have kernels keeps its state as those read it. */
+/* Standalone fixed-point code all of whose sections have kernels keeps its state as those read it.
+ * */
 static bool all_kernels(const pw_emission *e)
 {
     const pw_cascade cascade = {.realisation = e->r, .target = e->target};
@@ -36,10 +37,17 @@ void pw_emission_begin(pw_emission *e, const pw_results *results, pw_arena *aren
     static const int bits[] = {0, 0, 32, 16};
     const pw_realisation *r = &results->realisation;
     *e = (pw_emission){
-        .results = results, .r = r, .target = &results->target, .stage = results->stage->name,
-        .type = type[r->sample], .family = family[r->sample], .bits = bits[r->sample],
-        .fixed = bits[r->sample] > 0, .standalone = results->stage->arithmetic.standalone,
-        .single = r->sample == PW_FLOAT32, .arena = arena,
+        .results = results,
+        .r = r,
+        .target = &results->target,
+        .stage = results->stage->name,
+        .type = type[r->sample],
+        .family = family[r->sample],
+        .bits = bits[r->sample],
+        .fixed = bits[r->sample] > 0,
+        .standalone = results->stage->arithmetic.standalone,
+        .single = r->sample == PW_FLOAT32,
+        .arena = arena,
     };
     for (int k = 0; k < r->count; k++) {
         e->form[k] = choose(e, &r->section[k]);
@@ -59,7 +67,8 @@ double pw_direct_reach(const pw_emission *e, const pw_words *w)
     double aligned = right > 0 ? ldexp(p, -right) + 1 : ldexp(p, -right);
     double error = ldexp(1, w->a_fraction);
     double acc = aligned + largest * (fabs((double)w->a[1]) + fabs((double)w->a[2]))
-                 + error * (fabs((double)w->k1) + fabs((double)w->k2)) + ldexp(1, w->a_fraction - 1);
+                 + error * (fabs((double)w->k1) + fabs((double)w->k2))
+                 + ldexp(1, w->a_fraction - 1);
     return fmax(in, acc);
 }
 

@@ -39,8 +39,10 @@ void pw_number_render(pw_number number, pw_text *out)
         render_integer(number.word, out);
         return;
     }
-    if (number.kind == PW_SINGLE) pw_shortest_float(buffer, (float)number.real);
-    else pw_shortest(buffer, number.real);
+    if (number.kind == PW_SINGLE)
+        pw_shortest_float(buffer, (float)number.real);
+    else
+        pw_shortest(buffer, number.real);
     pw_text_add(out, buffer);
     if (!strpbrk(buffer, ".e")) pw_text_add(out, ".0");
     if (number.kind == PW_SINGLE) pw_text_add(out, "f");
@@ -52,11 +54,16 @@ void pw_number_render(pw_number number, pw_text *out)
 static void expand(const pw_code *item, const char *text, pw_text *out)
 {
     for (const char *c = text; *c; c++) {
-        if (*c == '$') pw_text_add(out, item->stage);
-        else if (*c == '@') pw_text_add(out, item->sample);
-        else if (*c == '#' && item->kind != PW_CODE_DIRECTIVE) pw_text_print(out, "%d", item->section);
-        else if (*c == '`') pw_text_print(out, "%d", item->section - 1);
-        else pw_text_add_bytes(out, c, 1);
+        if (*c == '$')
+            pw_text_add(out, item->stage);
+        else if (*c == '@')
+            pw_text_add(out, item->sample);
+        else if (*c == '#' && item->kind != PW_CODE_DIRECTIVE)
+            pw_text_print(out, "%d", item->section);
+        else if (*c == '`')
+            pw_text_print(out, "%d", item->section - 1);
+        else
+            pw_text_add_bytes(out, c, 1);
     }
 }
 
@@ -64,7 +71,7 @@ static void expand(const pw_code *item, const char *text, pw_text *out)
 static bool good_break(const char *text, size_t i, bool code)
 {
     return !code || text[i - 1] == ',' || (strchr("+-&|?:", text[i + 1]) && text[i + 2] == ' ')
-        || !strncmp(text + i + 1, "&& ", 3) || !strncmp(text + i + 1, ">> ", 3);
+           || !strncmp(text + i + 1, "&& ", 3) || !strncmp(text + i + 1, ">> ", 3);
 }
 
 /* Where to break text so that it fits: the last good space within room, else the last space, else
@@ -88,7 +95,7 @@ static size_t break_at(const char *text, size_t size, size_t room, bool code)
 static void put_code(const char *text, int indent, pw_text *out)
 {
     size_t size = strlen(text);
-    for (int at = indent; ; at = indent + 2 * STEP) {
+    for (int at = indent;; at = indent + 2 * STEP) {
         size_t n = break_at(text, size, (size_t)(WIDTH - at), true);
         indent_by(out, at);
         pw_text_add_bytes(out, text, n);
@@ -123,7 +130,8 @@ static void soften(const char *prose, pw_text *out)
             continue;
         }
         pw_text_add_bytes(out, c, 1);
-        if ((c[0] == '*' && c[1] == '/') || (c[0] == '/' && c[1] == '*') || (c[0] == '?' && c[1] == '?'))
+        if ((c[0] == '*' && c[1] == '/') || (c[0] == '/' && c[1] == '*')
+            || (c[0] == '?' && c[1] == '?'))
             pw_text_add(out, " ");
         if (c[0] == '\\' && c[1] == 0) pw_text_add(out, " .");
     }
@@ -137,7 +145,7 @@ static void put_paragraph(const char *prose, int indent, bool first, bool closes
     const char *text = pw_text_string(&soft);
     int hang = (int)strspn(text, " ");
     size_t size = strlen(text);
-    for (bool begin = true; ; begin = false) {
+    for (bool begin = true;; begin = false) {
         size_t room = (size_t)(WIDTH - indent - 6 - (begin ? 0 : hang));
         size_t n = break_at(text, size, room, false);
         indent_by(out, indent);
@@ -191,8 +199,10 @@ static void put_array(const pw_code *item, int indent, pw_text *out)
     for (long i = 0; i < item->count; i++) {
         size_t before = line.size;
         pw_number number = item->number;
-        if (item->words) number.word = item->words[i];
-        else number.real = item->reals[i];
+        if (item->words)
+            number.word = item->words[i];
+        else
+            number.real = item->reals[i];
         pw_text_add(&line, before ? " " : "");
         pw_number_render(number, &line);
         pw_text_add(&line, ",");
@@ -254,16 +264,19 @@ static void render(const pw_code *item, int indent, pw_text *out)
     case PW_CODE_FILE: render_children(item, indent, out); break;
     case PW_CODE_COMMENT: put_comment(item, indent, out); break;
     case PW_CODE_PARAGRAPH: break;
-    case PW_CODE_DIRECTIVE: expand(item, item->text, out); pw_text_add(out, "\n"); break;
-    case PW_CODE_LINE: case PW_CODE_CONSTANT: case PW_CODE_ENTRY: render_line(item, indent, out); break;
+    case PW_CODE_DIRECTIVE:
+        expand(item, item->text, out);
+        pw_text_add(out, "\n");
+        break;
+    case PW_CODE_LINE:
+    case PW_CODE_CONSTANT:
+    case PW_CODE_ENTRY: render_line(item, indent, out); break;
     case PW_CODE_ARRAY: put_array(item, indent, out); break;
-    case PW_CODE_BLOCK: case PW_CODE_FUNCTION: render_braces(item, indent, out); break;
+    case PW_CODE_BLOCK:
+    case PW_CODE_FUNCTION: render_braces(item, indent, out); break;
     case PW_CODE_RAW: pw_text_add(out, item->text); break;
     case PW_CODE_BLANK: pw_text_add(out, "\n"); break;
     }
 }
 
-void pw_code_render(const pw_code *file, pw_text *out)
-{
-    render(file, 0, out);
-}
+void pw_code_render(const pw_code *file, pw_text *out) { render(file, 0, out); }

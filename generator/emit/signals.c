@@ -10,9 +10,9 @@
 /* What values a signal of this stage may take. */
 typedef struct span {
     bool fixed;
-    double unit;                 /* samples to full scale */
-    double high, low;            /* ends within the peak, in samples */
-    double step;                 /* floats: what inputs are multiples of */
+    double unit; /* samples to full scale */
+    double high, low; /* ends within the peak, in samples */
+    double step; /* floats: what inputs are multiples of */
 } span;
 
 static span span_of(const pw_realisation *r)
@@ -50,7 +50,8 @@ static void make_noise(const span *s, uint64_t seed, double *x, long n)
     }
 }
 
-static void make_sine(const span *s, double rate, const double band[2], double *x, long n, pw_vector *v)
+static void make_sine(const span *s, double rate, const double band[2], double *x, long n,
+                      pw_vector *v)
 {
     double periods = fmax(1, rint(sqrt(band[0] * band[1]) / rate * (double)n));
     if (2 * periods >= (double)n) periods = fmax(1, floor(((double)n - 1) / 2));
@@ -61,7 +62,8 @@ static void make_sine(const span *s, double rate, const double band[2], double *
     }
 }
 
-static void make_sweep(const span *s, double rate, const double band[2], double *x, long n, pw_vector *v)
+static void make_sweep(const span *s, double rate, const double band[2], double *x, long n,
+                       pw_vector *v)
 {
     v->hz = fmin(fmax(band[0], rate / (double)n), band[1] / 2);
     v->hz_end = band[1];
@@ -73,7 +75,8 @@ static void make_sweep(const span *s, double rate, const double band[2], double 
     }
 }
 
-static void make_square(const span *s, double rate, const pw_response *response, double *x, long n, pw_vector *v)
+static void make_square(const span *s, double rate, const pw_response *response, double *x, long n,
+                        pw_vector *v)
 {
     double best = -INFINITY, hz = rate / 4;
     for (int i = 0; i < response->rows; i++) {

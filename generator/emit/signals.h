@@ -18,7 +18,8 @@ typedef struct pw_vector {
     uint64_t clipped;                    /* times that a node clipped on the way */
 } pw_vector;
 
-/* Every signal from rest, but for silence where a limit cycle was found: that starts from its state.
+/* Every signal from rest, but for silence where a limit cycle was found: that starts from its
+ * state.
  *   impulse            the peak, then 0
  *   step               the peak from n = 0 on
  *   sine               of the peak, whole periods in the length, nearest to the middle of the band
@@ -29,8 +30,8 @@ typedef struct pw_vector {
  *                      response is largest: what clips, clips here
  *   overflow-probe     the worst input within the peak for the fullest node
  *   silence            0
- * Peak: signal.input.peak, of full scale. Float inputs have 23 significant bits at the peak, so that
- * float32 holds them exactly. */
+ * Peak: signal.input.peak, of full scale. Float inputs have 23 significant bits at the peak, so
+ * that float32 holds them exactly. */
 void pw_vector_make(const pw_results *results, pw_signal signal, pw_vector *out);
 void pw_vector_free(pw_vector *vector);
 

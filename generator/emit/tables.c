@@ -3,9 +3,20 @@
 #include "emit/emission.h"
 #include "simulate/simulate.h"
 
-static bool is_gain(const pw_emission *e, const pw_words *w) { (void)e; return w->order == 0 && w->structure != PW_COUPLED; }
-static bool fits_runtime(const pw_emission *e, const pw_words *w) { (void)w; return !e->standalone; }
-static bool fits_gain(const pw_emission *e, const pw_words *w) { return !e->standalone && is_gain(e, w); }
+static bool is_gain(const pw_emission *e, const pw_words *w)
+{
+    (void)e;
+    return w->order == 0 && w->structure != PW_COUPLED;
+}
+static bool fits_runtime(const pw_emission *e, const pw_words *w)
+{
+    (void)w;
+    return !e->standalone;
+}
+static bool fits_gain(const pw_emission *e, const pw_words *w)
+{
+    return !e->standalone && is_gain(e, w);
+}
 
 /* The kernel's name in the runtime: "direct", "coupled", "second_transposed". */
 static const char *kernel_name(const pw_emission *e, const pw_words *w)
@@ -21,16 +32,20 @@ static const char *kernel_name(const pw_emission *e, const pw_words *w)
 
 static void fields(const pw_emission *e, const pw_words *w, pw_code *in)
 {
-    const char *state = e->fixed ? kernel_name(e, w) : w->structure == PW_DIRECT_1 ? "direct" : "transposed";
+    const char *state = e->fixed                      ? kernel_name(e, w)
+                        : w->structure == PW_DIRECT_1 ? "direct"
+                                                      : "transposed";
     if (is_gain(e, w)) return;
     pw_put(in, pw_arena_print(e->arena, "pw_%s_%s_state section_#;", e->family, state));
 }
 
 static const char *member(const pw_emission *e, const pw_words *w, int k)
 {
-    static const char *const direct[] = {"section_#.x1", "section_#.x2", "section_#.y1", "section_#.y2"};
-    static const char *const shaped[] = {"section_#.direct.x1", "section_#.direct.x2", "section_#.direct.y1",
-                                         "section_#.direct.y2", "section_#.e1", "section_#.e2"};
+    static const char *const direct[] = {"section_#.x1", "section_#.x2", "section_#.y1",
+                                         "section_#.y2"};
+    static const char *const shaped[] = {"section_#.direct.x1", "section_#.direct.x2",
+                                         "section_#.direct.y1", "section_#.direct.y2",
+                                         "section_#.e1",        "section_#.e2"};
     static const char *const coupled[] = {"section_#.u1", "section_#.u2"};
     static const char *const transposed[] = {"section_#.s1", "section_#.s2"};
     (void)e;
@@ -42,7 +57,8 @@ static const char *member(const pw_emission *e, const pw_words *w, int k)
     }
 }
 
-static void word(const pw_emission *e, pw_code *table, const char *name, int64_t value, int fraction)
+static void word(const pw_emission *e, pw_code *table, const char *name, int64_t value,
+                 int fraction)
 {
     double real = (double)value / (double)(INT64_C(1) << fraction);
     pw_entry(table, pw_word(value), pw_word_note(e, name, real));
@@ -51,7 +67,11 @@ static void word(const pw_emission *e, pw_code *table, const char *name, int64_t
 static void flags(const pw_emission *e, pw_code *table)
 {
     bool both = e->r->truncate && e->r->wrap;
-    pw_put_with(table, both ? "PW_TRUNCATE | PW_WRAP" : e->r->truncate ? "PW_TRUNCATE" : e->r->wrap ? "PW_WRAP" : "0",
+    pw_put_with(table,
+                both             ? "PW_TRUNCATE | PW_WRAP"
+                : e->r->truncate ? "PW_TRUNCATE"
+                : e->r->wrap     ? "PW_WRAP"
+                                 : "0",
                 e->r->truncate ? "truncates" : "rounds to nearest");
 }
 
@@ -93,8 +113,9 @@ static void coupled_table(const pw_emission *e, const pw_words *w, pw_code *in)
     word(e, table, "c2", w->c2, w->c_fraction);
     word(e, table, "d", w->d, w->c_fraction);
     for (int i = 0; i < 2; i++) {
-        pw_entry(table, pw_word(gain[i] >> 31), i ? "steady u2 for a constant input, high part" :
-                                                    "steady u1 for a constant input, high part");
+        pw_entry(table, pw_word(gain[i] >> 31),
+                 i ? "steady u2 for a constant input, high part"
+                   : "steady u1 for a constant input, high part");
         pw_entry(table, pw_word(gain[i] & INT32_MAX), "low part");
     }
     pw_entry(table, pw_word(w->c_fraction), "fraction bits of c1, c2, d");
@@ -118,8 +139,10 @@ static void gain_table(const pw_emission *e, const pw_words *w, pw_code *in)
 static void float_table(const pw_emission *e, const pw_words *w, pw_code *in)
 {
     bool second = w->order == 2;
-    pw_code *table = pw_block(in, pw_arena_print(e->arena, "static const pw_%s_%s $_words_# =", e->family,
-                                                 second ? "second" : "first"), ";");
+    pw_code *table = pw_block(in,
+                              pw_arena_print(e->arena, "static const pw_%s_%s $_words_# =",
+                                             e->family, second ? "second" : "first"),
+                              ";");
     pw_entry(table, pw_real(w->fb[0], e->single), "b0");
     pw_entry(table, pw_real(w->fb[1], e->single), "b1");
     if (second) pw_entry(table, pw_real(w->fb[2], e->single), "b2");
@@ -129,10 +152,14 @@ static void float_table(const pw_emission *e, const pw_words *w, pw_code *in)
 
 static void constants(const pw_emission *e, const pw_words *w, pw_code *in)
 {
-    if (is_gain(e, w)) gain_table(e, w, in);
-    else if (!e->fixed) float_table(e, w, in);
-    else if (w->structure == PW_COUPLED) coupled_table(e, w, in);
-    else direct_table(e, w, in);
+    if (is_gain(e, w))
+        gain_table(e, w, in);
+    else if (!e->fixed)
+        float_table(e, w, in);
+    else if (w->structure == PW_COUPLED)
+        coupled_table(e, w, in);
+    else
+        direct_table(e, w, in);
 }
 
 /* What a kernel is given before in and out: "&$_words_#, &s->section_#". */
@@ -144,22 +171,35 @@ static const char *arguments(const pw_emission *e, const pw_words *w)
 
 static void block(const pw_emission *e, const pw_words *w, const char *in, pw_code *body)
 {
-    pw_put(body, pw_arena_print(e->arena, "%spw_%s_%s(%s, %s, out, n);", e->fixed ? "s->clipped += " : "",
-                                e->family, kernel_name(e, w), arguments(e, w), in));
+    pw_put(body,
+           pw_arena_print(e->arena, "%spw_%s_%s(%s, %s, out, n);", e->fixed ? "s->clipped += " : "",
+                          e->family, kernel_name(e, w), arguments(e, w), in));
 }
 
 static void settle(const pw_emission *e, const pw_words *w, pw_code *body)
 {
     if (is_gain(e, w)) pw_put(body, "(void)s;");
-    if (is_gain(e, w) && !e->fixed) pw_put(body, "return $_words_# * x;");
-    else pw_put(body, pw_arena_print(e->arena, "return pw_%s_%s_settle(%s, x);", e->family, kernel_name(e, w),
-                                     arguments(e, w)));
+    if (is_gain(e, w) && !e->fixed)
+        pw_put(body, "return $_words_# * x;");
+    else
+        pw_put(body, pw_arena_print(e->arena, "return pw_%s_%s_settle(%s, x);", e->family,
+                                    kernel_name(e, w), arguments(e, w)));
 }
 
 const pw_form pw_forms_runtime[] = {
-    {.name = "gain", .fits = fits_gain, .fields = fields, .constants = constants, .block = block,
-     .settle = settle, .member = member},
-    {.name = "runtime", .fits = fits_runtime, .fields = fields, .constants = constants, .block = block,
-     .settle = settle, .member = member},
+    {.name = "gain",
+     .fits = fits_gain,
+     .fields = fields,
+     .constants = constants,
+     .block = block,
+     .settle = settle,
+     .member = member},
+    {.name = "runtime",
+     .fits = fits_runtime,
+     .fields = fields,
+     .constants = constants,
+     .block = block,
+     .settle = settle,
+     .member = member},
     {.name = NULL},
 };

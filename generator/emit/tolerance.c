@@ -10,7 +10,9 @@
 
 enum { WAYS = 2 };
 
-typedef struct delays { double s[4]; } delays;
+typedef struct delays {
+    double s[4];
+} delays;
 
 /* a b + c rounded once, to the format. */
 static double fused(bool single, double a, double b, double c)
@@ -26,7 +28,8 @@ static double product(bool single, double a, double b)
 /* a b + c d with the first or the second product fused. */
 static double both(bool single, int way, double a, double b, double c, double d)
 {
-    return way ? fused(single, c, d, product(single, a, b)) : fused(single, a, b, product(single, c, d));
+    return way ? fused(single, c, d, product(single, a, b))
+               : fused(single, a, b, product(single, c, d));
 }
 
 static double direct(const pw_words *w, bool single, int way, delays *d, double x)
@@ -56,9 +59,12 @@ static double cascade(const pw_realisation *r, int way, delays *d, double x)
     bool single = r->sample == PW_FLOAT32;
     for (int k = 0; k < r->count; k++) {
         const pw_words *w = &r->section[k];
-        if (w->order == 0) x = product(single, w->fb[0], x);
-        else if (w->structure == PW_DIRECT_1) x = direct(w, single, way, &d[k], x);
-        else x = transposed(w, single, way, &d[k], x);
+        if (w->order == 0)
+            x = product(single, w->fb[0], x);
+        else if (w->structure == PW_DIRECT_1)
+            x = direct(w, single, way, &d[k], x);
+        else
+            x = transposed(w, single, way, &d[k], x);
     }
     return x;
 }
@@ -72,7 +78,8 @@ double pw_contraction_shift(const pw_results *results, const pw_vector *vectors,
         for (int way = 0; way < WAYS; way++) {
             delays d[PW_MAX_SECTIONS] = {{{0}}};
             for (long i = 0; i < vectors[v].n; i++)
-                most = fmax(most, fabs(cascade(r, way, d, vectors[v].in_reals[i]) - vectors[v].out_reals[i]));
+                most = fmax(most, fabs(cascade(r, way, d, vectors[v].in_reals[i])
+                                       - vectors[v].out_reals[i]));
         }
     return most;
 }
@@ -82,6 +89,7 @@ double pw_float_tolerance(const pw_results *results, const pw_vector *vectors, i
     double ulp = results->realisation.sample == PW_FLOAT32 ? FLT_EPSILON : DBL_EPSILON, largest = 0;
     if (shift == 0) return 0;
     for (int v = 0; v < n; v++)
-        for (long i = 0; i < vectors[v].n; i++) largest = fmax(largest, fabs(vectors[v].out_reals[i]));
+        for (long i = 0; i < vectors[v].n; i++)
+            largest = fmax(largest, fabs(vectors[v].out_reals[i]));
     return 4 * shift + ulp * largest;
 }

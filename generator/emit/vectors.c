@@ -11,7 +11,8 @@ static void put_integer(pw_text *out, int64_t value)
 {
     char digits[24], *end = digits + sizeof digits, *c = end;
     uint64_t rest = value < 0 ? -(uint64_t)value : (uint64_t)value;
-    do *--c = (char)('0' + rest % 10); while (rest /= 10);
+    do *--c = (char)('0' + rest % 10);
+    while (rest /= 10);
     if (value < 0) *--c = '-';
     pw_text_add_bytes(out, c, (size_t)(end - c));
 }
@@ -28,11 +29,15 @@ static void put_samples(const pw_vector *v, bool single, pw_text *out)
     for (long i = 0; i < v->n; i++) {
         put_integer(out, i);
         pw_text_add_bytes(out, ",", 1);
-        if (v->in_words) put_integer(out, v->in_words[i]);
-        else put_real(out, v->in_reals[i], single);
+        if (v->in_words)
+            put_integer(out, v->in_words[i]);
+        else
+            put_real(out, v->in_reals[i], single);
         pw_text_add_bytes(out, ",", 1);
-        if (v->in_words) put_integer(out, v->out_words[i]);
-        else put_real(out, v->out_reals[i], single);
+        if (v->in_words)
+            put_integer(out, v->out_words[i]);
+        else
+            put_real(out, v->out_reals[i], single);
         pw_text_add_bytes(out, "\n", 1);
     }
 }
@@ -43,18 +48,23 @@ static void put_kind(const pw_results *results, const pw_vector *v, pw_text *out
     char from[PW_NUMBER_ROOM], to[PW_NUMBER_ROOM];
     pw_text_print(out, "# signal: %s", pw_signal_word(v->signal));
     if (v->hz_end > 0)
-        pw_text_print(out, ", from %s Hz to %s Hz", pw_shortest(from, v->hz), pw_shortest(to, v->hz_end));
-    else if (v->hz > 0) pw_text_print(out, ", %s Hz", pw_shortest(from, v->hz));
+        pw_text_print(out, ", from %s Hz to %s Hz", pw_shortest(from, v->hz),
+                      pw_shortest(to, v->hz_end));
+    else if (v->hz > 0)
+        pw_text_print(out, ", %s Hz", pw_shortest(from, v->hz));
     if (v->signal == PW_SIGNAL_NOISE)
         pw_text_print(out, ", seed %llu", (unsigned long long)results->stage->vectors.seed);
     pw_text_print(out, ", peak %s of full scale\n",
-                  pw_shortest(from, v->signal == PW_SIGNAL_FULL_SCALE_SQUARE ? 1 : results->realisation.input_peak));
+                  pw_shortest(from, v->signal == PW_SIGNAL_FULL_SCALE_SQUARE
+                                        ? 1
+                                        : results->realisation.input_peak));
 }
 
 /* The state that silence starts from, by the names of the arithmetic. */
 static void put_state(const pw_realisation *r, pw_text *out)
 {
-    static const char *const direct[] = {"x1", "x2", "y1", "y2", "e1", "e2"}, *const coupled[] = {"u1", "u2"};
+    static const char *const direct[] = {"x1", "x2", "y1", "y2", "e1", "e2"}, *const coupled[] = {
+                                                                                  "u1", "u2"};
     for (int k = 0; k < r->count; k++) {
         bool rotates = r->section[k].structure == PW_COUPLED;
         int n = rotates ? 2 : r->section[k].structure == PW_DIRECT_1_SHAPED ? 6 : 4;
@@ -75,11 +85,14 @@ static void put_head(const pw_results *results, const pw_vector *v, pw_text *out
     pw_text_print(out, "# polewright %s, stage %s, rate %s Hz\n", PW_VERSION, results->stage->name,
                   pw_shortest(rate, results->stage->rate_hz));
     put_kind(results, v, out);
-    pw_text_print(out, "# units: %s samples; scale: %s stands for %s V at the input and %s V at the output\n",
-                  pw_sample_word(r->sample), one, pw_shortest(in, r->input_full_scale),
-                  pw_shortest(to, r->output_full_scale));
-    if (v->from_state) put_state(r, out);
-    else pw_text_add(out, "# start: at rest\n");
+    pw_text_print(
+        out, "# units: %s samples; scale: %s stands for %s V at the input and %s V at the output\n",
+        pw_sample_word(r->sample), one, pw_shortest(in, r->input_full_scale),
+        pw_shortest(to, r->output_full_scale));
+    if (v->from_state)
+        put_state(r, out);
+    else
+        pw_text_add(out, "# start: at rest\n");
     if (v->in_words) pw_text_print(out, "# clips: %llu\n", (unsigned long long)v->clipped);
 }
 

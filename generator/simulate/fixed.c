@@ -69,8 +69,8 @@ static int32_t direct_step(const pw_words *w, const pw_word_rules *rules, int64_
     return y;
 }
 
-static int32_t coupled_step(const pw_words *w, const pw_word_rules *rules, int64_t *state, int32_t x,
-                            uint64_t *clipped, pw_fixed_trace *trace)
+static int32_t coupled_step(const pw_words *w, const pw_word_rules *rules, int64_t *state,
+                            int32_t x, uint64_t *clipped, pw_fixed_trace *trace)
 {
     int64_t u1 = state[U1], u2 = state[U2];
     int64_t acc[3] = {

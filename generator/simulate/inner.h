@@ -34,7 +34,8 @@ void pw_float_run(const pw_words *words, bool single, double state[4], const dou
                   double *out, size_t n);
 
 /* Settles one section at x and returns its y. */
-int32_t pw_fixed_settle(const pw_words *words, const pw_word_rules *rules, int64_t state[6], int32_t x);
+int32_t pw_fixed_settle(const pw_words *words, const pw_word_rules *rules, int64_t state[6],
+                        int32_t x);
 double pw_float_settle(const pw_words *words, bool single, double state[4], double x);
 
 #endif

@@ -28,7 +28,8 @@ void pw_simulation_run_words(pw_simulation *sim, const int32_t *in, int32_t *out
     if (in != out && n) memmove(out, in, n * sizeof *out);
     for (int k = 0; k < r->count; k++)
         for (size_t i = 0; i < n; i++)
-            out[i] = pw_fixed_step(&r->section[k], &rules, sim->state[k], out[i], &sim->clipped, NULL);
+            out[i] = pw_fixed_step(&r->section[k], &rules, sim->state[k], out[i], &sim->clipped,
+                                   NULL);
 }
 
 void pw_simulation_run_floats(pw_simulation *sim, const double *in, double *out, size_t n)
@@ -49,15 +50,19 @@ void pw_simulation_settle(pw_simulation *sim, double x)
     for (int k = 0; k < r->count; k++)
         if (pw_section_integrates(&r->section[k], fixed)) return;
     for (int k = 0; k < r->count; k++) {
-        if (fixed) x = pw_fixed_settle(&r->section[k], &rules, sim->state[k], (int32_t)x);
-        else x = pw_float_settle(&r->section[k], r->sample == PW_FLOAT32, sim->fstate[k], x);
+        if (fixed)
+            x = pw_fixed_settle(&r->section[k], &rules, sim->state[k], (int32_t)x);
+        else
+            x = pw_float_settle(&r->section[k], r->sample == PW_FLOAT32, sim->fstate[k], x);
     }
 }
 
 /* The value of one node from what its section's step left behind. */
-static double node_value(const char *name, int32_t y, const int64_t *state, const pw_fixed_trace *trace)
+static double node_value(const char *name, int32_t y, const int64_t *state,
+                         const pw_fixed_trace *trace)
 {
-    static const char *const known[] = {"output", "u1", "u2", "accumulator", "u1 accumulator", "u2 accumulator"};
+    static const char *const known[] = {
+        "output", "u1", "u2", "accumulator", "u1 accumulator", "u2 accumulator"};
     int section, at = 0;
     if (sscanf(name, "section %d %n", &section, &at) < 1 || !at) return NAN;
     for (int i = 0; i < 6; i++) {

@@ -11,7 +11,7 @@ typedef struct pw_simulation {
     const pw_realisation *realisation;   /* borrowed */
     int64_t state[PW_MAX_SECTIONS][6];   /* fixed: x1 x2 y1 y2 e1 e2, or u1 u2; */
     double fstate[PW_MAX_SECTIONS][4];   /* floats: s1 s2 (or x1 x2 y1 y2) */
-    uint64_t clipped;                    /* since the reset; the emitted count is this modulo 2^32 */
+    uint64_t clipped;                    /* since the reset; emitted: modulo 2^32 */
 } pw_simulation;
 
 void pw_simulation_reset(pw_simulation *sim, const pw_realisation *realisation);
@@ -34,14 +34,16 @@ void pw_simulation_settle(pw_simulation *sim, double x);
 /* Whether D = 0 in this section, by its words. */
 bool pw_section_integrates(const pw_words *words, bool fixed);
 
-/* Steady state of a coupled section for a constant x: u[i] = (gain[i] x + 2^(fraction-1)) >> fraction,
- * clamped. gain is (1 - sigma) g / D and omega g / D with D = (1 - sigma)^2 + omega^2, rounded half up
- * to as many fraction bits (32 to 61) as leave |gain| within 2^61. The section does not integrate. */
+/* Steady state of a coupled section for a constant x: u[i] = (gain[i] x + 2^(fraction-1)) >>
+ * fraction, clamped. gain is (1 - sigma) g / D and omega g / D with D = (1 - sigma)^2 + omega^2,
+ * rounded half up to as many fraction bits (32 to 61) as leave |gain| within 2^61. The section does
+ * not integrate. */
 void pw_coupled_steady(const pw_words *words, int64_t gain[2], int *fraction);
 /* Every node (realisation.node order) for one sample; values of full scale, before any clamp for
  * accumulators. node_out has realisation->nodes entries. Fixed point only. Nodes are known by their
- * names: "section N output", "section N accumulator" (of y, in the unit of y), "section N u1", "section N
- * u2" (after the clamp), "section N u1 accumulator", "section N u2 accumulator"; others become NAN. */
+ * names: "section N output", "section N accumulator" (of y, in the unit of y), "section N u1",
+ * "section N u2" (after the clamp), "section N u1 accumulator", "section N u2 accumulator"; others
+ * become NAN. */
 void pw_simulation_step_nodes(pw_simulation *sim, int32_t x, int32_t *y, double *node_out);
 
 #endif

@@ -2,14 +2,15 @@
 /* Steady states: what settle does.
  *
  * Method: for a constant x a direct-1 section rests at y where
- *     y 2^f <= p - (a1 + a2) y + half < (y + 1) 2^f,   that is   D y - half <= p < D y - half + 2^f,
- * D = 2^f + a1 + a2. With half = 2^(f-1) and D <= 2^f the nearest y to p / D (half up) satisfies it,
- * with half = 0 the floor of p / D does. D > 2^f (poles on the negative real side) may leave no y. */
+ *     y 2^f <= p - (a1 + a2) y + half < (y + 1) 2^f,
+ * that is, D y - half <= p < D y - half + 2^f with D = 2^f + a1 + a2. With half = 2^(f-1) and D <= 2^f the nearest y to p / D (half up) satisfies
+ * it, with half = 0 the floor of p / D does. D > 2^f (poles on the negative real side) may leave no
+ * y. */
 #include "simulate/inner.h"
 
 __extension__ typedef __int128 pw_wide;
 
-static int64_t floor_divide(int64_t p, int64_t d)   /* d > 0 */
+static int64_t floor_divide(int64_t p, int64_t d) /* d > 0 */
 {
     int64_t q = p / d;
     return p % d < 0 ? q - 1 : q;
@@ -45,7 +46,7 @@ void pw_coupled_steady(const pw_words *w, int64_t gain[2], int *fraction)
     pw_wide d = near * near + (pw_wide)w->omega * w->omega;
     pw_wide above[2] = {near * w->g, (pw_wide)w->omega * w->g};
     const pw_wide most = (pw_wide)1 << 61;
-    for (*fraction = 61; ; --*fraction) {
+    for (*fraction = 61;; --*fraction) {
         bool fits = true;
         for (int i = 0; i < 2; i++) {
             pw_wide q = floor_divide_wide(above[i] * ((pw_wide)1 << *fraction) + d / 2, d);

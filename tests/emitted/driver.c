@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Runs one emitted stage. Compiled with -DSTAGE=name -DSAMPLE=type -DHEADER="name.h"
- * -DSELFTEST="name_selftest.h". Arguments: REPEATS of the comparison of cuts, then "rest" or the value to
- * settle at. Standard input: samples. Prints the self-test's result, the outputs of step (floats
- * with 17 digits), and "clipped N"; exits 1 where step, block in any cut, or block in place differ. */
+ * -DSELFTEST="name_selftest.h". Arguments: REPEATS of the comparison of cuts, then "rest" or the
+ * value to settle at. Standard input: samples. Prints the self-test's result, the outputs of step
+ * (floats with 17 digits), and "clipped N"; exits 1 where step, block in any cut, or block in place
+ * differ. */
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>

@@ -29,13 +29,29 @@ def sources(folder):
     return sorted(os.path.join(folder, f) for f in os.listdir(folder) if f.endswith(".c"))
 
 
-def compile_strictly(stage, compiler="gcc", flags=("-O2",), out="run", driver=DRIVER, language=("-std=c99",)):
+def compile_strictly(
+    stage, compiler="gcc", flags=("-O2",), out="run", driver=DRIVER, language=("-std=c99",)
+):
     """Compiles the folder with the driver; the messages of the compiler, "" where it is clean."""
     folder, name = stage["dir"], stage["name"]
-    defines = [f"-DSTAGE={name}", f"-DSAMPLE={TYPES[stage['sample']]}", f'-DHEADER="{name}.h"',
-               f'-DSELFTEST="{name}_selftest.h"'] + (["-DCOUNTS"] if stage["sample"][0] == "q" else [])
-    command = [compiler, *language, *STRICT, *flags, *defines, f"-I{folder}", *sources(folder), driver,
-               "-o", os.path.join(folder, out)]
+    defines = [
+        f"-DSTAGE={name}",
+        f"-DSAMPLE={TYPES[stage['sample']]}",
+        f'-DHEADER="{name}.h"',
+        f'-DSELFTEST="{name}_selftest.h"',
+    ] + (["-DCOUNTS"] if stage["sample"][0] == "q" else [])
+    command = [
+        compiler,
+        *language,
+        *STRICT,
+        *flags,
+        *defines,
+        f"-I{folder}",
+        *sources(folder),
+        driver,
+        "-o",
+        os.path.join(folder, out),
+    ]
     ran = subprocess.run(command, capture_output=True, text=True)
     return ran.stderr if ran.returncode or ran.stderr else ""
 
@@ -43,8 +59,12 @@ def compile_strictly(stage, compiler="gcc", flags=("-O2",), out="run", driver=DR
 def run(stage, samples, start="rest", repeats=4, out="run"):
     """(self-test result, outputs, clips, exit status, messages) of a compiled stage."""
     text = "\n".join(repr(x) for x in samples)
-    ran = subprocess.run([os.path.join(stage["dir"], out), str(repeats), str(start)], input=text,
-                         capture_output=True, text=True)
+    ran = subprocess.run(
+        [os.path.join(stage["dir"], out), str(repeats), str(start)],
+        input=text,
+        capture_output=True,
+        text=True,
+    )
     lines = ran.stdout.split("\n")
     selftest = next((int(line.split()[1]) for line in lines if line.startswith("selftest")), None)
     clips = next((int(line.split()[1]) for line in lines if line.startswith("clipped")), None)

@@ -26,14 +26,25 @@ def direct(sample, bits, shaped, order, loud):
     b = [gain * random.uniform(-1, 1) for _ in range(order + 1)] + [0] * (2 - order)
     word_b = [max(-limit, min(limit, round(v * (1 << bf)))) for v in b]
     if random.random() < 0.3 and order == 2:
-        word_b = [word_b[0] // 2, -2 * (word_b[0] // 2), word_b[0] // 2]   # blocks a constant
+        word_b = [word_b[0] // 2, -2 * (word_b[0] // 2), word_b[0] // 2]  # blocks a constant
     word_a = [max(-limit, min(limit, round(v * one))) for v in a]
     k = [random.choice([1, 2, -1]), random.choice([0, -1, 1])] if shaped else [0, 0]
-    reach = sum(map(abs, word_b)) * 2.0 ** (af - bf) + sum(map(abs, word_a)) + sum(map(abs, k)) * one / 2**31
+    reach = (
+        sum(map(abs, word_b)) * 2.0 ** (af - bf)
+        + sum(map(abs, word_a))
+        + sum(map(abs, k)) * one / 2**31
+    )
     if reach * 2.0 ** (15 if sample == "q15" else 31) >= 2.0**62:
-        return direct(sample, bits, shaped, order, loud)      # the precondition of every kernel
-    return {"structure": "direct-1-shaped" if shaped else "direct-1", "order": order, "b": word_b, "a": word_a,
-            "bf": bf, "af": af, "k": k}
+        return direct(sample, bits, shaped, order, loud)  # the precondition of every kernel
+    return {
+        "structure": "direct-1-shaped" if shaped else "direct-1",
+        "order": order,
+        "b": word_b,
+        "a": word_a,
+        "bf": bf,
+        "af": af,
+        "k": k,
+    }
 
 
 def coupled(sample, bits, loud):
@@ -41,14 +52,29 @@ def coupled(sample, bits, loud):
     one = 1 << f
     radius, angle = random.uniform(0.5, 0.97), random.uniform(0.1, 3.0)
     gain = (1.5 if loud else 0.2) * (1 - radius)
-    return {"structure": "coupled", "order": 2, "sigma": round(radius * math.cos(angle) * one),
-            "omega": round(radius * math.sin(angle) * one), "g": round(gain * one),
-            "c1": round(random.uniform(-1, 1) * one), "c2": round(random.uniform(-1, 1) * one),
-            "d": round(random.uniform(-0.5, 0.5) * one), "af": f, "cf": f}
+    return {
+        "structure": "coupled",
+        "order": 2,
+        "sigma": round(radius * math.cos(angle) * one),
+        "omega": round(radius * math.sin(angle) * one),
+        "g": round(gain * one),
+        "c1": round(random.uniform(-1, 1) * one),
+        "c2": round(random.uniform(-1, 1) * one),
+        "d": round(random.uniform(-0.5, 0.5) * one),
+        "af": f,
+        "cf": f,
+    }
 
 
 def real(is_single, structure, order):
     a = analog_pole_pair(order)
-    b = [random.uniform(-1, 1) * max(0.05, 1 + sum(a)) for _ in range(order + 1)] + [0] * (2 - order)
+    b = [random.uniform(-1, 1) * max(0.05, 1 + sum(a)) for _ in range(order + 1)] + [0] * (
+        2 - order
+    )
     to = single if is_single else (lambda v: v)
-    return {"structure": structure, "order": order, "b": [to(v) for v in b], "a": [to(v) for v in a]}
+    return {
+        "structure": structure,
+        "order": order,
+        "b": [to(v) for v in b],
+        "a": [to(v) for v in a],
+    }

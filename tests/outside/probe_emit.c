@@ -1,11 +1,12 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Emits C, vectors and self-test for realisations given as words, one JSON object a line on standard
- * input, each into the directory "dir". Keys: dir, name, about, sample, bits, standalone, truncate, wrap,
- * length, seed, peak, rate, target, input and output (low high zero bits rails), sections: list of {structure,
- * order, b, a, bf, af, k} or {sigma, omega, g, c1, c2, d, af, cf}, with cannot_clip and fits_32, or for
- * floats {structure, order, b, a}; state: list of six numbers a section.
- * Prints for each: the clips of every signal, or the tolerance, as JSON. With "settle" and "x" it prints
- * what the simulation gives for the inputs x, a list, after settling at settle (or from rest: null). */
+/* Emits C, vectors and self-test for realisations given as words, one JSON object a line on
+ * standard input, each into the directory "dir". Keys: dir, name, about, sample, bits, standalone,
+ * truncate, wrap, length, seed, peak, rate, target, input and output (low high zero bits rails),
+ * sections: list of {structure, order, b, a, bf, af, k} or {sigma, omega, g, c1, c2, d, af, cf},
+ * with cannot_clip and fits_32, or for floats {structure, order, b, a}; state: list of six numbers
+ * a section. Prints for each: the clips of every signal, or the tolerance, as JSON. With "settle"
+ * and "x" it prints what the simulation gives for the inputs x, a list, after settling at settle
+ * (or from rest: null). */
 #include <jansson.h>
 #include <math.h>
 #include <stdio.h>
@@ -38,12 +39,15 @@ static int word_of(json_t *o, const char *key, const char *const *list, int n)
 
 static void read_section(json_t *o, bool fixed, pw_words *w)
 {
-    static const char *const structures[] = {"auto", "direct-1", "direct-1-shaped", "transposed-2", "coupled"};
+    static const char *const structures[] = {"auto", "direct-1", "direct-1-shaped", "transposed-2",
+                                             "coupled"};
     w->structure = (pw_structure)word_of(o, "structure", structures, 5);
     w->order = (int)number(o, "order", 2);
     for (size_t k = 0; k < 3; k++) {
-        if (fixed) w->b[k] = (int32_t)item(o, "b", k);
-        else w->fb[k] = item(o, "b", k);
+        if (fixed)
+            w->b[k] = (int32_t)item(o, "b", k);
+        else
+            w->fb[k] = item(o, "b", k);
         if (fixed && k) w->a[k] = (int32_t)item(o, "a", k - 1);
         if (!fixed) w->fa[k] = k ? item(o, "a", k - 1) : 1;
     }
@@ -76,7 +80,8 @@ static void read_realisation(json_t *o, pw_realisation *r)
     r->truncate = number(o, "truncate", 0) != 0;
     r->wrap = number(o, "wrap", 0) != 0;
     r->count = (int)json_array_size(list);
-    for (int k = 0; k < r->count; k++) read_section(json_array_get(list, (size_t)k), fixed, &r->section[k]);
+    for (int k = 0; k < r->count; k++)
+        read_section(json_array_get(list, (size_t)k), fixed, &r->section[k]);
     r->input_peak = number(o, "peak", 1);
     r->input_full_scale = r->output_full_scale = 1;
     r->first_clip_input = INFINITY;
@@ -87,7 +92,8 @@ static void read_realisation(json_t *o, pw_realisation *r)
     r->limit_cycle.has_state = json_is_array(state);
     for (int k = 0; json_is_array(state) && k < r->count; k++)
         for (size_t i = 0; i < 6; i++)
-            r->limit_cycle.state[k][i] = (int64_t)json_number_value(json_array_get(json_array_get(state, (size_t)k), i));
+            r->limit_cycle.state[k][i] = (int64_t)json_number_value(
+                json_array_get(json_array_get(state, (size_t)k), i));
 }
 
 static void read_port(json_t *o, const char *key, pw_port *port)
@@ -130,12 +136,14 @@ static void read_stage(json_t *o, pw_stage *stage, pw_results *results)
 /* What the simulation makes of the list x. */
 static json_t *play(json_t *o, const pw_realisation *r)
 {
-    json_t *list = json_object_get(o, "x"), *settle = json_object_get(o, "settle"), *y = json_array(), *v;
+    json_t *list = json_object_get(o, "x"), *settle = json_object_get(o, "settle"),
+           *y = json_array(), *v;
     pw_simulation sim;
     size_t i;
     pw_simulation_reset(&sim, r);
     if (json_is_number(settle)) pw_simulation_settle(&sim, json_number_value(settle));
-    json_array_foreach(list, i, v) {
+    json_array_foreach(list, i, v)
+    {
         if (r->sample == PW_Q15 || r->sample == PW_Q31) {
             int32_t word = (int32_t)json_number_value(v);
             pw_simulation_run_words(&sim, &word, &word, 1);
@@ -166,7 +174,8 @@ static json_t *tell(const pw_results *results)
     pw_vector v[PW_SIGNALS];
     for (int s = 0; s < PW_SIGNALS; s++) {
         pw_vector_make(results, (pw_signal)s, &v[s]);
-        json_object_set_new(clips, pw_signal_word((pw_signal)s), json_integer((json_int_t)v[s].clipped));
+        json_object_set_new(clips, pw_signal_word((pw_signal)s),
+                            json_integer((json_int_t)v[s].clipped));
     }
     double shift = pw_contraction_shift(results, v, PW_SIGNALS);
     double tolerance = pw_float_tolerance(results, v, PW_SIGNALS, shift);
@@ -184,7 +193,8 @@ int main(void)
         if (!o || !results || !stage) return 2;
         pw_messages messages = {.file = "probe"};
         const char *target = json_string_value(json_object_get(o, "target"));
-        if (target && pw_target_read(target, (pw_where){0, 0}, &results->target, &messages)) return 2;
+        if (target && pw_target_read(target, (pw_where){0, 0}, &results->target, &messages))
+            return 2;
         read_stage(o, stage, results);
         if (emit(o, results)) return 3;
         out = tell(results);

@@ -18,11 +18,15 @@ static pw_realisation one_section(pw_sample sample, pw_words words)
     return r;
 }
 
-/* y = x/2 + y1/2 in q15 with 14-bit words, worked by hand:
- * 3 -> (24576 + 8192) >> 14 = 2; 0 -> (16384 + 8192) >> 14 = 1; 0 -> (8192 + 8192) >> 14 = 1 for ever;
- * -3 from rest -> (-24576 + 8192) >> 14 = -1. */
-static const pw_words half_pole = {.structure = PW_DIRECT_1, .order = 1, .b = {8192}, .a = {0, -8192},
-                                   .b_fraction = 14, .a_fraction = 14};
+/* y = x/2 + y1/2 in q15 with 14-bit words, worked by hand: 3 -> (24576 + 8192) >> 14 = 2; 0 ->
+ * (16384 + 8192) >> 14 = 1; 0 -> (8192 + 8192) >> 14 = 1 for ever; -3 from rest -> (-24576 + 8192)
+ * >> 14 = -1. */
+static const pw_words half_pole = {.structure = PW_DIRECT_1,
+                                   .order = 1,
+                                   .b = {8192},
+                                   .a = {0, -8192},
+                                   .b_fraction = 14,
+                                   .a_fraction = 14};
 
 static void hand_worked(void **state)
 {
@@ -38,14 +42,15 @@ static void hand_worked(void **state)
     int32_t below = -3;
     pw_simulation_run_words(&sim, &below, &below, 1);
     assert_int_equal(below, -1);
-    r.truncate = true;           /* floor(-1.5) */
+    r.truncate = true; /* floor(-1.5) */
     pw_simulation_reset(&sim, &r);
     below = -3;
     pw_simulation_run_words(&sim, &below, &below, 1);
     assert_int_equal(below, -2);
 }
 
-/* A right shift of p by 2 rounds half up: 1/4 -> 0, 2/4 -> 1, 3/4 -> 1, -1/4 -> 0, -2/4 -> 0, -3/4 -> -1. */
+/* A right shift of p by 2 rounds half up: 1/4 -> 0, 2/4 -> 1, 3/4 -> 1, -1/4 -> 0, -2/4 -> 0, -3/4
+ * -> -1. */
 static void align_rounds_half_up(void **state)
 {
     (void)state;
@@ -81,7 +86,7 @@ static void overflow_saturates_or_wraps(void **state)
     assert_int_equal(sim.clipped, 3);
 }
 
-static int64_t noise_at(uint64_t *seed, int bits)   /* within -2^(bits-1) .. 2^(bits-1)-1 */
+static int64_t noise_at(uint64_t *seed, int bits) /* within -2^(bits-1) .. 2^(bits-1)-1 */
 {
     *seed = *seed * UINT64_C(6364136223846793005) + UINT64_C(1442695040888963407);
     return (int64_t)(*seed >> (64 - bits)) - (INT64_C(1) << (bits - 1));
@@ -105,8 +110,8 @@ static int32_t *recompute(const pw_realisation *r, const int32_t *x, int n, uint
         if (i > 1) p += (wide)w->b[2] * x[i - 2];
         wide scaled = 2 * p * one, unit = (wide)1 << w->b_fraction;
         p = w->b_fraction > w->a_fraction ? floor_ratio(scaled + unit, 2 * unit) : p * (one / unit);
-        wide acc = p - (wide)w->a[1] * at[i - 1] - (wide)w->a[2] * at[i - 2]
-                   + w->k1 * e[i + 1] + w->k2 * e[i];
+        wide acc = p - (wide)w->a[1] * at[i - 1] - (wide)w->a[2] * at[i - 2] + w->k1 * e[i + 1]
+                   + w->k2 * e[i];
         wide v = r->truncate ? floor_ratio(acc, one) : floor_ratio(2 * acc + one, 2 * one);
         bool out = v < low || v > high;
         *clipped += out;
@@ -118,7 +123,8 @@ static int32_t *recompute(const pw_realisation *r, const int32_t *x, int n, uint
     return y;
 }
 
-/* Random stable sections of every kind of word (sums stay below 2^63), driven hard enough to clip. */
+/* Random stable sections of every kind of word (sums stay below 2^63), driven hard enough to clip.
+ * */
 static void agrees_with_wide_integers(void **state)
 {
     (void)state;
@@ -127,8 +133,10 @@ static void agrees_with_wide_integers(void **state)
     for (int trial = 0; trial < 400; trial++) {
         bool q31 = trial & 1, wide_words = trial & 2;
         int bits = q31 ? 32 : 16, af = wide_words ? 29 : 13;
-        pw_words w = {.structure = trial & 4 ? PW_DIRECT_1_SHAPED : PW_DIRECT_1, .order = 2,
-                      .a_fraction = af, .b_fraction = af - 2 + (int)(trial % 9)};
+        pw_words w = {.structure = trial & 4 ? PW_DIRECT_1_SHAPED : PW_DIRECT_1,
+                      .order = 2,
+                      .a_fraction = af,
+                      .b_fraction = af - 2 + (int)(trial % 9)};
         double radius = 0.5 + 0.499 * (double)(noise_at(&seed, 16) + 32768) / 65536;
         double angle = 3.1 * (double)(noise_at(&seed, 16) + 32768) / 65536;
         w.a[1] = (int32_t)lround(-2 * radius * cos(angle) * (1 << af));
@@ -164,7 +172,8 @@ static void settle_is_a_fixed_point(void **state)
     for (int trial = 0; trial < 64; trial++) {
         int af = 14;
         double radius = 0.3 + 0.0109 * trial, angle = 0.01 * trial;
-        pw_words w = {.structure = PW_DIRECT_1, .order = 2, .a_fraction = af, .b_fraction = 10 + trial % 11};
+        pw_words w = {
+            .structure = PW_DIRECT_1, .order = 2, .a_fraction = af, .b_fraction = 10 + trial % 11};
         w.a[1] = (int32_t)lround(-2 * radius * cos(angle) * (1 << af));
         w.a[2] = (int32_t)lround(radius * radius * (1 << af));
         w.b[0] = 1000 + 37 * trial;
@@ -176,7 +185,10 @@ static void settle_is_a_fixed_point(void **state)
             pw_simulation sim;
             pw_simulation_settle((pw_simulation_reset(&sim, &r), &sim), x);
             int64_t y0 = sim.state[0][2];
-            if (y0 == 32767 || y0 == -32768) { clamped++; continue; }
+            if (y0 == 32767 || y0 == -32768) {
+                clamped++;
+                continue;
+            }
             inside++;
             for (int i = 0; i < 20; i++) {
                 int32_t y;
@@ -204,14 +216,20 @@ static void settle_resets_an_integrator(void **state)
 static pw_words coupled_words(double radius, double angle, int f)
 {
     double one = ldexp(1, f);
-    return (pw_words){.structure = PW_COUPLED, .order = 2, .a_fraction = f, .c_fraction = f,
+    return (pw_words){.structure = PW_COUPLED,
+                      .order = 2,
+                      .a_fraction = f,
+                      .c_fraction = f,
                       .sigma = (int32_t)lround(radius * cos(angle) * one),
                       .omega = (int32_t)lround(radius * sin(angle) * one),
-                      .g = (int32_t)lround(0.03 * one), .c1 = (int32_t)lround(0.9 * one),
-                      .c2 = (int32_t)lround(-0.4 * one), .d = (int32_t)lround(0.25 * one)};
+                      .g = (int32_t)lround(0.03 * one),
+                      .c1 = (int32_t)lround(0.9 * one),
+                      .c2 = (int32_t)lround(-0.4 * one),
+                      .d = (int32_t)lround(0.25 * one)};
 }
 
-/* Impulse response against h = d, then g r^(n-1) (c1 cos + c2 sin)((n-1) angle) of the realised words. */
+/* Impulse response against h = d, then g r^(n-1) (c1 cos + c2 sin)((n-1) angle) of the realised
+ * words. */
 static void coupled_follows_its_transfer_function(void **state)
 {
     (void)state;
@@ -219,14 +237,15 @@ static void coupled_follows_its_transfer_function(void **state)
     pw_realisation r = one_section(PW_Q31, w);
     pw_simulation sim;
     pw_simulation_reset(&sim, &r);
-    double one = ldexp(1, 30), radius = hypot(w.sigma, w.omega) / one, angle = atan2(w.omega, w.sigma);
+    double one = ldexp(1, 30), radius = hypot(w.sigma, w.omega) / one,
+           angle = atan2(w.omega, w.sigma);
     for (int n = 0; n < 300; n++) {
         int32_t x = n == 0 ? INT32_C(1) << 30 : 0, y;
         pw_simulation_run_words(&sim, &x, &y, 1);
         double tail = w.g / one * pow(radius, n - 1)
                       * (w.c1 * cos((n - 1) * angle) + w.c2 * sin((n - 1) * angle)) / one;
         double h = n == 0 ? w.d / one : tail;
-        assert_true(fabs(y / ldexp(1, 30) - h) < 100 * ldexp(1, -30));   /* 0.5 step, times 1/(1-r) */
+        assert_true(fabs(y / ldexp(1, 30) - h) < 100 * ldexp(1, -30)); /* 0.5 step, times 1/(1-r) */
     }
 }
 
@@ -256,7 +275,8 @@ static void coupled_steady_gains_are_exact(void **state)
     for (int f = 14; f <= 30; f += 16) {
         pw_words w = coupled_words(0.999, 0.001, f);
         double one = ldexp(1, f), near = (one - w.sigma) / one, omega = w.omega / one;
-        double d = near * near + omega * omega, expected[2] = {near * w.g / one / d, omega * w.g / one / d};
+        double d = near * near + omega * omega,
+               expected[2] = {near * w.g / one / d, omega * w.g / one / d};
         int64_t gain[2];
         int fraction;
         pw_coupled_steady(&w, gain, &fraction);
@@ -308,8 +328,10 @@ static void floats_settle(void **state)
 {
     (void)state;
     for (int form = 0; form < 2; form++) {
-        pw_words w = {.structure = form ? PW_TRANSPOSED_2 : PW_DIRECT_1, .order = 2,
-                      .fb = {0.02, 0.04, 0.02}, .fa = {1, -1.5, 0.6}};
+        pw_words w = {.structure = form ? PW_TRANSPOSED_2 : PW_DIRECT_1,
+                      .order = 2,
+                      .fb = {0.02, 0.04, 0.02},
+                      .fa = {1, -1.5, 0.6}};
         pw_realisation r = one_section(PW_FLOAT64, w);
         pw_simulation sim;
         pw_simulation_reset(&sim, &r);
@@ -317,7 +339,7 @@ static void floats_settle(void **state)
         for (int i = 0; i < 100; i++) {
             double x = 0.7, y;
             pw_simulation_run_floats(&sim, &x, &y, 1);
-            assert_true(fabs(y - 0.7 * 0.8) < 1e-14);   /* H(1) = 0.08 / 0.1 */
+            assert_true(fabs(y - 0.7 * 0.8) < 1e-14); /* H(1) = 0.08 / 0.1 */
         }
     }
 }
