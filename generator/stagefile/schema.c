@@ -70,7 +70,7 @@ static void add_quantity(json_t *any, const pw_key *key)
     pw_text text = {0};
     bool decibels = key->dimension == PW_DIM_RATIO;   /* 0 dB is 1, and so on */
     bool signless = !decibels && (key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_NEGATIVE);
-    bool nonzero = !decibels && (key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_ZERO);
+    bool nonzero = key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_ZERO;
     json_t *number = json_pack("{s:s}", "type", "number");
     add_bounds(number, key);
     json_array_append_new(any, number);
@@ -85,8 +85,11 @@ static void add_count(json_t *any, const pw_key *key)
     json_object_set_new(number, "maximum", key->high < 9e15 ? json_integer((json_int_t)key->high)
                                                             : json_real(key->high));
     json_array_append_new(any, number);
-    json_array_append_new(any, pattern(key->forms & PW_FORM_QUANTITY ? "^" BLANKS "\\+?[0-9]+" BLANKS "(?:bits?)?$"
-                                                                     : "^" BLANKS "\\+?[0-9]+" BLANKS "$"));
+    pw_text text = {0};
+    pw_text_print(&text, "^" BLANKS "\\+?%s[0-9]*" BLANKS "%s$", key->low >= 1 ? "0*[1-9]" : "[0-9]",
+                  key->forms & PW_FORM_QUANTITY ? "(?:bits?)?" : "");
+    json_array_append_new(any, pattern(pw_text_string(&text)));
+    pw_text_free(&text);
 }
 
 static void add_words(json_t *any, const pw_word *words)

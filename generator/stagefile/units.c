@@ -151,7 +151,8 @@ static void add_code_pattern(pw_dimension d, pw_text *out)
 void pw_dimension_pattern(pw_dimension d, bool may_be_negative, bool may_be_zero, pw_text *out)
 {
     pw_text_add(out, "^\\s*");
-    if (!may_be_zero) pw_text_add(out, "(?=[^1-9eE]*[1-9])");
+    if (!may_be_zero)   /* 0 dB is a ratio of 1 */
+        pw_text_add(out, d == PW_DIM_RATIO ? "(?![-+\u2212]?[0.]+\\s*$)" : "(?=[^1-9eE]*[1-9])");
     pw_text_add(out, may_be_negative ? "(?:[-+]|\u2212)?" : "\\+?");
     pw_text_add(out, "(?:(?:[0-9]+\\.?[0-9]*|\\.[0-9]+)(?:[eE][-+]?[0-9]+)?");
     if (pw_dimension_has_codes(d)) add_code_pattern(d, out);
