@@ -137,6 +137,8 @@ def check_errors(name, r, floor=60):
 def check_words(name, r):
     for i, section in enumerate(r["sections"]):
         s = section["realised"]
+        if r["arithmetic"]["sample"] == "float32":
+            check(all(float(np.float32(v)) == v for v in s["b"] + s["a"]), f"{name}: section {i + 1} is of floats")
         if s["b_words"] is None:
             continue
         b = [w * 2.0 ** -s["b_fraction_bits"] for w in s["b_words"]]
