@@ -47,6 +47,6 @@ extern const int pw_verb_count;
 /* Reads the command line, runs the verb, checks that standard output took everything. */
 int pw_run(int argc, char **argv);
 
-extern const pw_verb pw_verb_build, pw_verb_show, pw_verb_check, pw_verb_vectors, pw_verb_targets, pw_verb_schema;
+extern const pw_verb pw_verb_build, pw_verb_show, pw_verb_check, pw_verb_vectors, pw_verb_twin, pw_verb_targets, pw_verb_schema;
 
 #endif
