@@ -105,6 +105,10 @@ int pw_net_undetermined(const pw_net *net, bool *which);
 double complex pw_net_response(const pw_net *net, double complex s);
 double complex pw_net_response_quad(const pw_net *net, double complex s);
 
+/* The equations at s in extended precision, n rows of n + 1 columns over zeros; the last column is
+ * the input's. value: as pw_net_values_quad gives them. */
+void pw_net_fill(const pw_net *net, const pw_quad *value, long double complex s, long double complex *a);
+
 /* Largest relative difference between the roots' response and pw_net_response over 200 frequencies
  * and twelve decades about the roots; where the two differ by more than 1e-10 quadruple precision
  * decides. *at_hz: where. Differences more than 600 dB below the largest response do not count. */

@@ -36,13 +36,25 @@ static pw_quad *take_values(const pw_net *net, pw_arena *arena)
     return value;
 }
 
+static long double *extended(const pw_net *net, const pw_quad *quad, pw_arena *arena)
+{
+    long double *value = pw_arena_take(arena, (size_t)net->values * sizeof *value);
+    for (int i = 0; i < net->values; i++) value[i] = (long double)quad[i];
+    return value;
+}
+
+void pw_net_fill(const pw_net *net, const pw_quad *value, long double complex s, long double complex *a)
+{
+    pw_arena arena = {0};
+    eliminate_long_fill(net, extended(net, value, &arena), s, a);
+    pw_arena_free(&arena);
+}
+
 static long_complex respond_long(const pw_net *net, const pw_quad *quad, long_complex s)
 {
     pw_arena arena = {0};
     long_complex h = CMPLXL(NAN, NAN);
-    long double *value = pw_arena_take(&arena, (size_t)net->values * sizeof *value);
-    for (int i = 0; i < net->values; i++) value[i] = (long double)quad[i];
-    if (!eliminate_long(net, value, s, &h)) h = CMPLXL(NAN, NAN);
+    if (!eliminate_long(net, extended(net, quad, &arena), s, &h)) h = CMPLXL(NAN, NAN);
     pw_arena_free(&arena);
     return h;
 }

@@ -6,6 +6,7 @@
 #include <string.h>
 
 #include "analog/cell.h"
+#include "analog/sensitivity_adjoint.h"
 
 #define STEP 1e-8               /* relative change of a part */
 #define TOGETHER 1e-4            /* real roots this close, relative, are one cluster */
@@ -176,30 +177,90 @@ static void find_gains(const pw_quad_roots *r, double middle_hz, double *gain)
                                                                           : (double)r->factor;
 }
 
-/* ---- Parts ---- */
+/* ---- Parts, by solving again ---- */
 
 static double percent(double before, double after)
 {
     return isfinite(before) && before != 0 ? (after / before - 1) / STEP : (double)NAN;
 }
 
-static double decibels(double before, double after)
-{
-    double x = percent(before, after);
-    return isfinite(x) ? x * 0.01 * 20 / M_LN10 : (double)NAN;
-}
-
-static void one_part(pw_sensitivity *out, int row, const pw_quad_roots *moved)
+static void step_modes(pw_sensitivity *out, int row, const pw_quad_roots *moved)
 {
     bool pole_taken[PW_MAX_STORES] = {false}, zero_taken[PW_MAX_STORES] = {false};
-    double gain[PW_GAIN_PLACES];
     for (int i = 0; i < out->modes; i++) {
         pw_mode now, *mode = &out->mode[i];
         follow(moved, mode, mode->zero ? zero_taken : pole_taken, &now);
-        out->move[row * out->modes + i] = (pw_moves){percent(mode->f0_hz, now.f0_hz), percent(mode->q, now.q)};
+        out->move[row * out->modes + i] =
+            (pw_moves){percent(mode->f0_hz, now.f0_hz), percent(mode->q, now.q)};
     }
-    find_gains(moved, out->middle_hz, gain);
-    for (int k = 0; k < PW_GAIN_PLACES; k++) out->gain_db[row][k] = decibels(out->gain[k], gain[k]);
+}
+
+static pw_status step_parts(const pw_net *net, pw_arena *arena, pw_sensitivity *out)
+{
+    double *scale = pw_arena_take(arena, (size_t)(net->circuit->parts + 1) * sizeof *scale);
+    pw_quad_roots *moved = pw_arena_take(arena, sizeof *moved);
+    for (int i = 0; i < net->circuit->parts; i++) scale[i] = 1;
+    for (int row = 0; row < out->parts; row++) {
+        scale[out->part[row]] = 1 + STEP;
+        if (pw_net_solve(net, scale, moved) != PW_SOLVED) return PW_FAILED;
+        scale[out->part[row]] = 1;
+        step_modes(out, row, moved);
+    }
+    return PW_OK;
+}
+
+/* ---- Parts, by derivatives ---- */
+
+/* Several roots in one place, of this polynomial alone or with what cancels, have no derivatives. */
+static bool all_simple(const pw_sensitivity *s, const pw_quad_roots *roots)
+{
+    for (int i = 0; i < s->modes; i++) {
+        const pw_mode *m = &s->mode[i];
+        if (m->count > 1 && cimag(m->root) == 0) return false;
+        for (int k = 0; k < roots->hidden; k++)
+            if (cabs(roots->hidden_root[k] - m->root) < TOGETHER * cabs(m->root)) return false;
+    }
+    return true;
+}
+
+/* Of a real root or of the upper one of a pair: ln f0 = Re ln s, Q = |s| / (2 |Re s|). */
+static bool derive_mode(const pw_net *net, pw_sensitivity *out, int mode, long_complex *move)
+{
+    const pw_mode *m = &out->mode[mode];
+    long_complex s = m->root;
+    if (!pw_adjoint_root(net, m->zero, s, move)) return false;
+    for (int row = 0; row < out->parts; row++) {
+        long_complex ds = move[out->part[row]];
+        double f0 = (double)creall(ds / s);
+        double q = m->count == 2 && creal(m->root) != 0 ? f0 - (double)(creall(ds) / creall(s)) : (double)NAN;
+        out->move[row * out->modes + mode] = (pw_moves){f0, q};
+    }
+    return true;
+}
+
+static bool derive_modes(const pw_net *net, pw_sensitivity *out, long_complex *move)
+{
+    for (int i = 0; i < out->modes; i++)
+        if (!derive_mode(net, out, i, move)) return false;
+    return true;
+}
+
+/* DC and infinity are taken far below and above every root, where magnitudes stand to 1e-12. */
+static void derive_gains(const pw_net *net, pw_sensitivity *out, long_complex *move)
+{
+    double low = out->middle_hz, high = out->middle_hz;
+    for (int i = 0; i < out->modes; i++) {
+        low = fmin(low, out->mode[i].f0_hz);
+        high = fmax(high, out->mode[i].f0_hz);
+    }
+    double hz[] = {low * 1e-6, out->middle_hz, high * 1e6};
+    for (int k = 0; k < PW_GAIN_PLACES; k++) {
+        bool there = isfinite(out->gain[k]) && out->gain[k] != 0
+                     && pw_adjoint_gain(net, CMPLXL(0, TWO_PI * hz[k]), move);
+        for (int row = 0; row < out->parts; row++)
+            out->gain_db[row][k] =
+                there ? (double)creall(move[out->part[row]]) * 0.2 / M_LN10 : (double)NAN;
+    }
 }
 
 static bool can_change(const pw_part *part)
@@ -207,25 +268,20 @@ static bool can_change(const pw_part *part)
     return part->kind != PW_OP_AMP || (!part->ideal && part->gain_bandwidth_hz > 0);
 }
 
-static pw_status every_part(const pw_net *net, pw_arena *arena, pw_sensitivity *out)
+static pw_status every_part(const pw_net *net, const pw_quad_roots *roots, pw_arena *arena,
+                            pw_sensitivity *out)
 {
     const pw_circuit *circuit = net->circuit;
     size_t n = (size_t)circuit->parts + 1;
-    double *scale = pw_arena_take(arena, n * sizeof *scale);
-    pw_quad_roots *moved = pw_arena_take(arena, sizeof *moved);
+    long_complex *move = pw_arena_take(arena, n * sizeof *move);
     out->part = pw_arena_take(arena, n * sizeof *out->part);
     out->move = pw_arena_take(arena, n * (size_t)(out->modes + 1) * sizeof *out->move);
     out->gain_db = pw_arena_take(arena, n * sizeof *out->gain_db);
-    for (int i = 0; i < circuit->parts; i++) scale[i] = 1;
-    for (int i = 0; i < circuit->parts; i++) {
-        if (!can_change(&circuit->part[i])) continue;
-        scale[i] = 1 + STEP;
-        if (pw_net_solve(net, scale, moved) != PW_SOLVED) return PW_FAILED;
-        scale[i] = 1;
-        out->part[out->parts] = i;
-        one_part(out, out->parts++, moved);
-    }
-    return PW_OK;
+    for (int i = 0; i < circuit->parts; i++)
+        if (can_change(&circuit->part[i])) out->part[out->parts++] = i;
+    derive_gains(net, out, move);
+    if (all_simple(out, roots) && derive_modes(net, out, move)) return PW_OK;
+    return step_parts(net, arena, out);
 }
 
 pw_status pw_sensitivity_compute(const pw_circuit *circuit, pw_arena *arena, pw_sensitivity *out)
@@ -245,7 +301,7 @@ pw_status pw_sensitivity_compute(const pw_circuit *circuit, pw_arena *arena, pw_
         find_modes(roots, true, out);
         out->middle_hz = find_middle(roots, out);
         find_gains(roots, out->middle_hz, out->gain);
-        status = every_part(&net, arena, out);
+        status = every_part(&net, roots, arena, out);
     }
     pw_net_free(&net);
     return status;

@@ -41,9 +41,10 @@ typedef struct pw_sensitivity {
                                                     or infinite */
 } pw_sensitivity;
 
-/* Method: the circuit is solved again with each part 1e-8 larger, in quadruple precision; roots are
- * matched by nearness, and k equal ones (which part by the k-th root of 1e-8) are judged by their
- * product and sum. Accuracy: about 1e-7 of a percent per percent.
+/* Method: derivatives at each root and gain (sensitivity_adjoint.h); where roots stand together and
+ * have none, the circuit is solved again with each part 1e-8 larger, in quadruple precision, roots
+ * are matched by nearness, and k equal ones (which part by the k-th root of 1e-8) are judged by
+ * their product and sum. Accuracy: 1e-6 of a percent per percent.
  * PW_FAILED where the circuit cannot be solved (pw_analog_from_circuit tells why). */
 PW_CHECKED pw_status pw_sensitivity_compute(const pw_circuit *circuit, pw_arena *arena, pw_sensitivity *out);
 
