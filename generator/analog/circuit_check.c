@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* What a designer would see wrong on the schematic, told at its line. */
-#include "analog/circuit.h"
+#include "analog/circuit_check.h"
 
 #include <math.h>
 #include <stdio.h>
@@ -10,14 +10,6 @@
 #include "base/nearest.h"
 
 #define CHECK_PARTS 120          /* more parts than this are not one analog stage */
-
-typedef struct checker {
-    const pw_circuit *circuit;
-    pw_net net;
-    pw_messages *messages;
-    int island[PW_MAX_UNKNOWNS + 1];     /* union-find; the last but nodes is ground */
-    bool held[PW_MAX_UNKNOWNS];          /* an ideal source or output fixes the node's voltage */
-} checker;
 
 /* Names that differ in their number only ("n1", "n2") are neighbours, not slips of the pen. */
 static bool same_but_for_digits(const char *a, const char *b)
@@ -29,7 +21,7 @@ static bool same_but_for_digits(const char *a, const char *b)
     return numbered && !strncmp(a, b, n);
 }
 
-static const char *suggest_node(const checker *c, const char *name, const char *prefix)
+static const char *suggest_node(const pw_checker *c, const char *name, const char *prefix)
 {
     const char *known[PW_MAX_UNKNOWNS + 1];
     int n = 0;
@@ -90,7 +82,7 @@ static bool couplings_are_possible(const pw_net *net)
     return true;
 }
 
-static void check_couplings(checker *c)
+static void check_couplings(pw_checker *c)
 {
     const pw_circuit *circuit = c->circuit;
     const char *known[CHECK_PARTS];
@@ -125,7 +117,7 @@ static void check_couplings(checker *c)
 
 /* ---- Nodes ---- */
 
-static bool check_ports(checker *c)
+static bool check_ports(pw_checker *c)
 {
     const pw_circuit *circuit = c->circuit;
     int before = c->messages->errors;
@@ -152,7 +144,7 @@ static bool check_ports(checker *c)
     return c->messages->errors == before;
 }
 
-static void check_connections(checker *c)
+static void check_connections(pw_checker *c)
 {
     int count[PW_MAX_UNKNOWNS] = {0};
     const pw_circuit *circuit = c->circuit;
@@ -171,7 +163,7 @@ static void check_connections(checker *c)
                      "more%s", c->net.node[i], suggest_node(c, c->net.node[i], ", or did you mean "));
 }
 
-static void check_tolerances(const checker *c)
+static void check_tolerances(const pw_checker *c)
 {
     for (int i = 0; i < c->circuit->parts; i++) {
         const pw_part *part = &c->circuit->part[i];
@@ -181,7 +173,7 @@ static void check_tolerances(const checker *c)
     }
 }
 
-static void check_shorted_parts(checker *c)
+static void check_shorted_parts(pw_checker *c)
 {
     for (int i = 0; i < c->circuit->parts; i++) {
         const pw_part *part = &c->circuit->part[i];
@@ -201,7 +193,7 @@ static void check_shorted_parts(checker *c)
 
 /* ---- Islands and loops of sources ---- */
 
-static int find(checker *c, int node)
+static int find(pw_checker *c, int node)
 {
     int i = node < 0 ? c->net.nodes : node;
     while (c->island[i] != i) i = c->island[i] = c->island[c->island[i]];
@@ -209,21 +201,16 @@ static int find(checker *c, int node)
 }
 
 /* false: the two were joined already */
-static bool join(checker *c, int a, int b)
+static bool join(pw_checker *c, int a, int b)
 {
     int x = find(c, a), y = find(c, b);
     c->island[x] = y;
     return x != y;
 }
 
-static void separate(checker *c)
+static void separate(pw_checker *c)
 {
     for (int i = 0; i <= c->net.nodes; i++) c->island[i] = i;
-}
-
-static int node_of(const checker *c, const pw_part *part, int k)
-{
-    return pw_net_node(&c->net, part->node[k]);
 }
 
 static bool ideal_output(const pw_part *part)
@@ -231,57 +218,56 @@ static bool ideal_output(const pw_part *part)
     return part->kind == PW_OP_AMP && (part->ideal || !(part->output_resistance > 0));
 }
 
-/* Two nodes whose voltage difference an ideal source sets; false: the part is no such source. */
-static bool source_ends(const checker *c, const pw_part *part, int *a, int *b)
+bool pw_checker_source(const pw_checker *c, const pw_part *part, int *a, int *b)
 {
     if (ideal_output(part)) {
-        *a = node_of(c, part, 2);
+        *a = pw_checker_node(c, part, 2);
         *b = -1;
         return true;
     }
     if (part->kind != PW_AMPLIFIER) return false;
-    *a = node_of(c, part, 2);
-    *b = node_of(c, part, 3);
+    *a = pw_checker_node(c, part, 2);
+    *b = pw_checker_node(c, part, 3);
     return true;
 }
 
-static bool input_is_ideal(const pw_circuit *circuit)
+bool pw_checker_input_is_ideal(const pw_circuit *circuit)
 {
     return !circuit->current_input && !(circuit->source_resistance > 0);
 }
 
-static void check_source_loops(checker *c)
+static void check_source_loops(pw_checker *c)
 {
     int a, b;
     separate(c);
-    if (input_is_ideal(c->circuit)) join(c, pw_net_node(&c->net, c->circuit->input), -1);
+    if (pw_checker_input_is_ideal(c->circuit)) join(c, pw_net_node(&c->net, c->circuit->input), -1);
     for (int i = 0; i < c->circuit->parts; i++) {
         const pw_part *part = &c->circuit->part[i];
-        if (source_ends(c, part, &a, &b) && !join(c, a, b))
+        if (pw_checker_source(c, part, &a, &b) && !join(c, a, b))
             pw_error(c->messages, part->at, "the output of part '%s' closes a loop of ideal sources (the "
                      "input, op-amp and amplifier outputs); expected a resistor between two outputs",
                      part->name);
     }
 }
 
-static void join_parts(checker *c)
+static void join_parts(pw_checker *c)
 {
     for (int i = 0; i < c->circuit->parts; i++) {
         const pw_part *part = &c->circuit->part[i];
         switch (part->kind) {
         case PW_RESISTOR: case PW_CAPACITOR: case PW_INDUCTOR:
-            join(c, node_of(c, part, 0), node_of(c, part, 1));
+            join(c, pw_checker_node(c, part, 0), pw_checker_node(c, part, 1));
             break;
-        case PW_OP_AMP: join(c, node_of(c, part, 2), -1); break;
+        case PW_OP_AMP: join(c, pw_checker_node(c, part, 2), -1); break;
         case PW_AMPLIFIER: case PW_TRANSCONDUCTOR:
-            join(c, node_of(c, part, 2), node_of(c, part, 3));
+            join(c, pw_checker_node(c, part, 2), pw_checker_node(c, part, 3));
             break;
         case PW_COUPLING: break;
         }
     }
 }
 
-static void check_islands(checker *c)
+static void check_islands(pw_checker *c)
 {
     const pw_circuit *circuit = c->circuit;
     separate(c);
@@ -309,107 +295,20 @@ static void check_islands(checker *c)
     }
 }
 
-/* ---- Paths ---- */
-
-static bool reach(const checker *c, bool *reached, int node, bool through_held)
-{
-    if (node < 0 || reached[node] || (c->held[node] && !through_held)) return false;
-    reached[node] = true;
-    return true;
-}
-
-static bool is_reached(const bool *reached, int node) { return node >= 0 && reached[node]; }
-
-static bool step_coupling(const checker *c, const pw_part *part, bool *reached)
-{
-    bool any = false, grew = false;
-    for (int pass = 0; pass < 2; pass++)
-        for (int i = 0; i < c->circuit->parts; i++) {
-            const pw_part *l = &c->circuit->part[i];
-            if (l->kind != PW_INDUCTOR || (strcmp(l->name, part->node[0]) && strcmp(l->name, part->node[1])))
-                continue;
-            int a = node_of(c, l, 0), b = node_of(c, l, 1);
-            any |= is_reached(reached, a) || is_reached(reached, b);
-            if (pass && any) {
-                grew |= reach(c, reached, a, false);
-                grew |= reach(c, reached, b, false);
-            }
-        }
-    return grew;
-}
-
-/* One part carries what reached its senses or an end on; true where it reached a new node. */
-static bool step(const checker *c, const pw_part *part, bool *reached)
-{
-    int n[4] = {-1, -1, -1, -1};
-    for (int k = 0; k < pw_circuit_part_nodes(part->kind); k++) n[k] = node_of(c, part, k);
-    bool first = is_reached(reached, n[0]) || is_reached(reached, n[1]), grew = false;
-    switch (part->kind) {
-    case PW_RESISTOR: case PW_CAPACITOR: case PW_INDUCTOR:
-        for (int k = 0; k < 2 && first; k++) grew |= reach(c, reached, n[k], false);
-        return grew;
-    case PW_OP_AMP: return first && reach(c, reached, n[2], true);
-    case PW_AMPLIFIER: case PW_TRANSCONDUCTOR:
-        first |= is_reached(reached, n[2]) || is_reached(reached, n[3]);
-        for (int k = 2; k < 4 && first; k++) grew |= reach(c, reached, n[k], part->kind == PW_AMPLIFIER);
-        return grew;
-    case PW_COUPLING: return step_coupling(c, part, reached);
-    }
-    return false;
-}
-
-static void spread_from(const checker *c, bool *reached)
-{
-    bool grew = true;
-    while (grew) {
-        grew = false;
-        for (int i = 0; i < c->circuit->parts; i++) grew |= step(c, &c->circuit->part[i], reached);
-    }
-}
-
-static void check_feedback_paths(checker *c)
-{
-    for (int i = 0; i < c->circuit->parts; i++) {
-        const pw_part *part = &c->circuit->part[i];
-        if (part->kind != PW_OP_AMP) continue;
-        bool reached[PW_MAX_UNKNOWNS] = {false};
-        reach(c, reached, node_of(c, part, 2), true);
-        spread_from(c, reached);
-        if (is_reached(reached, node_of(c, part, 0)) || is_reached(reached, node_of(c, part, 1))) continue;
-        if (part->ideal)
-            pw_error(c->messages, part->at, "op-amp '%s' has no feedback path from its output to its "
-                     "inputs; expected one, for an ideal op-amp's output is what makes them equal",
-                     part->name);
-        else
-            pw_warning(c->messages, part->at, "op-amp '%s' has no feedback path from its output to its "
-                       "inputs and runs at its full gain; expected feedback", part->name);
-    }
-}
-
-static void check_path(checker *c)
-{
-    bool reached[PW_MAX_UNKNOWNS] = {false};
-    reach(c, reached, pw_net_node(&c->net, c->circuit->input), true);
-    spread_from(c, reached);
-    if (is_reached(reached, c->net.output[0]) || is_reached(reached, c->net.output[1])) return;
-    pw_error(c->messages, c->circuit->output_at[0], "no path leads from the input '%s' to the output '%s'; "
-             "expected parts that connect them", c->circuit->input, c->circuit->output[0]);
-}
-
-static void mark_held(checker *c)
+static void mark_held(pw_checker *c)
 {
     int a, b;
-    if (input_is_ideal(c->circuit)) {
+    if (pw_checker_input_is_ideal(c->circuit)) {
         int in = pw_net_node(&c->net, c->circuit->input);
         if (in >= 0) c->held[in] = true;
     }
     for (int i = 0; i < c->circuit->parts; i++)
-        if (source_ends(c, &c->circuit->part[i], &a, &b) && a >= 0 && b < 0) c->held[a] = true;
+        if (pw_checker_source(c, &c->circuit->part[i], &a, &b) && a >= 0 && b < 0) c->held[a] = true;
 }
 
 void pw_circuit_check(const pw_circuit *circuit, pw_messages *messages)
 {
-    checker c = {.circuit = circuit, .messages = messages};
+    pw_checker c = {.circuit = circuit, .messages = messages};
     int before = messages->errors;
     if (circuit->parts > CHECK_PARTS) {
         pw_error(messages, circuit->at, "the circuit has %d parts; expected at most %d (a cascade of "
@@ -432,45 +331,8 @@ void pw_circuit_check(const pw_circuit *circuit, pw_messages *messages)
     check_connections(&c);
     check_source_loops(&c);
     mark_held(&c);
-    check_feedback_paths(&c);
+    pw_check_feedback_paths(&c);
     if (ports && messages->errors == before) check_islands(&c);
-    if (ports && messages->errors == before) check_path(&c);
+    if (ports && messages->errors == before) pw_check_path(&c);
     pw_net_free(&c.net);
-}
-
-/* ---- Feedback at DC ---- */
-
-/* v(plus) - v(minus) for 1 V at what op-amp i drives, everything else at work, the input at rest,
- * as s goes to 0. */
-static double loop_gain_sign(const pw_net *net, int i)
-{
-    const pw_driver *d = &net->driver[i];
-    pw_net cut = *net;
-    cut.arena = (pw_arena){0};
-    cut.entry = pw_arena_take(&cut.arena, (size_t)(net->entries + 1) * sizeof *cut.entry);
-    cut.store = pw_arena_take(&cut.arena, (size_t)(net->stores + 1) * sizeof *cut.store);
-    cut.entries = 0;
-    for (int k = 0; k < net->entries; k++)
-        if (net->entry[k].row != d->row) cut.entry[cut.entries++] = net->entry[k];
-    cut.entry[cut.entries++] = (pw_entry){d->row, d->drive, 1, 0};
-    memcpy(cut.store, net->store, (size_t)net->stores * sizeof *cut.store);
-    for (int k = 0; k < net->stores; k++)
-        if (net->store[k].row[0] == d->row) cut.store[k].row[0] = -1;
-    cut.input = d->row;
-    cut.output[0] = d->plus;
-    cut.output[1] = d->minus;
-    double gain = creal(pw_net_response_quad(&cut, 1e-9 * pw_net_reference(net)));
-    pw_arena_free(&cut.arena);
-    return gain;
-}
-
-void pw_circuit_check_feedback(const pw_circuit *circuit, const pw_net *net, pw_messages *messages)
-{
-    for (int i = 0; i < net->drivers; i++) {
-        const pw_part *part = &circuit->part[net->driver[i].part];
-        if (loop_gain_sign(net, i) > 1e-6)
-            pw_warning(messages, part->at, "the feedback of op-amp '%s' is positive at DC, where a real "
-                       "one latches; expected more of its output at 'minus' than at 'plus' (are the two "
-                       "exchanged?)", part->name);
-    }
 }

@@ -7,6 +7,7 @@
 #include "analog/sensitivity.h"
 
 #define MODES_A_TABLE 3          /* so that a row fits 80 columns */
+#define MOST_MODES 9             /* in tables for people */
 
 static const char *unit_of(pw_part_kind kind)
 {
@@ -64,51 +65,65 @@ static void put_move(double x, pw_text *out)
     else pw_text_print(out, " %+8.3f", fabs(x) < 0.0005 ? 0.0 : x);
 }
 
-static void put_heads(const pw_sensitivity *s, int first, int last, bool gains, pw_text *out)
+/* The modes of the tables, in order: all, or the slowest of many. */
+static int choose_modes(const pw_sensitivity *s, int *chosen)
+{
+    int n = 0, poles = 0, zeros = 0;
+    for (int i = 0; i < s->modes; i++) {
+        bool wanted = s->modes <= MOST_MODES
+                      || (s->mode[i].zero ? zeros++ < MOST_MODES / 3 : poles++ < MOST_MODES / 3 * 2);
+        if (wanted) chosen[n++] = i;
+    }
+    return n;
+}
+
+static void put_heads(const pw_sensitivity *s, const int *mode, int modes, pw_text *out)
 {
     char hz[PW_NUMBER_ROOM], head[64];
     pw_text_print(out, "  %-19s", "");
-    for (int i = first; i < last; i++) {
-        const pw_mode *m = &s->mode[i];
+    for (int i = 0; i < modes; i++) {
+        const pw_mode *m = &s->mode[mode[i]];
         snprintf(head, sizeof head, "%s %s", m->zero ? "zero" : "pole", pw_si(hz, m->f0_hz, "Hz", 4));
         pw_text_print(out, " %17s", head);
     }
-    if (gains) pw_text_print(out, " %26s", "gain, dB");
+    if (!modes) pw_text_print(out, " %26s", "gain, dB");
     pw_text_print(out, "\n  %-6s %12s", "part", "value");
-    for (int i = first; i < last; i++) pw_text_print(out, " %8s %8s", "f0", s->mode[i].count == 2 ? "Q" : "");
-    if (gains) pw_text_print(out, " %8s %8s %8s", "DC", isinf(s->gain[0]) ? "mid" : "largest", "infinity");
+    for (int i = 0; i < modes; i++)
+        pw_text_print(out, " %8s %8s", "f0", s->mode[mode[i]].count == 2 ? "Q" : "");
+    if (!modes) pw_text_print(out, " %8s %8s %8s", "DC", isinf(s->gain[0]) ? "mid" : "largest", "infinity");
     pw_text_add(out, "\n");
 }
 
-static void put_rows(const pw_sensitivity *s, int first, int last, bool gains, pw_text *out)
+/* Of these modes, or, with none, of the gains. */
+static void put_rows(const pw_sensitivity *s, const int *mode, int modes, pw_text *out)
 {
     char value[PW_NUMBER_ROOM];
+    put_heads(s, mode, modes, out);
     for (int row = 0; row < s->parts; row++) {
         const pw_part *part = &s->circuit->part[s->part[row]];
         pw_text_print(out, "  %-6s %12s", part->name, amount(value, value_of(part), unit_of(part->kind)));
-        for (int i = first; i < last; i++) {
-            const pw_moves *m = &s->move[row * s->modes + i];
+        for (int i = 0; i < modes; i++) {
+            const pw_moves *m = &s->move[row * s->modes + mode[i]];
             put_move(m->f0, out);
-            if (s->mode[i].count == 2) put_move(m->q, out);
+            if (s->mode[mode[i]].count == 2) put_move(m->q, out);
             else pw_text_print(out, " %8s", "");
         }
-        for (int k = 0; k < PW_GAIN_PLACES && gains; k++) put_move(s->gain_db[row][k], out);
+        for (int k = 0; k < PW_GAIN_PLACES && !modes; k++) put_move(s->gain_db[row][k], out);
         pw_text_add(out, "\n");
     }
 }
 
 static void put_table(const pw_sensitivity *s, pw_text *out)
 {
+    int chosen[2 * PW_MAX_ROOTS], n = choose_modes(s, chosen);
     pw_text_add(out, "  sensitivity to each part: percent per percent; of the gain: dB per percent\n");
-    for (int first = 0; first < s->modes; first += MODES_A_TABLE) {
-        int last = first + MODES_A_TABLE < s->modes ? first + MODES_A_TABLE : s->modes;
-        if (first) pw_text_add(out, "\n");
-        put_heads(s, first, last, false, out);
-        put_rows(s, first, last, false, out);
+    for (int first = 0; first < n; first += MODES_A_TABLE) {
+        put_rows(s, chosen + first, n - first < MODES_A_TABLE ? n - first : MODES_A_TABLE, out);
+        pw_text_add(out, "\n");
     }
-    if (s->modes) pw_text_add(out, "\n");
-    put_heads(s, 0, 0, true, out);
-    put_rows(s, 0, 0, true, out);
+    put_rows(s, NULL, 0, out);
+    if (n < s->modes)
+        pw_text_print(out, "  and %d faster poles and zeros (--json lists all)\n", s->modes - n);
 }
 
 /* ---- The nearest values of a series ---- */

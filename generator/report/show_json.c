@@ -4,6 +4,7 @@
 #include <math.h>
 
 #include "report/json_value.h"
+#include "report/tolerance.h"
 
 #define ROWS 61
 
@@ -36,6 +37,7 @@ void pw_show_json(const pw_stage *stage, const pw_roots *analog, pw_text *out)
     pw_json_put(o, "version", pw_json_text(PW_VERSION));
     pw_json_put(o, "stage_file_sha256", pw_json_text(stage->sha256));
     pw_json_put(o, "analog", pw_json_roots(analog));
+    pw_json_put(o, "circuits", pw_json_circuits(stage));
     pw_json_put(o, "table", table(analog, span));
     pw_json_write(o, out);
 }
