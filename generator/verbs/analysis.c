@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "verbs/analysis.h"
 
+#include <stdlib.h>
 #include <string.h>
 
 #include "analog/spread.h"
@@ -24,7 +25,7 @@ pw_status pw_analysis_read(const pw_call *call, pw_analysis *analysis)
     analysis->messages.file = strcmp(call->stage, "-") ? call->stage : "stdin";
     pw_status status = pw_file_read(call->stage, LARGEST_STAGE_FILE, &yaml);
     if (!status) {
-        const char **sets = pw_arena_take(&analysis->stage.arena, (size_t)(call->sets + 1) * sizeof *sets);
+        const char **sets = pw_take((size_t)(call->sets + 1) * sizeof *sets);
         int n = call->sets;
         if (n) memcpy(sets, call->set, (size_t)n * sizeof *sets);
         if (call->target) {
@@ -32,6 +33,7 @@ pw_status pw_analysis_read(const pw_call *call, pw_analysis *analysis)
             sets[n++] = pw_text_string(&target);
         }
         status = pw_stage_read(&yaml, sets, n, &analysis->stage, &analysis->messages);
+        free(sets);
     }
     pw_text_free(&target);
     pw_text_free(&yaml);
