@@ -21,17 +21,18 @@ static double extrapolate(double sum, double h, double d, double target)
     return h > 0 ? left / h : INFINITY;
 }
 
-/* Whether a constant input of one LSB is lost in rounding on its way: a bit-true run that should move
+/* Whether a constant input of one code is lost in rounding on its way: a bit-true run that should move
  * the output by eight LSB moves it by less than four. */
 static bool stands_still(const pw_format *format, const pw_realisation *r, int k, double samples_to_clip)
 {
+    int64_t code = llround(r->input_code / format->lsb);
     int64_t state[PW_MAX_SECTIONS][6] = {{0}}, y = 0;
     double samples = 8 * samples_to_clip * format->lsb;
     if (!(samples < RUN))
         samples = RUN;           /* then anything short of what it should be counts */
     double wanted = samples / (samples_to_clip * format->lsb) / 2;
     for (long n = 0; n < (long)samples + 64; n++) {
-        y = 1;
+        y = code;
         for (int i = 0; i <= k; i++)
             y = pw_step_section(format, r->wrap, &r->section[i], state[i], y, NULL);
     }
@@ -39,8 +40,8 @@ static bool stands_still(const pw_format *format, const pw_realisation *r, int k
 }
 
 /* The response of sections 0..k to an impulse: |h| times the peak adds up for the worst input, h times
- * one LSB for a constant one. */
-static reach find_reach(const pw_line *line, int k, double peak, double lsb)
+ * one code for a constant one. */
+static reach find_reach(const pw_line *line, int k, double peak, double code)
 {
     double state[PW_MAX_SECTIONS][4] = {{0}}, size = 0, step = 0, h = 0, before = 0;
     reach out = {NAN, NAN};
@@ -62,7 +63,7 @@ static reach find_reach(const pw_line *line, int k, double peak, double lsb)
             v = y;
         }
         before = h, h = v;
-        size += fabs(h) * peak, step += h * lsb;
+        size += fabs(h) * peak, step += h * code;
         if (isnan(out.worst) && size >= 1)
             out.worst = (double)(n + 1);
         if (isnan(out.code) && fabs(step) >= 1)
@@ -72,7 +73,7 @@ static reach find_reach(const pw_line *line, int k, double peak, double lsb)
     if (isnan(out.worst))
         out.worst = ceil(RUN + extrapolate(size, fabs(h) * peak, slope * peak, 1));
     if (isnan(out.code))
-        out.code = ceil(RUN + extrapolate(step * (h < 0 ? -1 : 1), fabs(h) * lsb, slope * lsb, 1));
+        out.code = ceil(RUN + extrapolate(step * (h < 0 ? -1 : 1), fabs(h) * code, slope * code, 1));
     return out;
 }
 
@@ -81,8 +82,7 @@ void pw_integrators_time(const pw_proof *proof, pw_realisation *r)
     for (int i = 0; i < r->count; i++) {     /* node i is the output of section i */
         if (!r->node[i].integrates)
             continue;
-        double lsb = proof->format.fixed ? proof->format.lsb : 0;
-        reach out = find_reach(proof->paths.line, i, r->input_peak, lsb);
+        reach out = find_reach(proof->paths.line, i, r->input_peak, r->input_code);
         r->node[i].samples_to_clip = out.worst;
         r->node[i].samples_to_clip_code = !proof->format.fixed ? NAN
                                         : stands_still(&proof->format, r, i, out.code) ? INFINITY

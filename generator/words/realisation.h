@@ -70,7 +70,7 @@ typedef struct pw_node {
     double peak_gain;            /* L1 from input to node, without round-off */
     bool can_clip, integrates;
     double samples_to_clip;      /* integrators, for the worst input at peak; NAN otherwise */
-    double samples_to_clip_code; /* integrators, for one code (one LSB) of offset; NAN otherwise */
+    double samples_to_clip_code; /* integrators, for input_code of offset; NAN otherwise */
 } pw_node;
 
 #define PW_MAX_NODES (5 * PW_MAX_SECTIONS)
@@ -107,6 +107,8 @@ typedef struct pw_realisation {
     int nodes;
     double input_peak;           /* of full scale, <= 1: the bound assumes |x| <= this */
     double input_full_scale, output_full_scale;   /* in user units */
+    double input_code;           /* of full scale: one code of the input's converter where its bits
+                                    are given, at least one LSB; else one LSB; 0 for floats */
     double first_clip_input;     /* input level (of full scale) at which the first node can clip;
                                     INFINITY: none can at any level up to full scale */
     pw_noise noise;

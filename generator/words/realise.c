@@ -76,6 +76,13 @@ static void ideal_gains(pw_job *j)
     }
 }
 
+static double input_code(const pw_port *input, const pw_format *format)
+{
+    if (!format->fixed) return 0;
+    double code = input->bits ? ldexp(input->high - input->low, -input->bits) / input->full_scale : 0;
+    return fmax(code, format->lsb);
+}
+
 static void set_up(pw_job *j, const pw_stage *stage, const pw_digital *digital, pw_realisation *out,
                    pw_messages *messages)
 {
@@ -90,6 +97,7 @@ static void set_up(pw_job *j, const pw_stage *stage, const pw_digital *digital, 
     out->input_full_scale = stage->input.full_scale;
     out->output_full_scale = stage->output.full_scale;
     out->input_peak = fmin(1, stage->input.peak / stage->input.full_scale);
+    out->input_code = input_code(&stage->input, &j->format);
     out->structure_why = "";
     j->factor = digital->z.factor * out->input_full_scale / out->output_full_scale;
     pw_band_make(stage, &digital->z, &j->band);
