@@ -33,11 +33,13 @@ static double deviation_with(pw_job *job, int bits)
     return worst;
 }
 
-/* The shortest words up to 32 bits, longer than now, that keep the deviation; 0: none. Deviation
- * falls by half a bit, not always by each: found by halving. */
+/* The shortest words up to 32 bits, longer than now, that keep the deviation with a fifth to spare (the
+ * last word is luck, and scales move a little after this); 0: none. Deviation falls by half a bit, not
+ * always by each: found by halving. */
 static int bits_for(pw_job *job, double deviation_db)
 {
     int low = job->format.word_bits, high = 32;
+    deviation_db *= 0.8;
     if (low >= high || !(deviation_with(job, high) <= deviation_db))
         return 0;
     while (high - low > 1) {

@@ -29,6 +29,11 @@ def low_pass_10_hz():
     z, p, k = signal.butter(2, 10, fs=48000, output="zpk")
     q31, = wp.ask([wp.question([-1, -1], p, k, sample="q31")])
     check(q31["magnitude_db"] < 0.001, "10 Hz low-pass, q31: deviation under 0.001 dB", str(q31["magnitude_db"]))
+    fed = wp.one([-1, -1], p, k, sample="q31", structure="direct-1-shaped")
+    check(fed["magnitude_db"] < 0.001 and fed["sections"][0]["structure"] == wp.SHAPED,
+          "in direct form as well, by the words next to the rounded ones", str(fed["magnitude_db"]))
+    check(fed["sections"][0]["bw"][1] == 2 * fed["sections"][0]["bw"][0] == 2 * fed["sections"][0]["bw"][2],
+          "whose double zero at -1 is exact", str(fed["sections"][0]["bw"]))
     hz = np.geomspace(4.8, 300, 40)
     ideal = signal.freqz_zpk([-1, -1], p, k, worN=hz, fs=48000)[1]
     worst = np.max(np.abs(20 * np.log10(np.abs(response(q31, hz, 48000) / ideal))))
@@ -57,6 +62,8 @@ def notch():
         size = np.abs(response(answer, hz, 48000)) if structure != "coupled" else coupled_size(answer, hz, 48000)
         at = float(hz[np.argmin(size)])
         check(abs(at / 50 - 1) < 1e-4, f"notch, {structure}: at 50 Hz within 0.01 %", f"{at}")
+        check(abs(at / 50 - 1) < 3e-6 or structure == "auto", f"notch, {structure}: nearer than one step of a word would put it",
+              f"{at / 50 - 1:.1e}")
         check(size.min() < 1e-3, f"notch, {structure}: deeper than 60 dB", f"{20 * np.log10(float(size.min())):.1f} dB")
 
 
@@ -78,6 +85,10 @@ def elliptic():
     tight = wp.one(z, p, k, sample="q15", magnitude_limit=0.002, structure="direct-1", band=[1000, 3000])
     bits = tight["enough_bits"]
     check(16 < bits <= 32, "a limit that 16 bits miss names the words that would do", f"{bits} bits")
+    just, short = (wp.one(z, p, k, sample="q15", bits=b, magnitude_limit=0.002, structure="direct-1", band=[1000, 3000])
+                   for b in (bits, bits - 2))
+    check(just["magnitude_db"] <= 0.002 < short["magnitude_db"], "words of that length do, two bits less do not",
+          f"{just['magnitude_db']:.5f} and {short['magnitude_db']:.5f} dB")
 
 
 def ac_coupling():
@@ -122,6 +133,27 @@ def integrator():
         check(abs(said / exact - 1) < 0.01, f"{sample}: samples to the clamp for one code", f"{said}")
 
 
+def two_integrators():
+    """Behind a clamp the bounds start from full scale: the second of two integrators, and a section
+    behind one that clips."""
+    answer = wp.one([0.9, 0.95], [1, 1], 0.001, sample="q31")
+    nodes = wp.outputs(answer)
+    check(len(nodes) == 2 and all(n["integrates"] for n in nodes), "two integrators stand alone")
+    check(all(sum(s["aw"]) == -(1 << s["af"]) for s in answer["sections"]), "both poles at 1 are exact")
+    acc = next(n for n in answer["nodes"] if n["name"] == "section 2 accumulator")
+    s = answer["sections"][1]
+    reach = sum(map(abs, s["b"])) + sum(map(abs, s["a"][1:]))
+    check(reach <= acc["bound"] <= reach * 1.001, "the second one's accumulator: any state, input of full scale",
+          f"{acc['bound']} for {reach}")
+    z, p, k = signal.butter(4, 1000, fs=48000, output="zpk")
+    loud = wp.one(z, p, k * 40, sample="q31", scaling="none")
+    first, second = wp.outputs(loud)
+    s = loud["sections"][1]
+    h = signal.lfilter(s["b"], s["a"], np.eye(1, 4000)[0])
+    check(first["can_clip"] and np.sum(abs(h)) <= second["bound"] <= 1.01 * np.sum(abs(h)),
+          "behind a section that clips the input is full scale", f"{second['bound']} for {np.sum(abs(h))}")
+
+
 def sixty_decibels():
     """60 dB of gain and a peak input of a thousandth of full scale."""
     z, p, k = signal.butter(2, 1000, fs=48000, output="zpk")
@@ -163,6 +195,6 @@ def every_order():
     check(found <= min(others) * 1.005, "the order found is the quietest of all six", f"{found:.3f}, {sorted(others)}")
 
 
-for case in (low_pass_10_hz, notch, elliptic, ac_coupling, integrator, sixty_decibels, ten_sections, every_order):
+for case in (low_pass_10_hz, notch, elliptic, ac_coupling, integrator, two_integrators, sixty_decibels, ten_sections, every_order):
     case()
 done()

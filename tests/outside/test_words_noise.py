@@ -35,12 +35,12 @@ def measured_noise():
     for case, answer in zip(cases, wp.ask(questions)):
         noise, got = answer["noise"], answer["random"]
         db = 20 * np.log10(noise["rms_lsb"] / got["rms"])
-        off = abs(noise["offset_lsb"] - got["mean"]) / (noise["rms_lsb"] * 4 + 0.05)
+        off = abs(noise["offset_lsb"] - got["mean"]) / (0.02 * abs(got["mean"]) + 0.06 * noise["rms_lsb"] + 0.005)
         worst, worst_mean = max(worst, abs(db)), max(worst_mean, off)
         if abs(db) > 0.3 or off > 1 or got["clipped"]:
             check(False, case, f"{noise} {got}")
     check(worst <= 0.3, f"noise of {len(cases)} filters within 0.3 dB of bit-true runs", f"{worst:.3f} dB")
-    check(worst_mean <= 1, "their offsets", f"{worst_mean:.3f}")
+    check(worst_mean <= 1, "their offsets within 2 % and what chance allows", f"{worst_mean:.3f}")
 
 
 def probes():
