@@ -119,6 +119,15 @@ check-all: all                   ## the tests and every target in full
 
 # ---- Measuring ----
 
+bench: all probes                ## what emitted code costs on every part, beside the yardstick; generator time
+	$(PYTHON) tests/bench/bench.py
+
+bench-write: all probes          ## the same, and pins it: tests/bench/table.md and counts.json
+	$(PYTHON) tests/bench/bench.py --write
+
+check-targets: all probes        ## emitted stages on every part under its emulator, all of them
+	PW_FULL=1 $(PYTHON) tests/targets/test_targets.py
+
 sizes: all                       ## the size of the program and of each runtime file
 	@size build/polewright; for f in runtime/*.c; do \
 	  $(CC) -std=c99 -Os -Iruntime -Iinclude/polewright -c -o $(OUT)/size.o $$f && size $(OUT)/size.o | tail -n 1; done

@@ -181,10 +181,54 @@ static void set_bytes(pw_template_values *v, const char *name, uint64_t value, i
         pw_template_set_number(v, pw_arena_print(v->arena, "%s_%d", name, k), (value >> 8 * k) & 0xFFu);
 }
 
+/* A negative word takes its sample complemented: flags where a sample turns. */
+static void plan_avr_turns(pw_template_values *v, const int32_t b[3], const int32_t a[3])
+{
+    const bool minus[5] = {b[0] < 0, b[1] < 0, b[2] < 0, a[1] > 0, a[2] > 0};
+    for (int i = 0; i < 5; i++) pw_template_set_number(v, pw_arena_print(v->arena, "%s_com", avr_word[i]), minus[i]);
+    pw_template_set_number(v, "x1_turn", minus[0] != minus[1]);
+    pw_template_set_number(v, "x2_turn", minus[1] != minus[2]);
+    pw_template_set_number(v, "y2_turn", minus[3] != minus[4]);
+}
+
+/* What offsets and complements leave over, modulo 2^64: see the kernel. */
+static uint64_t avr_constant(const facts *f, const int32_t b[3], const int32_t a[3])
+{
+    uint64_t sum = (uint64_t)f->half + (UINT64_C(1) << (31 + f->F));
+    for (int i = 0; i < 5; i++) {
+        int64_t word = i < 3 ? b[i] : -(int64_t)a[i - 2];
+        if (word >= 0) sum -= (uint64_t)word << 31;
+        else sum += (uint64_t)-word - ((uint64_t)-word << 31);
+    }
+    return sum;
+}
+
+static bool choose_avr_wide(const facts *given, pw_kernel *k)
+{
+    facts f = *given;
+    int32_t b[3];
+    fold_left(&f, b);
+    if (f.q15 || f.left || f.right || f.F < 25 || f.F > 31) return false;
+    *k = (pw_kernel){.file = "avr", .kernel = "wide", .values = k->values, .multiple = 1, .clamps = f.clips,
+                     .why = "64-bit sum of products of bytes"};
+    pw_template_values *v = &k->values;
+    set_common(v, &f);
+    plan_avr_words(v, b, f.w->a, 4);
+    plan_avr_turns(v, b, f.w->a);
+    uint64_t constant = avr_constant(&f, b, f.w->a);
+    set_bytes(v, "d1", constant & UINT64_C(0xFF7F7F7F7F7FFFFF), 8);     /* what a column may start with */
+    for (int i = 2; i < 7; i++)
+        pw_template_set_number(v, pw_arena_print(v->arena, "d1_high_%d", i), constant >> (8 * i + 7) & 1u);
+    pw_template_set_number(v, "up", 32 - f.F);
+    pw_template_set_number(v, "limit", 1 << (f.F - 24));
+    pw_template_set_number(v, "negative", 0x80 + (1 << (f.F - 25)));
+    return true;
+}
+
 static bool choose_avr(const facts *f, pw_kernel *k)
 {
     const int32_t *b = f->w->b, *a = f->w->a;
-    if (!fits_32(f) || f->F < 9 || f->F > 15) return false;
+    if (!fits_32(f) || f->F < 9 || f->F > 15) return choose_avr_wide(f, k);
     *k = (pw_kernel){.file = "avr", .kernel = "narrow", .values = k->values, .multiple = 1, .clamps = f->clips,
                      .narrow = true, .why = "32-bit sum of products of bytes"};
     pw_template_values *v = &k->values;

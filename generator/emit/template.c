@@ -118,7 +118,8 @@ static void expand(expansion *e, int from, int to);
 static int expand_if(expansion *e, int at, int to, const char *name)
 {
     bool want = *name != '!';
-    bool holds = strcmp(value_of(e, want ? name : name + 1), "0") != 0;
+    const char *word = want ? name : name + 1;            /* a number stands for itself */
+    bool holds = strcmp(isdigit((unsigned char)*word) ? word : value_of(e, word), "0") != 0;
     int middle = matching(e, at + 1, to, true), end = middle;
     bool has_else = middle < to && strstr(e->line[middle], "@else");
     if (has_else) end = matching(e, middle + 1, to, false);

@@ -4,7 +4,7 @@
  *
  *   # ..                      a comment for the reader of the kernel file, dropped
  *   @kernel NAME              the lines up to the next @kernel
- *   @if NAME / @else / @end   kept where the value NAME is not 0 (@if !NAME: where it is)
+ *   @if NAME / @else / @end   kept where the value NAME is not 0 (@if !NAME: where it is); NAME may be a number
  *   @body NAME p q .. / @end  lines for later use
  *   @use NAME v w ..          those lines with p, q, .. standing for v, w, ..
  *   @repeat NAME / @end       as often as the value NAME says
@@ -17,7 +17,7 @@
 #include "base/arena.h"
 #include "base/text.h"
 
-#define PW_TEMPLATE_VALUES 128
+#define PW_TEMPLATE_VALUES 160
 
 typedef struct pw_template_values {
     struct { const char *name, *text; } row[PW_TEMPLATE_VALUES];

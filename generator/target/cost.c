@@ -5,6 +5,8 @@
 #include <stdlib.h>
 #include <string.h>
 
+#include "emit/kernel.h"
+
 void pw_cost_model_read(pw_settings *settings, pw_arena *arena, pw_cost_model **out, pw_messages *messages)
 {
     pw_cost_model model = {pw_arena_take(arena, (size_t)(settings->rows + 1) * sizeof *model.figure), 0};
@@ -49,37 +51,77 @@ static int state_words(const pw_words *w)
     return w->order == 0 ? 0 : 4;
 }
 
-static double figure(const pw_cost_model *model, const char *name)
+/* The columns of a row of the model. */
+enum { SECTION, PROVED, RIGHT, FIRST, CASCADE, FLASH_SECTION, FLASH_REST, STACK, COLUMNS };
+
+/* The row of this name; false where the model has none. Values of a list stand as rows of one name. */
+static bool row_of(const pw_cost_model *model, const char *name, double row[COLUMNS])
 {
-    for (int i = 0; i < model->figures; i++)
-        if (!strcmp(model->figure[i].name, name)) return model->figure[i].value;
-    return NAN;
+    int n = 0;
+    for (int i = 0; i < model->figures && n < COLUMNS; i++)
+        if (!strcmp(model->figure[i].name, name)) row[n++] = model->figure[i].value;
+    return n == COLUMNS;
 }
 
-static double cycles(const pw_realisation *r, const pw_cost_model *model)
+/* How the row of a section is called: "q15-16-direct-1", "runtime-float32-transposed-2". A 16-bit section
+ * whose sum needs 64 bits costs what one with 32-bit words does. */
+static const char *row_name(const pw_stage *stage, const pw_realisation *r, int section, pw_arena *arena)
 {
-    double total = figure(model, "sample");
+    const pw_words *w = &r->section[section];
+    pw_structure structure = w->order == 0 ? PW_DIRECT_1 : w->structure;
+    const char *code = stage->arithmetic.standalone ? "" : "runtime-";
+    pw_kernel form;
+    if (!is_fixed(r) || structure != PW_DIRECT_1)
+        return pw_arena_print(arena, "%s%s-%s", code, pw_sample_word(r->sample), pw_structure_word(structure));
+    bool narrow = r->coefficient_bits == 16 && (r->sample == PW_Q31 || !stage->arithmetic.standalone
+                                                || (pw_kernel_form(r, section, arena, &form) && form.narrow));
+    return pw_arena_print(arena, "%s%s-%d-%s", code, pw_sample_word(r->sample), narrow ? 16 : 32, pw_structure_word(structure));
+}
+
+static double section_cycles(const pw_words *w, const double row[COLUMNS])
+{
+    double total = row[SECTION];
+    if (w->order == 0) return fmax(1, total / 2 + row[FIRST]);
+    if (w->cannot_clip) total += row[PROVED];
+    if (w->structure != PW_COUPLED && w->b_fraction > w->a_fraction) total += row[RIGHT];
+    return w->order == 1 ? total + row[FIRST] : total;
+}
+
+static void from_model(const pw_stage *stage, const pw_realisation *r, const pw_cost_model *model, pw_cost *out)
+{
+    pw_arena arena = {0};
+    double total = 0, cascade = 0, flash = 0, rest = 0, stack = 0, row[COLUMNS];
     for (int i = 0; i < r->count; i++) {
-        char name[64];
-        snprintf(name, sizeof name, "%s-%s", pw_sample_word(r->sample), pw_structure_word(r->section[i].structure));
-        total += figure(model, name);
+        if (!row_of(model, row_name(stage, r, i, &arena), row)) {
+            pw_arena_free(&arena);
+            return;
+        }
+        total += section_cycles(&r->section[i], row);
+        if (i == 0) cascade = row[CASCADE];
+        flash += row[FLASH_SECTION];
+        rest = fmax(rest, row[FLASH_REST]);
+        stack = fmax(stack, row[STACK]);
     }
-    return total;
+    pw_arena_free(&arena);
+    out->cycles_per_sample = total + cascade;
+    out->flash_bytes = lround(flash + rest);
+    out->stack_bytes = lround(stack);
 }
 
 void pw_cost_estimate(const pw_stage *stage, const pw_realisation *realisation, const pw_target *target,
                       pw_cost *out)
 {
-    (void)stage;
     const pw_realisation *r = realisation;
     int words = 0;
     *out = (pw_cost){.sections = r->count, .cycles_per_sample = NAN};
     for (int i = 0; i < r->count; i++) {
         out->multiplies_per_sample += multiplies(&r->section[i], is_fixed(r));
-        words += state_words(&r->section[i]) + (r->section[i].structure == PW_DIRECT_1_SHAPED ? 4 : 0);
+        words += state_words(&r->section[i]);
     }
     out->ram_bytes = (long)words * sample_bytes(r) + (is_fixed(r) ? 4 : 0);
-    out->flash_bytes = 400 + (long)r->count * 24;
+    for (int i = 0; i < r->count; i++)
+        if (r->section[i].structure == PW_DIRECT_1_SHAPED) out->ram_bytes += 8;      /* two errors, 32 bits each */
+    out->flash_bytes = 400 + (long)r->count * 60;                                    /* a host has no model */
     out->stack_bytes = 64;
-    if (target->cost) out->cycles_per_sample = cycles(r, target->cost);
+    if (target->cost) from_model(stage, r, target->cost, out);
 }
