@@ -15,6 +15,13 @@ static json_t *prewarp(pw_prewarp kind, double hz)
     return pw_json_number_if(kind == PW_PREWARP_AT, hz);
 }
 
+/* As the stage file spells it; null for other methods than matched-z. */
+static json_t *infinity(pw_method method, pw_infinity zeros)
+{
+    static const char *const word[] = {"nyquist", "keep-one", "keep"};
+    return method == PW_MATCHED_Z ? pw_json_text(word[zeros]) : json_null();
+}
+
 static json_t *transform(const pw_digital *digital)
 {
     json_t *o = json_object(), *tried = json_array();
@@ -26,6 +33,7 @@ static json_t *transform(const pw_digital *digital)
                     pw_json_number_if(c->possible, c->magnitude_error_db));
         pw_json_put(row, "phase_error_deg", pw_json_number_if(c->possible, c->phase_error_deg));
         pw_json_put(row, "prewarp_hz", prewarp(c->prewarp, c->prewarp_hz));
+        pw_json_put(row, "zeros_at_infinity", infinity(c->method, c->zeros_at_infinity));
         pw_json_put(row, "possible", json_boolean(c->possible));
         json_array_append_new(tried, row);
     }
@@ -33,6 +41,7 @@ static json_t *transform(const pw_digital *digital)
     pw_json_put(o, "prewarp_hz", prewarp(digital->prewarp, digital->prewarp_hz));
     pw_json_put(o, "match_gain_hz",
                 pw_json_number_if(digital->gain_matched, digital->match_gain_hz));
+    pw_json_put(o, "zeros_at_infinity", infinity(digital->method, digital->zeros_at_infinity));
     pw_json_put(o, "candidates", tried);
     return o;
 }

@@ -6,7 +6,8 @@
  * their own, figures that the program has and the contract does not ask for:
  *     about, arithmetic, signal           what the stage file asked for, defaults filled in
  *     analog.log10_factor                 of |K|, which may lie outside the range of a double
- *     transform.candidates[].prewarp_hz, .possible
+ *     transform.zeros_at_infinity         "nyquist", "keep-one" or "keep" of matched-z, else null
+ *     transform.candidates[].prewarp_hz, .zeros_at_infinity, .possible
  *     sections[].realised.words           coupled: sigma omega g c1 c2 d, with their fraction bits;
  *                                         null otherwise
  *     sections[].realised.error_feedback  [k1, k2] of a shaped section, null otherwise

@@ -140,6 +140,19 @@ static void every_field_of_the_contract_has_its_type(void **state)
     assert_int_equal(json_array_size(at(it->json, "response.table")), PW_RESPONSE_ROWS);
 }
 
+static void matched_z_says_where_its_zeros_went(void **state)
+{
+    report *it = *state;
+    assert_missing(it, "transform.zeros_at_infinity");
+    assert_missing(it, "transform.candidates.0.zeros_at_infinity");
+    it->results.digital.method = it->results.digital.candidate[0].method = PW_MATCHED_Z;
+    it->results.digital.zeros_at_infinity = PW_INFINITY_KEEP_ONE;
+    it->results.digital.candidate[0].zeros_at_infinity = PW_INFINITY_KEEP;
+    write_report(it);
+    assert_word(it, "transform.zeros_at_infinity", "keep-one");
+    assert_word(it, "transform.candidates.0.zeros_at_infinity", "keep");
+}
+
 static void numbers_read_back_exactly(void **state)
 {
     report *it = *state;
@@ -235,6 +248,7 @@ int main(void)
 {
     const struct CMUnitTest tests[] = {
         TEST(every_field_of_the_contract_has_its_type), TEST(numbers_read_back_exactly),
+        TEST(matched_z_says_where_its_zeros_went),
         TEST(words_times_their_weight_are_the_realised_coefficients),
         TEST(what_does_not_exist_is_null),
         TEST(floats_have_no_words_and_no_round_off_figures),
