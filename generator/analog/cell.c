@@ -97,11 +97,13 @@ static void rc_ladder(int stages, pw_text *out)
 }
 
 /* Arms in turn, shunt and series, from node n0 behind R1; the last node is the output. */
-static void rlc_ladder(char shunt, char series, bool shunt_first, int shunts, int serieses, pw_text *out)
+static void rlc_ladder(char shunt, char series, bool shunt_first, int shunts, int serieses,
+                       pw_text *out)
 {
     int node = 0, shunt_index = 0, series_index = 0;
     pw_text_add(out, "R1?short in n0");
-    for (bool across = shunt_first; shunt_index < shunts || series_index < serieses; across = !across) {
+    for (bool across = shunt_first; shunt_index < shunts || series_index < serieses;
+         across = !across) {
         if (across && shunt_index < shunts)
             pw_text_print(out, "; %c%d n%d ground", shunt, ++shunt_index, node);
         if (!across && series_index < serieses) {
@@ -160,7 +162,8 @@ static bool is_rc_ladder(const expander *e) { return !strcmp(e->kind->name, "rc-
 static const pw_cell_value *value_of(const expander *e, const char *name)
 {
     const pw_cell_value *found = find_value(e->cell, name);
-    if (!found && is_rc_ladder(e) && e->stages) return find_value(e->cell, name[0] == 'R' ? "R1" : "C1");
+    if (!found && is_rc_ladder(e) && e->stages)
+        return find_value(e->cell, name[0] == 'R' ? "R1" : "C1");
     return found;
 }
 
@@ -178,15 +181,16 @@ static void check_value(expander *e, int index)
     for (int i = 0; i < n; i++)
         if (!strcmp(known[i], v->name)) {
             if (!(v->value > 0 && isfinite(v->value)))
-                pw_error(e->messages, v->at, "the value of '%s' is impossible; expected a number above 0",
-                         v->name);
+                pw_error(e->messages, v->at,
+                         "the value of '%s' is impossible; expected a number above 0", v->name);
             return;
         }
     const char *near = pw_nearest(v->name, known, n);
     pw_text list = {0};
     for (int i = 0; i < n; i++) pw_text_print(&list, "%s%s", i ? ", " : "", known[i]);
-    pw_error(e->messages, v->at, "the cell '%s' has no part '%s'; expected %s%s%sone of %s", e->kind->name,
-             v->name, near ? "'" : "", near ? near : "", near ? "', or " : "", pw_text_string(&list));
+    pw_error(e->messages, v->at, "the cell '%s' has no part '%s'; expected %s%s%sone of %s",
+             e->kind->name, v->name, near ? "'" : "", near ? near : "", near ? "', or " : "",
+             pw_text_string(&list));
     pw_text_free(&list);
 }
 
@@ -196,7 +200,10 @@ static void check_missing(expander *e)
         const place *p = &e->net.part[i];
         if (p->name[0] == 'U' || p->otherwise || value_of(e, p->name)) continue;
         pw_error(e->messages, e->cell->at, "the cell '%s' lacks its part '%s'; expected '%s: %s'",
-                 e->kind->name, p->name, p->name, p->name[0] == 'R' ? "10k" : p->name[0] == 'C' ? "10n" : "1 mH");
+                 e->kind->name, p->name, p->name,
+                 p->name[0] == 'R'   ? "10k"
+                 : p->name[0] == 'C' ? "10n"
+                                     : "1 mH");
     }
 }
 
@@ -206,8 +213,10 @@ static void read_stages(expander *e)
     if (!v) return;
     e->stages = v->value >= 1 && v->value <= MOST_STAGES ? (int)v->value : 1;
     if (e->stages != v->value)
-        pw_error(e->messages, v->at, "stages is not a whole number from 1 to %d; expected how many RC "
-                 "stages follow each other", MOST_STAGES);
+        pw_error(e->messages, v->at,
+                 "stages is not a whole number from 1 to %d; expected how many RC "
+                 "stages follow each other",
+                 MOST_STAGES);
 }
 
 /* ---- Expansion ---- */
@@ -268,15 +277,19 @@ static pw_status refuse_kind(const pw_cell *cell, pw_messages *messages)
     int n = 0;
     for (; pw_cell_row(n); n++) known[n] = pw_cell_row(n)->name;
     const char *near = pw_nearest(cell->kind, known, n);
-    pw_error(messages, cell->kind_at, "there is no cell '%s'; expected %s%s%sa kind that 'polewright show "
-             "--cells' lists", cell->kind, near ? "'" : "", near ? near : "", near ? "', or " : "");
+    pw_error(messages, cell->kind_at,
+             "there is no cell '%s'; expected %s%s%sa kind that 'polewright show "
+             "--cells' lists",
+             cell->kind, near ? "'" : "", near ? near : "", near ? "', or " : "");
     return PW_WRONG;
 }
 
-pw_status pw_cell_expand(const pw_cell *cell, pw_arena *arena, pw_circuit *out, pw_messages *messages)
+pw_status pw_cell_expand(const pw_cell *cell, pw_arena *arena, pw_circuit *out,
+                         pw_messages *messages)
 {
     int before = messages->errors;
-    expander e = {.cell = cell, .kind = pw_cell_find(cell->kind), .arena = arena, .messages = messages};
+    expander e = {
+        .cell = cell, .kind = pw_cell_find(cell->kind), .arena = arena, .messages = messages};
     *out = (pw_circuit){0};
     if (!e.kind) return refuse_kind(cell, messages);
     read_stages(&e);
@@ -305,7 +318,8 @@ pw_status pw_analog_from_cell(const pw_cell *cell, pw_roots *out, pw_messages *m
 static void list_parts(const pw_cell_kind *kind, pw_text *out)
 {
     if (!kind->net) {
-        pw_text_add(out, !strcmp(kind->name, "rc-ladder") ? "R1 C1 .. Rn Cn, stages" : "L1 C1 .. [R1 R2]");
+        pw_text_add(out, !strcmp(kind->name, "rc-ladder") ? "R1 C1 .. Rn Cn, stages"
+                                                          : "L1 C1 .. [R1 R2]");
         return;
     }
     pw_arena arena = {0};
@@ -335,8 +349,9 @@ static void list_diagram(const char *diagram, pw_text *out)
 
 void pw_cells_list(pw_text *out)
 {
-    pw_text_add(out, "Cells: textbook circuits by name. Parts in [brackets] may be left out; op-amps are "
-                     "ideal.\n  cell: {kind: rc-lowpass, R1: 10k, C1: {value: 4n7, tolerance: 5 %}}\n");
+    pw_text_add(
+        out, "Cells: textbook circuits by name. Parts in [brackets] may be left out; op-amps are "
+             "ideal.\n  cell: {kind: rc-lowpass, R1: 10k, C1: {value: 4n7, tolerance: 5 %}}\n");
     for (int i = 0; pw_cell_row(i); i++) {
         const pw_cell_kind *kind = pw_cell_row(i);
         pw_text_print(out, "\n  %s: %s\n      parts: ", kind->name, kind->about);

@@ -21,8 +21,10 @@ static void tell_singular(const pw_net *net, pw_messages *messages)
                      "circuit; expected one solution (an op-amp that drives its own inputs, and a "
                      "path for every node's current)", net->node[i]);
     if (!count)
-        pw_error(messages, net->circuit->at, "the circuit contradicts itself: its equations have no "
-                 "solution; expected no loop of ideal sources and op-amps that can set their inputs");
+        pw_error(
+            messages, net->circuit->at,
+            "the circuit contradicts itself: its equations have no "
+            "solution; expected no loop of ideal sources and op-amps that can set their inputs");
 }
 
 static void tell_hidden(const pw_net *net, const pw_quad_roots *roots, pw_messages *messages)
@@ -41,8 +43,10 @@ static void tell_hidden(const pw_net *net, const pw_quad_roots *roots, pw_messag
 static pw_status tell_count(const pw_net *net, const pw_quad_roots *roots, pw_messages *messages)
 {
     if (roots->poles <= PW_MAX_ROOTS && roots->zeros <= PW_MAX_ROOTS) return PW_OK;
-    pw_error(messages, net->circuit->at, "the circuit has %d poles and %d zeros; expected at most %d "
-             "of each", roots->poles, roots->zeros, PW_MAX_ROOTS);
+    pw_error(messages, net->circuit->at,
+             "the circuit has %d poles and %d zeros; expected at most %d "
+             "of each",
+             roots->poles, roots->zeros, PW_MAX_ROOTS);
     return PW_WRONG;
 }
 
@@ -58,7 +62,8 @@ static pw_status prove(const pw_net *net, const pw_roots *roots, pw_messages *me
     return PW_FAILED;
 }
 
-static pw_status solve(const pw_net *net, pw_roots *out, pw_quad_roots *roots, pw_messages *messages)
+static pw_status solve(const pw_net *net, pw_roots *out, pw_quad_roots *roots,
+                       pw_messages *messages)
 {
     pw_status status;
     switch (pw_net_solve(net, NULL, roots)) {
@@ -67,7 +72,8 @@ static pw_status solve(const pw_net *net, pw_roots *out, pw_quad_roots *roots, p
         tell_singular(net, messages);
         return PW_WRONG;
     case PW_SOLVED_NO_TRANSFER:
-        pw_error(messages, net->circuit->output_at[0], "the output is 0 whatever the input: no path "
+        pw_error(messages, net->circuit->output_at[0],
+                 "the output is 0 whatever the input: no path "
                  "leads from the input to it, or it is held at ground; expected a node that the "
                  "input moves");
         return PW_WRONG;

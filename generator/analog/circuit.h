@@ -33,10 +33,16 @@ typedef struct pw_value {
 } pw_value;
 
 typedef struct pw_entry { int row, column, sign, value; } pw_entry;       /* one term of G */
-typedef struct pw_store { int row[2], column[2], value; } pw_store;       /* D of u = e0 - e1 (rows), v = e0 - e1 (columns); -1: none */
-typedef struct pw_mutual { int store[2], value; } pw_mutual;              /* two terms off D's diagonal */
+typedef struct pw_store {
+    int row[2], column[2], value;
+} pw_store; /* D of u = e0 - e1 (rows), v = e0 - e1 (columns); -1: none */
+typedef struct pw_mutual {
+    int store[2], value;
+} pw_mutual; /* two terms off D's diagonal */
 
-typedef struct pw_driver { int part, row, drive, plus, minus; } pw_driver; /* an op-amp's equation; what it drives and senses */
+typedef struct pw_driver {
+    int part, row, drive, plus, minus;
+} pw_driver; /* an op-amp's equation; what it drives and senses */
 
 /* The equations of a circuit. Unknowns 0 .. nodes-1 are node voltages, branch currents follow. */
 typedef struct pw_net {
@@ -107,7 +113,8 @@ double complex pw_net_response_quad(const pw_net *net, double complex s);
 
 /* The equations at s in extended precision, n rows of n + 1 columns over zeros; the last column is
  * the input's. value: as pw_net_values_quad gives them. */
-void pw_net_fill(const pw_net *net, const pw_quad *value, long double complex s, long double complex *a);
+void pw_net_fill(const pw_net *net, const pw_quad *value, long double complex s,
+                 long double complex *a);
 
 /* Largest relative difference between the roots' response and pw_net_response over 200 frequencies
  * and twelve decades about the roots; where the two differ by more than 1e-10 quadruple precision

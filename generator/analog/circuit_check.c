@@ -27,7 +27,8 @@ static const char *suggest_node(const pw_checker *c, const char *name, const cha
     int n = 0;
     known[n++] = "ground";
     for (int i = 0; i < c->net.nodes; i++)
-        if (c->net.node[i] && strcmp(c->net.node[i], name) && !same_but_for_digits(c->net.node[i], name))
+        if (c->net.node[i] && strcmp(c->net.node[i], name)
+            && !same_but_for_digits(c->net.node[i], name))
             known[n++] = c->net.node[i];
     const char *near = pw_nearest(name, known, n);
     if (!strcasecmp(name, "gnd") || !strcmp(name, "0")) near = "ground";
@@ -60,8 +61,10 @@ static void check_values(const pw_circuit *circuit, pw_messages *messages)
                          ? "a number other than 0" : "a number above 0");
         for (int j = 0; j < i; j++)
             if (!strcmp(part->name, circuit->part[j].name))
-                pw_error(messages, part->at, "a second part is named '%s' (the first is at line %d); "
-                         "expected a name of its own", part->name, circuit->part[j].at.line);
+                pw_error(messages, part->at,
+                         "a second part is named '%s' (the first is at line %d); "
+                         "expected a name of its own",
+                         part->name, circuit->part[j].at.line);
     }
 }
 
@@ -106,8 +109,10 @@ static void check_couplings(pw_checker *c)
         }
         if (!strcmp(part->node[0], part->node[1])) {
             bad++;
-            pw_error(c->messages, part->node_at[1], "inductor '%s' is coupled to itself; expected two "
-                     "inductors", part->node[1]);
+            pw_error(c->messages, part->node_at[1],
+                     "inductor '%s' is coupled to itself; expected two "
+                     "inductors",
+                     part->node[1]);
         }
     }
     if (!bad && c->net.mutuals && !couplings_are_possible(&c->net))
@@ -124,8 +129,10 @@ static bool check_ports(pw_checker *c)
     if (!strcmp(circuit->input, "ground"))
         pw_error(c->messages, circuit->input_at, "the input is 'ground'; expected another node");
     else if (c->net.no_input)
-        pw_error(c->messages, circuit->input_at, "no part is at the input's node '%s'; expected a node "
-                 "of the circuit%s", circuit->input, suggest_node(c, circuit->input, ", such as "));
+        pw_error(c->messages, circuit->input_at,
+                 "no part is at the input's node '%s'; expected a node "
+                 "of the circuit%s",
+                 circuit->input, suggest_node(c, circuit->input, ", such as "));
     for (int k = 0; k < 2 && circuit->output[k]; k++) {
         int node = pw_net_node(&c->net, circuit->output[k]);
         bool used = node == -1;
@@ -133,14 +140,17 @@ static bool check_ports(pw_checker *c)
             for (int t = 0; t < pw_circuit_part_nodes(circuit->part[i].kind); t++)
                 used |= !strcmp(circuit->part[i].node[t], circuit->output[k]);
         if (!used)
-            pw_error(c->messages, circuit->output_at[k], "no part is at the output's node '%s'; expected "
-                     "a node of the circuit%s", circuit->output[k],
-                     suggest_node(c, circuit->output[k], ", such as "));
+            pw_error(c->messages, circuit->output_at[k],
+                     "no part is at the output's node '%s'; expected "
+                     "a node of the circuit%s",
+                     circuit->output[k], suggest_node(c, circuit->output[k], ", such as "));
     }
     bool same = c->net.output[0] == c->net.output[1];
     if (same && c->messages->errors == before)
-        pw_error(c->messages, circuit->output_at[0], "the output is shorted: both its ends are '%s'; "
-                 "expected two different nodes", circuit->output[0]);
+        pw_error(c->messages, circuit->output_at[0],
+                 "the output is shorted: both its ends are '%s'; "
+                 "expected two different nodes",
+                 circuit->output[0]);
     return c->messages->errors == before;
 }
 
@@ -159,8 +169,10 @@ static void check_connections(pw_checker *c)
         if (c->net.output[k] >= 0) count[c->net.output[k]] += count[c->net.output[k]] > 0;
     for (int i = 0; i < c->net.nodes; i++)
         if (count[i] == 1)
-            pw_error(c->messages, c->net.node_at[i], "node '%s' has one connection only; expected two or "
-                     "more%s", c->net.node[i], suggest_node(c, c->net.node[i], ", or did you mean "));
+            pw_error(c->messages, c->net.node_at[i],
+                     "node '%s' has one connection only; expected two or "
+                     "more%s",
+                     c->net.node[i], suggest_node(c, c->net.node[i], ", or did you mean "));
 }
 
 static void check_tolerances(const pw_checker *c)
@@ -168,8 +180,10 @@ static void check_tolerances(const pw_checker *c)
     for (int i = 0; i < c->circuit->parts; i++) {
         const pw_part *part = &c->circuit->part[i];
         if (part->kind == PW_OP_AMP && part->tolerance > 0 && !(part->gain_bandwidth_hz > 0))
-            pw_warning(c->messages, part->at, "the tolerance of op-amp '%s' does nothing: it is that of a "
-                       "gain-bandwidth, and this one has none; expected a gain-bandwidth", part->name);
+            pw_warning(c->messages, part->at,
+                       "the tolerance of op-amp '%s' does nothing: it is that of a "
+                       "gain-bandwidth, and this one has none; expected a gain-bandwidth",
+                       part->name);
     }
 }
 
@@ -178,15 +192,20 @@ static void check_shorted_parts(pw_checker *c)
     for (int i = 0; i < c->circuit->parts; i++) {
         const pw_part *part = &c->circuit->part[i];
         int pairs = pw_circuit_part_nodes(part->kind) == 4 ? 4 : 2;
-        bool wires = part->kind == PW_RESISTOR || part->kind == PW_CAPACITOR || part->kind == PW_INDUCTOR;
+        bool wires =
+            part->kind == PW_RESISTOR || part->kind == PW_CAPACITOR || part->kind == PW_INDUCTOR;
         for (int t = 0; t < pairs && part->kind != PW_COUPLING; t += 2) {
             if (strcmp(part->node[t], part->node[t + 1])) continue;
             if (wires)
-                pw_warning(c->messages, part->node_at[t + 1], "both ends of part '%s' are at node '%s', "
-                           "so that it does nothing; expected two nodes", part->name, part->node[t]);
+                pw_warning(c->messages, part->node_at[t + 1],
+                           "both ends of part '%s' are at node '%s', "
+                           "so that it does nothing; expected two nodes",
+                           part->name, part->node[t]);
             else
-                pw_error(c->messages, part->node_at[t + 1], "%s of part '%s' is node '%s' twice; expected "
-                         "two nodes", t ? "the drive" : "the input", part->name, part->node[t]);
+                pw_error(c->messages, part->node_at[t + 1],
+                         "%s of part '%s' is node '%s' twice; expected "
+                         "two nodes",
+                         t ? "the drive" : "the input", part->name, part->node[t]);
         }
     }
 }
@@ -244,9 +263,11 @@ static void check_source_loops(pw_checker *c)
     for (int i = 0; i < c->circuit->parts; i++) {
         const pw_part *part = &c->circuit->part[i];
         if (pw_checker_source(c, part, &a, &b) && !join(c, a, b))
-            pw_error(c->messages, part->at, "the output of part '%s' closes a loop of ideal sources (the "
-                     "input, op-amp and amplifier outputs); expected a resistor between two outputs",
-                     part->name);
+            pw_error(
+                c->messages, part->at,
+                "the output of part '%s' closes a loop of ideal sources (the "
+                "input, op-amp and amplifier outputs); expected a resistor between two outputs",
+                part->name);
     }
 }
 
@@ -273,7 +294,8 @@ static void check_islands(pw_checker *c)
     separate(c);
     join_parts(c);
     int in = pw_net_node(&c->net, circuit->input);
-    if (!circuit->current_input || (circuit->source_resistance > 0 && isfinite(circuit->source_resistance)))
+    if (!circuit->current_input
+        || (circuit->source_resistance > 0 && isfinite(circuit->source_resistance)))
         join(c, in, -1);
     if (circuit->load.given) join(c, c->net.output[0], c->net.output[1]);
     for (int i = 0; i < c->net.nodes; i++) {
@@ -289,9 +311,11 @@ static void check_islands(pw_checker *c)
         }
         if (!first) continue;
         bool alone = !strchr(names, ',');
-        pw_error(c->messages, c->net.node_at[i], "node%s %s float%s: no part ties %s to ground or to the "
-                 "input; expected a path for %s current", alone ? "" : "s", names, alone ? "s" : "",
-                 alone ? "it" : "them", alone ? "its" : "their");
+        pw_error(c->messages, c->net.node_at[i],
+                 "node%s %s float%s: no part ties %s to ground or to the "
+                 "input; expected a path for %s current",
+                 alone ? "" : "s", names, alone ? "s" : "", alone ? "it" : "them",
+                 alone ? "its" : "their");
     }
 }
 
@@ -303,7 +327,8 @@ static void mark_held(pw_checker *c)
         if (in >= 0) c->held[in] = true;
     }
     for (int i = 0; i < c->circuit->parts; i++)
-        if (pw_checker_source(c, &c->circuit->part[i], &a, &b) && a >= 0 && b < 0) c->held[a] = true;
+        if (pw_checker_source(c, &c->circuit->part[i], &a, &b) && a >= 0 && b < 0)
+            c->held[a] = true;
 }
 
 void pw_circuit_check(const pw_circuit *circuit, pw_messages *messages)
@@ -311,14 +336,17 @@ void pw_circuit_check(const pw_circuit *circuit, pw_messages *messages)
     pw_checker c = {.circuit = circuit, .messages = messages};
     int before = messages->errors;
     if (circuit->parts > CHECK_PARTS) {
-        pw_error(messages, circuit->at, "the circuit has %d parts; expected at most %d (a cascade of "
-                 "smaller circuits)", circuit->parts, CHECK_PARTS);
+        pw_error(messages, circuit->at,
+                 "the circuit has %d parts; expected at most %d (a cascade of "
+                 "smaller circuits)",
+                 circuit->parts, CHECK_PARTS);
         return;
     }
     check_values(circuit, messages);
     pw_net_make(circuit, &c.net);
     if (c.net.unknowns >= PW_MAX_UNKNOWNS || c.net.stores > PW_MAX_STORES) {
-        pw_error(messages, circuit->at, "the circuit has %d node voltages and branch currents and %d "
+        pw_error(messages, circuit->at,
+                 "the circuit has %d node voltages and branch currents and %d "
                  "reactive parts; expected at most %d and %d (a cascade of smaller circuits)",
                  c.net.unknowns, c.net.stores, PW_MAX_UNKNOWNS - 1, PW_MAX_STORES);
         pw_net_free(&c.net);

@@ -88,7 +88,8 @@ static bool NAME(const pw_net *net, const REAL *value, COMPLEX s, COMPLEX *out)
         x[i] /= a[i * wide + i];
     }
     if (regular)
-        *out = (net->output[0] >= 0 ? x[net->output[0]] : 0) - (net->output[1] >= 0 ? x[net->output[1]] : 0);
+        *out = (net->output[0] >= 0 ? x[net->output[0]] : 0)
+               - (net->output[1] >= 0 ? x[net->output[1]] : 0);
     pw_arena_free(&arena);
     return regular;
 }

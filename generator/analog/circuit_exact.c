@@ -111,7 +111,8 @@ static int eliminate(int n, int wide, uint64_t *a, int *pivot_column, uint64_t p
             uint64_t f = a[i * wide + column];
             if (i == rank || !f) continue;
             for (int j = column; j < wide; j++)
-                if (top[j]) a[i * wide + j] = pw_prime_sub(a[i * wide + j], pw_prime_mul(f, top[j], p), p);
+                if (top[j])
+                    a[i * wide + j] = pw_prime_sub(a[i * wide + j], pw_prime_mul(f, top[j], p), p);
         }
         pivot_column[rank++] = column;
     }
@@ -159,7 +160,7 @@ static int lost_ranks(int n, const uint64_t *a, int *lost, uint64_t p)
     pw_arena arena = {0};
     size_t bytes = (size_t)(n * n + 1) * sizeof *a;
     uint64_t *basis = pw_arena_take(&arena, bytes), *image = pw_arena_take(&arena, bytes);
-    int steps = 0, pivot[PW_MAX_STORES], rank = n;      /* rows of basis span the row space of a^k */
+    int steps = 0, pivot[PW_MAX_STORES], rank = n; /* rows of basis span the row space of a^k */
     for (int i = 0; i < n; i++) basis[i * n + i] = 1;
     for (;;) {
         memset(image, 0, bytes);
@@ -167,7 +168,8 @@ static int lost_ranks(int n, const uint64_t *a, int *lost, uint64_t p)
             for (int k = 0; k < n; k++)
                 for (int j = 0; j < n && basis[i * n + k]; j++)
                     if (A(k, j))
-                        image[i * n + j] = pw_prime_sub(image[i * n + j], p - pw_prime_mul(basis[i * n + k], A(k, j), p), p);
+                        image[i * n + j] = pw_prime_sub(
+                            image[i * n + j], p - pw_prime_mul(basis[i * n + k], A(k, j), p), p);
         int now = eliminate(n, n, image, pivot, p);
         if (now == rank) break;
         lost[steps++] = rank - now;
@@ -243,7 +245,8 @@ static void find_polynomial(int m, uint64_t *reduced, pw_exact *out)
     while (out->degree > 0 && !out->poly[out->degree]) out->degree--;
 }
 
-void pw_exact_analyse(const pw_net *net, const double *scale, double s0, bool bordered, pw_exact *out)
+void pw_exact_analyse(const pw_net *net, const double *scale, double s0, bool bordered,
+                      pw_exact *out)
 {
     pw_arena arena = {0};
     exact_net e;
@@ -258,7 +261,8 @@ void pw_exact_analyse(const pw_net *net, const double *scale, double s0, bool bo
     if (out->regular) {
         uint64_t at_zero = pw_prime_inverse(e.s0, e.p);
         memcpy(shifted, reduced, (size_t)(m * m) * sizeof *shifted);
-        for (int i = 0; i < m; i++) shifted[i * m + i] = pw_prime_sub(shifted[i * m + i], at_zero, e.p);
+        for (int i = 0; i < m; i++)
+            shifted[i * m + i] = pw_prime_sub(shifted[i * m + i], at_zero, e.p);
         out->infinite_steps = lost_ranks(m, reduced, out->infinite, e.p);
         out->zero_steps = lost_ranks(m, shifted, out->zero, e.p);
         out->finite = m;

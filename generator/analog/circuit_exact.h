@@ -20,14 +20,15 @@ typedef struct pw_exact {
     int zero[PW_MAX_STORES];     /* and then 0 */
     int infinite_steps, zero_steps;
     int finite;                  /* roots that are neither infinite nor 0 */
-    int repeated[PW_MAX_STORES + 1];           /* [k]: how many distinct finite roots (0 too) are k-fold */
+    int repeated[PW_MAX_STORES + 1]; /* [k]: how many distinct finite roots (0 too) are k-fold */
     uint64_t poly[PW_MAX_STORES + 1];          /* in s - s0, lowest power first */
     int degree;
     uint64_t prime;
 } pw_exact;
 
 /* s0 > 0, rad/s, a decimal of at most 17 digits. bordered: the numerator. */
-void pw_exact_analyse(const pw_net *net, const double *scale, double s0, bool bordered, pw_exact *out);
+void pw_exact_analyse(const pw_net *net, const double *scale, double s0, bool bordered,
+                      pw_exact *out);
 
 /* How many roots the two have in common (with their multiplicity). */
 int pw_exact_common(const pw_exact *left, const pw_exact *right);

@@ -115,7 +115,8 @@ static void add_part(pw_net *net, int index, int inner)
 {
     const pw_part *part = &net->circuit->part[index];
     int n[4] = {GROUND, GROUND, GROUND, GROUND};
-    for (int k = 0; k < pw_circuit_part_nodes(part->kind); k++) n[k] = pw_net_node(net, part->node[k]);
+    for (int k = 0; k < pw_circuit_part_nodes(part->kind); k++)
+        n[k] = pw_net_node(net, part->node[k]);
     switch (part->kind) {
     case PW_RESISTOR:
         add_four(net, n[0], n[1], n[0], n[1], add_value(net, PW_VALUE_INVERSE, part->value, index));
@@ -127,7 +128,9 @@ static void add_part(pw_net *net, int index, int inner)
         add_inductor(net, n[0], n[1], add_value(net, PW_VALUE_PLAIN, part->value, index));
         break;
     case PW_OP_AMP: add_op_amp(net, index, part, n, inner); break;
-    case PW_AMPLIFIER: add_amplifier(net, n, add_value(net, PW_VALUE_PLAIN, part->value, index)); break;
+    case PW_AMPLIFIER:
+        add_amplifier(net, n, add_value(net, PW_VALUE_PLAIN, part->value, index));
+        break;
     case PW_TRANSCONDUCTOR:
         add_four(net, n[3], n[2], n[0], n[1], add_value(net, PW_VALUE_PLAIN, part->value, index));
         break;
@@ -164,7 +167,8 @@ static void add_source(pw_net *net, const pw_circuit *circuit)
     net->input = in;
     if (circuit->current_input) {
         if (resistive)
-            add_entry(net, in, in, 1, add_value(net, PW_VALUE_INVERSE, circuit->source_resistance, -1));
+            add_entry(net, in, in, 1,
+                      add_value(net, PW_VALUE_INVERSE, circuit->source_resistance, -1));
         return;
     }
     int i = net->input = net->unknowns++;
@@ -200,7 +204,8 @@ static void find_nodes(pw_net *net, const pw_circuit *circuit, int *inner)
         add_node(net, circuit->output[k], circuit->output_at[k]);
     }
     for (int i = 0; i < circuit->parts; i++)
-        inner[i] = has_inner_node(&circuit->part[i]) ? add_node(net, NULL, circuit->part[i].at) : -1;
+        inner[i] =
+            has_inner_node(&circuit->part[i]) ? add_node(net, NULL, circuit->part[i].at) : -1;
 }
 
 void pw_net_make(const pw_circuit *circuit, pw_net *net)
@@ -292,7 +297,8 @@ double pw_net_reference(const pw_net *net)
 {
     double r, c, l, sum = 0;
     int n = 0;
-    bool has_r = mean_log(net->circuit, PW_RESISTOR, &r), has_c = mean_log(net->circuit, PW_CAPACITOR, &c);
+    bool has_r = mean_log(net->circuit, PW_RESISTOR, &r),
+         has_c = mean_log(net->circuit, PW_CAPACITOR, &c);
     bool has_l = mean_log(net->circuit, PW_INDUCTOR, &l);
     if (has_r && has_c) sum -= r + c, n++;
     if (has_r && has_l) sum += r - l, n++;

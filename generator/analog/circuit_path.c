@@ -21,7 +21,8 @@ static bool step_coupling(const pw_checker *c, const pw_part *part, bool *reache
     for (int pass = 0; pass < 2; pass++)
         for (int i = 0; i < c->circuit->parts; i++) {
             const pw_part *l = &c->circuit->part[i];
-            if (l->kind != PW_INDUCTOR || (strcmp(l->name, part->node[0]) && strcmp(l->name, part->node[1])))
+            if (l->kind != PW_INDUCTOR
+                || (strcmp(l->name, part->node[0]) && strcmp(l->name, part->node[1])))
                 continue;
             int a = pw_checker_node(c, l, 0), b = pw_checker_node(c, l, 1);
             any |= is_reached(reached, a) || is_reached(reached, b);
@@ -46,7 +47,8 @@ static bool step(const pw_checker *c, const pw_part *part, bool *reached)
     case PW_OP_AMP: return first && reach(c, reached, n[2], true);
     case PW_AMPLIFIER: case PW_TRANSCONDUCTOR:
         first |= is_reached(reached, n[2]) || is_reached(reached, n[3]);
-        for (int k = 2; k < 4 && first; k++) grew |= reach(c, reached, n[k], part->kind == PW_AMPLIFIER);
+        for (int k = 2; k < 4 && first; k++)
+            grew |= reach(c, reached, n[k], part->kind == PW_AMPLIFIER);
         return grew;
     case PW_COUPLING: return step_coupling(c, part, reached);
     }
@@ -70,14 +72,19 @@ void pw_check_feedback_paths(pw_checker *c)
         bool reached[PW_MAX_UNKNOWNS] = {false};
         reach(c, reached, pw_checker_node(c, part, 2), true);
         spread_from(c, reached);
-        if (is_reached(reached, pw_checker_node(c, part, 0)) || is_reached(reached, pw_checker_node(c, part, 1))) continue;
+        if (is_reached(reached, pw_checker_node(c, part, 0))
+            || is_reached(reached, pw_checker_node(c, part, 1)))
+            continue;
         if (part->ideal)
-            pw_error(c->messages, part->at, "op-amp '%s' has no feedback path from its output to its "
+            pw_error(c->messages, part->at,
+                     "op-amp '%s' has no feedback path from its output to its "
                      "inputs; expected one, for an ideal op-amp's output is what makes them equal",
                      part->name);
         else
-            pw_warning(c->messages, part->at, "op-amp '%s' has no feedback path from its output to its "
-                       "inputs and runs at its full gain; expected feedback", part->name);
+            pw_warning(c->messages, part->at,
+                       "op-amp '%s' has no feedback path from its output to its "
+                       "inputs and runs at its full gain; expected feedback",
+                       part->name);
     }
 }
 
@@ -87,8 +94,10 @@ void pw_check_path(pw_checker *c)
     reach(c, reached, pw_net_node(&c->net, c->circuit->input), true);
     spread_from(c, reached);
     if (is_reached(reached, c->net.output[0]) || is_reached(reached, c->net.output[1])) return;
-    pw_error(c->messages, c->circuit->output_at[0], "no path leads from the input '%s' to the output '%s'; "
-             "expected parts that connect them", c->circuit->input, c->circuit->output[0]);
+    pw_error(c->messages, c->circuit->output_at[0],
+             "no path leads from the input '%s' to the output '%s'; "
+             "expected parts that connect them",
+             c->circuit->input, c->circuit->output[0]);
 }
 
 /* ---- Feedback at DC ---- */
@@ -122,8 +131,11 @@ void pw_circuit_check_feedback(const pw_circuit *circuit, const pw_net *net, pw_
     for (int i = 0; i < net->drivers; i++) {
         const pw_part *part = &circuit->part[net->driver[i].part];
         if (loop_gain_sign(net, i) > 1e-6)
-            pw_warning(messages, part->at, "the feedback of op-amp '%s' is positive at DC, where a real "
-                       "one latches; expected more of its output at 'minus' than at 'plus' (are the two "
-                       "exchanged?)", part->name);
+            pw_warning(
+                messages, part->at,
+                "the feedback of op-amp '%s' is positive at DC, where a real "
+                "one latches; expected more of its output at 'minus' than at 'plus' (are the two "
+                "exchanged?)",
+                part->name);
     }
 }

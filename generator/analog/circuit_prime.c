@@ -76,7 +76,7 @@ static int trim(const uint64_t *a, int degree)
     return degree;
 }
 
-/* a := the rest of a / b; the quotient's coefficients go to out (may be null). The rest's degree. */
+/* a := the rest of a / b; the quotient goes to out (may be null). The rest's degree. */
 static int divide(uint64_t *a, int n, const uint64_t *b, int m, uint64_t *out, uint64_t p)
 {
     uint64_t over = pw_prime_inverse(b[m], p);

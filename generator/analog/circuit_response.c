@@ -43,7 +43,8 @@ static long double *extended(const pw_net *net, const pw_quad *quad, pw_arena *a
     return value;
 }
 
-void pw_net_fill(const pw_net *net, const pw_quad *value, long double complex s, long double complex *a)
+void pw_net_fill(const pw_net *net, const pw_quad *value, long double complex s,
+                 long double complex *a)
 {
     pw_arena arena = {0};
     eliminate_long_fill(net, extended(net, value, &arena), s, a);

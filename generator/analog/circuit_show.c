@@ -70,8 +70,9 @@ static int choose_modes(const pw_sensitivity *s, int *chosen)
 {
     int n = 0, poles = 0, zeros = 0;
     for (int i = 0; i < s->modes; i++) {
-        bool wanted = s->modes <= MOST_MODES
-                      || (s->mode[i].zero ? zeros++ < MOST_MODES / 3 : poles++ < MOST_MODES / 3 * 2);
+        bool wanted =
+            s->modes <= MOST_MODES
+            || (s->mode[i].zero ? zeros++ < MOST_MODES / 3 : poles++ < MOST_MODES / 3 * 2);
         if (wanted) chosen[n++] = i;
     }
     return n;
@@ -83,14 +84,16 @@ static void put_heads(const pw_sensitivity *s, const int *mode, int modes, pw_te
     pw_text_print(out, "  %-19s", "");
     for (int i = 0; i < modes; i++) {
         const pw_mode *m = &s->mode[mode[i]];
-        snprintf(head, sizeof head, "%s %s", m->zero ? "zero" : "pole", pw_si(hz, m->f0_hz, "Hz", 4));
+        snprintf(head, sizeof head, "%s %s", m->zero ? "zero" : "pole",
+                 pw_si(hz, m->f0_hz, "Hz", 4));
         pw_text_print(out, " %17s", head);
     }
     if (!modes) pw_text_print(out, " %26s", "gain, dB");
     pw_text_print(out, "\n  %-6s %12s", "part", "value");
     for (int i = 0; i < modes; i++)
         pw_text_print(out, " %8s %8s", "f0", s->mode[mode[i]].count == 2 ? "Q" : "");
-    if (!modes) pw_text_print(out, " %8s %8s %8s", "DC", isinf(s->gain[0]) ? "mid" : "largest", "infinity");
+    if (!modes)
+        pw_text_print(out, " %8s %8s %8s", "DC", isinf(s->gain[0]) ? "mid" : "largest", "infinity");
     pw_text_add(out, "\n");
 }
 
@@ -101,7 +104,8 @@ static void put_rows(const pw_sensitivity *s, const int *mode, int modes, pw_tex
     put_heads(s, mode, modes, out);
     for (int row = 0; row < s->parts; row++) {
         const pw_part *part = &s->circuit->part[s->part[row]];
-        pw_text_print(out, "  %-6s %12s", part->name, amount(value, value_of(part), unit_of(part->kind)));
+        pw_text_print(out, "  %-6s %12s", part->name,
+                      amount(value, value_of(part), unit_of(part->kind)));
         for (int i = 0; i < modes; i++) {
             const pw_moves *m = &s->move[row * s->modes + mode[i]];
             put_move(m->f0, out);
@@ -116,7 +120,8 @@ static void put_rows(const pw_sensitivity *s, const int *mode, int modes, pw_tex
 static void put_table(const pw_sensitivity *s, pw_text *out)
 {
     int chosen[2 * PW_MAX_ROOTS], n = choose_modes(s, chosen);
-    pw_text_add(out, "  sensitivity to each part: percent per percent; of the gain: dB per percent\n");
+    pw_text_add(out,
+                "  sensitivity to each part: percent per percent; of the gain: dB per percent\n");
     for (int first = 0; first < n; first += MODES_A_TABLE) {
         put_rows(s, chosen + first, n - first < MODES_A_TABLE ? n - first : MODES_A_TABLE, out);
         pw_text_add(out, "\n");
@@ -136,7 +141,8 @@ static void put_changes(const pw_circuit *circuit, const pw_circuit *rounded, pw
         if (now->value == part->value) continue;
         pw_text_print(out, "    %-6s %12s -> %s (%+.2f %%)\n", part->name,
                       amount(before, part->value, unit_of(part->kind)),
-                      amount(after, now->value, unit_of(part->kind)), (now->value / part->value - 1) * 100);
+                      amount(after, now->value, unit_of(part->kind)),
+                      (now->value / part->value - 1) * 100);
     }
 }
 
@@ -169,7 +175,8 @@ static void put_nearest(const pw_sensitivity *s, pw_arena *arena, pw_text *out)
             part->value = pw_series_nearest(circuit->series, part->value);
         changed |= part->value != circuit->part[i].value;
     }
-    pw_text_print(out, "  nearest values of %s (IEC 60063):%s\n", circuit->series, changed ? "" : " all are");
+    pw_text_print(out, "  nearest values of %s (IEC 60063):%s\n", circuit->series,
+                  changed ? "" : " all are");
     put_changes(circuit, &rounded, out);
     pw_sensitivity *after = pw_arena_take(arena, sizeof *after);
     if (changed && !pw_sensitivity_compute(&rounded, arena, after)) put_effect(s, after, out);

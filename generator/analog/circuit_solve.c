@@ -61,7 +61,8 @@ static void fill(const pencil *p, int n, pw_quad *a)
 }
 
 /* Column j of V' A^-1 U, by one solve. */
-static void one_column(const pencil *p, int n, const pw_quad *lu, const int *pivot, int j, pw_quad *out)
+static void one_column(const pencil *p, int n, const pw_quad *lu, const int *pivot, int j,
+                       pw_quad *out)
 {
     pw_quad x[PW_MAX_UNKNOWNS + 1] = {0};
     int m = p->net->stores;
@@ -128,7 +129,8 @@ static pw_quad nearest(const roots *r, const bool *done, int i, int k, int *grou
     for (int g = 1; g < k; g++) {
         int best = -1;
         for (int j = 0; j < r->n; j++)
-            if (!done[j] && !taken[j] && (best < 0 || distance(r, i, r, j) < distance(r, i, r, best)))
+            if (!done[j] && !taken[j]
+                && (best < 0 || distance(r, i, r, j) < distance(r, i, r, best)))
                 best = j;
         if (best < 0) return HUGE_VAL_F128;
         group[g] = best;
@@ -243,7 +245,8 @@ static int arrange(const roots *r, pw_quad *re, pw_quad *im)
     for (;;) {
         int best = -1;
         for (int i = 0; i < r->n; i++)
-            if (!done[i] && r->im[i] >= 0 && (best < 0 || size_of(r, i) < size_of(r, best))) best = i;
+            if (!done[i] && r->im[i] >= 0 && (best < 0 || size_of(r, i) < size_of(r, best)))
+                best = i;
         if (best < 0) return n;
         done[best] = true;
         re[n] = r->re[best];
@@ -296,7 +299,8 @@ pw_solved pw_net_solve(const pw_net *net, const double *scale, pw_quad_roots *ou
     workspace *w = pw_take(sizeof *w);
     pw_solved solved = PW_SOLVED_SINGULAR;
     w->value = pw_arena_take(&w->arena, (size_t)(net->values + 1) * sizeof *w->value);
-    w->reduced = pw_arena_take(&w->arena, (size_t)(net->stores * net->stores + 1) * sizeof *w->reduced);
+    w->reduced =
+        pw_arena_take(&w->arena, (size_t)(net->stores * net->stores + 1) * sizeof *w->reduced);
     pw_net_values_quad(net, scale, w->value);
     for (int i = 0; i < 4 && solved != PW_SOLVED; i++) {
         double s0 = try[i] * pw_net_reference(net);

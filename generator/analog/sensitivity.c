@@ -46,7 +46,8 @@ static int count_members(const pw_analog_spec *spec)
 pw_status pw_circuits_of(const pw_analog_spec *spec, pw_arena *arena, pw_circuit_list *out,
                          pw_messages *messages)
 {
-    *out = (pw_circuit_list){.circuit = pw_arena_take(arena, (size_t)count_members(spec) * sizeof *out->circuit)};
+    *out = (pw_circuit_list){
+        .circuit = pw_arena_take(arena, (size_t)count_members(spec) * sizeof *out->circuit)};
     return add_circuits(spec, arena, out, messages);
 }
 
@@ -168,8 +169,10 @@ static void find_gains(const pw_quad_roots *r, double middle_hz, double *gain)
     for (int i = 0; i < r->poles || i < r->zeros; i++) {
         if (i < r->poles && root_of(r, false, i) != 0) dc /= cabsl(root_of(r, false, i));
         if (i < r->zeros && root_of(r, true, i) != 0) dc *= cabsl(root_of(r, true, i));
-        if (i < r->poles && cimagl(root_of(r, false, i)) == 0 && creall(root_of(r, false, i)) > 0) dc = -dc;
-        if (i < r->zeros && cimagl(root_of(r, true, i)) == 0 && creall(root_of(r, true, i)) > 0) dc = -dc;
+        if (i < r->poles && cimagl(root_of(r, false, i)) == 0 && creall(root_of(r, false, i)) > 0)
+            dc = -dc;
+        if (i < r->zeros && cimagl(root_of(r, true, i)) == 0 && creall(root_of(r, true, i)) > 0)
+            dc = -dc;
     }
     gain[PW_GAIN_DC] = origin > 0 ? 0 : origin < 0 ? (double)INFINITY : (double)dc;
     gain[PW_GAIN_MIDDLE] = (double)cabsl(response(r, TWO_PI * middle_hz));
@@ -211,7 +214,7 @@ static pw_status step_parts(const pw_net *net, pw_arena *arena, pw_sensitivity *
 
 /* ---- Parts, by derivatives ---- */
 
-/* Several roots in one place, of this polynomial alone or with what cancels, have no derivatives. */
+/* Several roots in one place, alone or with what cancels, have no derivatives. */
 static bool all_simple(const pw_sensitivity *s, const pw_quad_roots *roots)
 {
     for (int i = 0; i < s->modes; i++) {
@@ -232,7 +235,8 @@ static bool derive_mode(const pw_net *net, pw_sensitivity *out, int mode, long_c
     for (int row = 0; row < out->parts; row++) {
         long_complex ds = move[out->part[row]];
         double f0 = (double)creall(ds / s);
-        double q = m->count == 2 && creal(m->root) != 0 ? f0 - (double)(creall(ds) / creall(s)) : (double)NAN;
+        double q = m->count == 2 && creal(m->root) != 0 ? f0 - (double)(creall(ds) / creall(s))
+                                                        : (double)NAN;
         out->move[row * out->modes + mode] = (pw_moves){f0, q};
     }
     return true;

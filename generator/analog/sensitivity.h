@@ -10,8 +10,8 @@
 typedef struct pw_circuit_list { pw_circuit *circuit; int count; } pw_circuit_list;
 
 /* Memory from the arena. PW_WRONG with messages where a cell cannot be expanded. */
-PW_CHECKED pw_status pw_circuits_of(const pw_analog_spec *spec, pw_arena *arena, pw_circuit_list *out,
-                                    pw_messages *messages);
+PW_CHECKED pw_status pw_circuits_of(const pw_analog_spec *spec, pw_arena *arena,
+                                    pw_circuit_list *out, pw_messages *messages);
 
 /* Roots that move as one: a real root, a pair, or a cluster of real ones (equal to 1e-4). */
 typedef struct pw_mode {
@@ -23,7 +23,12 @@ typedef struct pw_mode {
     double tau_s;                /* 1 / |mean real part|; INFINITY on the axis */
 } pw_mode;
 
-typedef enum pw_gain_place { PW_GAIN_DC, PW_GAIN_MIDDLE, PW_GAIN_INFINITY, PW_GAIN_PLACES } pw_gain_place;
+typedef enum pw_gain_place {
+    PW_GAIN_DC,
+    PW_GAIN_MIDDLE,
+    PW_GAIN_INFINITY,
+    PW_GAIN_PLACES
+} pw_gain_place;
 
 typedef struct pw_moves { double f0, q; } pw_moves;   /* percent per percent; NAN: not defined */
 
@@ -46,7 +51,8 @@ typedef struct pw_sensitivity {
  * are matched by nearness, and k equal ones (which part by the k-th root of 1e-8) are judged by
  * their product and sum. Accuracy: 1e-6 of a percent per percent.
  * PW_FAILED where the circuit cannot be solved (pw_analog_from_circuit tells why). */
-PW_CHECKED pw_status pw_sensitivity_compute(const pw_circuit *circuit, pw_arena *arena, pw_sensitivity *out);
+PW_CHECKED pw_status pw_sensitivity_compute(const pw_circuit *circuit, pw_arena *arena,
+                                            pw_sensitivity *out);
 
 /* For `show`: of each circuit of the stage the gains, the table of sensitivities, and, where the
  * stage file says "nearest: E24", the nearest values of that series and what they would do.

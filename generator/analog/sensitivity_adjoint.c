@@ -35,7 +35,8 @@ static int find_pivot(const factored *f, const long double *scale, int k)
 {
     int best = k;
     for (int i = k + 1; i < f->n; i++)
-        if (size1(f->a[i * f->n + k]) * scale[i] > size1(f->a[best * f->n + k]) * scale[best]) best = i;
+        if (size1(f->a[i * f->n + k]) * scale[i] > size1(f->a[best * f->n + k]) * scale[best])
+            best = i;
     return best;
 }
 
@@ -127,24 +128,28 @@ static long_complex across(const long_complex *x, const int *pair)
 }
 
 /* move[part] += y' (dA / d ln part) v; returns y' C v. */
-static long_complex form(const factored *f, long_complex s, const long_complex *y, const long_complex *v,
-                         long_complex *move)
+static long_complex form(const factored *f, long_complex s, const long_complex *y,
+                         const long_complex *v, long_complex *move)
 {
     const pw_net *net = f->net;
     long_complex sum = 0;
     for (int i = 0; i < net->entries; i++) {
         const pw_entry *e = &net->entry[i];
-        add(net, e->value, e->sign * y[e->row] * v[e->column] * (long double)f->value[e->value], move);
+        add(net, e->value, e->sign * y[e->row] * v[e->column] * (long double)f->value[e->value],
+            move);
     }
     for (int i = 0; i < net->stores; i++) {
         const pw_store *t = &net->store[i];
-        long_complex term = across(y, t->row) * across(v, t->column) * (long double)f->value[t->value];
+        long_complex term =
+            across(y, t->row) * across(v, t->column) * (long double)f->value[t->value];
         add(net, t->value, s * term, move);
         sum += term;
     }
     for (int i = 0; i < net->mutuals; i++) {
-        const pw_store *a = &net->store[net->mutual[i].store[0]], *b = &net->store[net->mutual[i].store[1]];
-        long_complex term = across(y, a->row) * across(v, b->column) + across(y, b->row) * across(v, a->column);
+        const pw_store *a = &net->store[net->mutual[i].store[0]],
+                       *b = &net->store[net->mutual[i].store[1]];
+        long_complex term =
+            across(y, a->row) * across(v, b->column) + across(y, b->row) * across(v, a->column);
         term *= (long double)f->value[net->mutual[i].value];
         add(net, net->mutual[i].value, s * term, move);
         sum += term;

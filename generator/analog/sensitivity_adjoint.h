@@ -7,8 +7,9 @@
 
 /* move[part] := ds / d ln(part), rad/s, of a simple root s of det(G + s C), or, with zero, of the
  * numerator. Method: with y and v the left and right null vectors of A(s), ds = -(y' dA v)/(y' C v)
- * (Lancaster 1964); inverse iteration in extended precision finds them. false: not a simple root. */
-bool pw_adjoint_root(const pw_net *net, bool zero, long double complex s, long double complex *move);
+ * (Lancaster 1964); inverse iteration in extended precision finds them. false: no simple root. */
+bool pw_adjoint_root(const pw_net *net, bool zero, long double complex s,
+                     long double complex *move);
 
 /* move[part] := d ln H(s) / d ln(part). Method: the adjoint network (Director and Rohrer 1969).
  * false: singular at s, or H(s) = 0. */

@@ -40,8 +40,8 @@ static void add_varied(pw_study *study, int circuit)
     }
 }
 
-static void begin_study(const pw_stage *stage, const pw_circuit_list *list, const double *hz, int rows,
-                        pw_study *study)
+static void begin_study(const pw_stage *stage, const pw_circuit_list *list, const double *hz,
+                        int rows, pw_study *study)
 {
     int parts = 0;
     for (int i = 0; i < list->count; i++) parts += list->circuit[i].parts;
@@ -71,7 +71,8 @@ static bool find_nominal(pw_study *study)
     pw_bench_make(study, &bench);
     size_t rows = (size_t)study->rows;
     double *x = pw_arena_take(&bench.arena, (size_t)(study->n + 1) * sizeof *x);
-    study->nominal = pw_arena_take(&study->arena, (size_t)study->circuits * rows * sizeof *study->nominal);
+    study->nominal =
+        pw_arena_take(&study->arena, (size_t)study->circuits * rows * sizeof *study->nominal);
     study->nominal_slope = pw_arena_take(&study->arena, rows * sizeof *study->nominal_slope);
     bool good = pw_bench_set(&bench, x);
     for (int i = 0; i < study->circuits && good; i++)
@@ -88,7 +89,8 @@ static void fill_nominal(const pw_roots *analog, pw_spread_row *row, double hz)
 {
     double log_magnitude, phase;
     pw_roots_log_at(analog, CMPLX(0, 2 * M_PI * hz), &log_magnitude, &phase);
-    double value[] = {log_magnitude * 20 / M_LN10, phase * 180 / M_PI, pw_analog_group_delay(analog, hz)};
+    double value[] = {log_magnitude * 20 / M_LN10, phase * 180 / M_PI,
+                      pw_analog_group_delay(analog, hz)};
     pw_range *range[] = {&row->db, &row->deg, &row->delay_s};
     row->hz = hz;
     for (int k = 0; k < 3; k++)
@@ -116,7 +118,8 @@ static void *work(void *argument)
             w->unstable++;
             continue;
         }
-        for (int row = 0; row < study->rows; row++) widen(&w->extent[row], pw_bench_at(&w->bench, row));
+        for (int row = 0; row < study->rows; row++)
+            widen(&w->extent[row], pw_bench_at(&w->bench, row));
         w->unstable += pw_bench_unstable(&w->bench);
     }
     return NULL;
@@ -130,7 +133,8 @@ static void run_block(worker *workers, int threads, const double *x, int draws)
         workers[i].x = x;
         workers[i].from = draws * i / threads;
         workers[i].to = draws * (i + 1) / threads;
-        started[i] = i + 1 < threads && !pthread_create(&workers[i].thread, NULL, work, &workers[i]);
+        started[i] =
+            i + 1 < threads && !pthread_create(&workers[i].thread, NULL, work, &workers[i]);
     }
     for (int i = threads - 1; i >= 0; i--) {
         if (started[i]) pthread_join(workers[i].thread, NULL);
@@ -149,7 +153,8 @@ static void make_workers(const pw_study *study, worker *workers, int threads)
     for (int i = 0; i < threads; i++) {
         workers[i] = (worker){0};
         pw_bench_make(study, &workers[i].bench);
-        workers[i].extent = pw_arena_take(&workers[i].bench.arena, (size_t)study->rows * sizeof(extent));
+        workers[i].extent =
+            pw_arena_take(&workers[i].bench.arena, (size_t)study->rows * sizeof(extent));
     }
 }
 
@@ -181,7 +186,8 @@ static void place_block(const pw_study *study, gsl_qrng *sobol, int64_t first, i
 
 static void draw_all(const pw_study *study, const pw_spread_options *options, pw_spread *out)
 {
-    int threads = thread_count(options), sobol_parts = study->n < PW_SOBOL_PARTS ? study->n : PW_SOBOL_PARTS;
+    int threads = thread_count(options),
+        sobol_parts = study->n < PW_SOBOL_PARTS ? study->n : PW_SOBOL_PARTS;
     double points[PW_SOBOL_PARTS], *x = pw_take((size_t)BLOCK * (size_t)study->n * sizeof *x);
     gsl_qrng *sobol = gsl_qrng_alloc(gsl_qrng_sobol, (unsigned)sobol_parts);
     worker *workers = pw_take((size_t)threads * sizeof *workers);
@@ -204,7 +210,8 @@ static void draw_all(const pw_study *study, const pw_spread_options *options, pw
 
 /* ---- The whole ---- */
 
-static pw_spread *new_spread(const pw_stage *stage, const pw_study *study, const pw_spread_options *options)
+static pw_spread *new_spread(const pw_stage *stage, const pw_study *study,
+                             const pw_spread_options *options)
 {
     pw_spread *out = pw_take(sizeof *out);
     int64_t draws = stage->spread.draws, shards = options->shards > 0 ? options->shards : 1;
@@ -224,13 +231,15 @@ static pw_spread *new_spread(const pw_stage *stage, const pw_study *study, const
 }
 
 static pw_status spread_study(const pw_stage *stage, const pw_roots *analog, pw_study *study,
-                              const pw_spread_options *options, pw_spread **out, pw_messages *messages)
+                              const pw_spread_options *options, pw_spread **out,
+                              pw_messages *messages)
 {
     if (!study->n) return PW_OK;
     pw_spread *spread = new_spread(stage, study, options);
     for (int i = 0; i < study->rows; i++) fill_nominal(analog, &spread->row[i], study->hz[i]);
     if (!find_nominal(study) || !pw_study_corners(study, spread->row)) {
-        pw_error(messages, stage->analog.at, "the circuit has no response at a corner of its tolerances; "
+        pw_error(messages, stage->analog.at,
+                 "the circuit has no response at a corner of its tolerances; "
                  "expected smaller tolerances");
         pw_spread_free(spread);
         return PW_FAILED;
@@ -241,8 +250,9 @@ static pw_status spread_study(const pw_stage *stage, const pw_roots *analog, pw_
     return PW_OK;
 }
 
-pw_status pw_spread_compute_at(const pw_stage *stage, const pw_roots *analog, const double *hz, int n,
-                               const pw_spread_options *options, pw_spread **out, pw_messages *messages)
+pw_status pw_spread_compute_at(const pw_stage *stage, const pw_roots *analog, const double *hz,
+                               int n, const pw_spread_options *options, pw_spread **out,
+                               pw_messages *messages)
 {
     pw_arena arena = {0};
     pw_circuit_list list;
@@ -258,8 +268,9 @@ pw_status pw_spread_compute_at(const pw_stage *stage, const pw_roots *analog, co
     return status;
 }
 
-pw_status pw_spread_compute(const pw_stage *stage, const pw_roots *analog, const pw_spread_options *options,
-                            pw_spread **out, pw_messages *messages)
+pw_status pw_spread_compute(const pw_stage *stage, const pw_roots *analog,
+                            const pw_spread_options *options, pw_spread **out,
+                            pw_messages *messages)
 {
     double hz[PW_SPREAD_ROWS], low = stage->limits.band_hz[0], high = stage->limits.band_hz[1];
     for (int i = 0; i < PW_SPREAD_ROWS; i++)
@@ -283,7 +294,8 @@ bool pw_spread_applies(const pw_stage *stage)
     bool any = false;
     if (!pw_circuits_of(&stage->analog, &arena, &list, &unheard))
         for (int i = 0; i < list.count; i++)
-            for (int k = 0; k < list.circuit[i].parts; k++) any |= list.circuit[i].part[k].tolerance > 0;
+            for (int k = 0; k < list.circuit[i].parts; k++)
+                any |= list.circuit[i].part[k].tolerance > 0;
     pw_messages_free(&unheard);
     pw_arena_free(&arena);
     return any;

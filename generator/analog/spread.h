@@ -35,7 +35,7 @@ typedef struct pw_spread {
 } pw_spread;
 
 typedef struct pw_spread_options {
-    int threads;                 /* 0: as many as there are processors. The result never depends on it */
+    int threads; /* 0: as many as there are processors. The result never depends on it */
     int shard, shards;           /* draw share shard, 1 .. shards; 0, 0: all */
     bool quiet;                  /* no progress on a terminal */
 } pw_spread_options;             /* {0} is usual */
@@ -55,9 +55,9 @@ typedef struct pw_spread_options {
 PW_CHECKED pw_status pw_spread_compute(const pw_stage *stage, const pw_roots *analog,
                                        const pw_spread_options *options, struct pw_spread **out,
                                        pw_messages *messages);
-PW_CHECKED pw_status pw_spread_compute_at(const pw_stage *stage, const pw_roots *analog, const double *hz, int n,
-                                          const pw_spread_options *options, struct pw_spread **out,
-                                          pw_messages *messages);
+PW_CHECKED pw_status pw_spread_compute_at(const pw_stage *stage, const pw_roots *analog,
+                                          const double *hz, int n, const pw_spread_options *options,
+                                          struct pw_spread **out, pw_messages *messages);
 void pw_spread_free(struct pw_spread *spread);           /* null is allowed */
 
 /* The share that an error of the replacement is of the stage's own spread: error / worst spread,
@@ -67,7 +67,8 @@ double pw_spread_share_deg(const struct pw_spread *spread, double error_deg);
 
 /* The lowest and highest of draws and corners together at hz, interpolated between rows on a
  * logarithmic scale; the end rows beyond them. */
-void pw_spread_envelope(const struct pw_spread *spread, double hz, double db[2], double deg[2], double delay_s[2]);
+void pw_spread_envelope(const struct pw_spread *spread, double hz, double db[2], double deg[2],
+                        double delay_s[2]);
 
 /* Whether any part of the stage has a tolerance. */
 bool pw_spread_applies(const pw_stage *stage);
@@ -82,7 +83,8 @@ PW_CHECKED pw_status pw_spread_read(const char *name, const pw_text *text, struc
 
 /* Adds another shard of the same study. PW_WRONG with a line on standard error where the two are of
  * different studies (stage file, seed, draws, frequencies) or share draws. */
-PW_CHECKED pw_status pw_spread_merge(struct pw_spread *into, const struct pw_spread *more, const char *name);
+PW_CHECKED pw_status pw_spread_merge(struct pw_spread *into, const struct pw_spread *more,
+                                     const char *name);
 
 /* The worst figures anew, from the rows. */
 void pw_spread_finish(struct pw_spread *spread);

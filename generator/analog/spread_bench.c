@@ -60,7 +60,8 @@ pw_change pw_bench_at(pw_bench *bench, int row)
 bool pw_bench_unstable(pw_bench *bench)
 {
     bool unstable = false;
-    for (int i = 0; i < bench->study->circuits; i++) unstable |= pw_reduced_unstable(&bench->model[i]);
+    for (int i = 0; i < bench->study->circuits; i++)
+        unstable |= pw_reduced_unstable(&bench->model[i]);
     return unstable;
 }
 
@@ -78,9 +79,10 @@ static double uniform(uint64_t seed, uint64_t index)
 void pw_study_place(const pw_study *study, int64_t draw, const double *points, double *x)
 {
     for (int i = 0; i < study->n; i++) {
-        double u = i < PW_SOBOL_PARTS
-                       ? points[i] + uniform(study->seed, (uint64_t)i)
-                       : uniform(study->seed, (uint64_t)(draw + 1) * (uint64_t)study->n + (uint64_t)i);
+        double u =
+            i < PW_SOBOL_PARTS
+                ? points[i] + uniform(study->seed, (uint64_t)i)
+                : uniform(study->seed, (uint64_t)(draw + 1) * (uint64_t)study->n + (uint64_t)i);
         u -= floor(u);
         u = fmin(fmax(u, 1e-12), 1 - 1e-12);
         x[i] = study->varied[i].normal ? gsl_cdf_ugaussian_Pinv(u) / 3 : 2 * u - 1;
@@ -93,7 +95,9 @@ enum { MAGNITUDE, PHASE, DELAY, QUANTITIES };
 
 static double pick(pw_change c, int quantity)
 {
-    return quantity == MAGNITUDE ? c.log_ratio * 20 / M_LN10 : quantity == PHASE ? c.degrees : c.delay_s;
+    return quantity == MAGNITUDE ? c.log_ratio * 20 / M_LN10
+           : quantity == PHASE   ? c.degrees
+                                 : c.delay_s;
 }
 
 /* sign[(quantity * rows + row) * n + part] */
@@ -127,7 +131,9 @@ static void keep(pw_range *range, bool high, double value)
 
 static void keep_corner(pw_spread_row *row, int quantity, bool high, pw_change c)
 {
-    pw_range *range = quantity == MAGNITUDE ? &row->db : quantity == PHASE ? &row->deg : &row->delay_s;
+    pw_range *range = quantity == MAGNITUDE ? &row->db
+                      : quantity == PHASE   ? &row->deg
+                                            : &row->delay_s;
     keep(range, high, pick(c, quantity));
 }
 

@@ -141,7 +141,8 @@ static void times_d(const pw_reduced *r, const double *t, int wide, double *out)
 {
     const pw_net *net = r->net;
     for (int k = 0; k < r->m; k++)
-        for (int j = 0; j < wide; j++) out[k * wide + j] = r->value[net->store[k].value] * t[k * wide + j];
+        for (int j = 0; j < wide; j++)
+            out[k * wide + j] = r->value[net->store[k].value] * t[k * wide + j];
     for (int i = 0; i < net->mutuals; i++)
         for (int side = 0; side < 2; side++)
             for (int j = 0; j < wide; j++)
@@ -246,8 +247,8 @@ static void eliminate(int m, double complex *w, bool *swapped, double complex *m
     }
 }
 
-static void substitute(int m, const double complex *w, const bool *swapped, const double complex *multiplier,
-                       double complex *x)
+static void substitute(int m, const double complex *w, const bool *swapped,
+                       const double complex *multiplier, double complex *x)
 {
     for (int k = 0; k + 1 < m; k++) {
         if (swapped[k]) {
@@ -295,7 +296,7 @@ bool pw_reduced_unstable(pw_reduced *r)
     for (int i = 0; i < r->m; i++) {
         gsl_complex mu = gsl_vector_complex_get(r->eigen->value, (size_t)i);
         double complex z = CMPLX(GSL_REAL(mu), GSL_IMAG(mu)) * r->s0;
-        if (cabs(z) < 1e-9) continue;                    /* a pole a thousand million times faster */
+        if (cabs(z) < 1e-9) continue; /* a pole a thousand million times faster */
         double complex s = 1 - 1 / z;
         if (creal(s) > 1e-9 * (1 + cabs(s))) return true;
     }

@@ -40,9 +40,15 @@ void pw_spread_finish(pw_spread *spread)
     }
 }
 
-double pw_spread_share_db(const pw_spread *spread, double error_db) { return error_db / spread->worst_db; }
+double pw_spread_share_db(const pw_spread *spread, double error_db)
+{
+    return error_db / spread->worst_db;
+}
 
-double pw_spread_share_deg(const pw_spread *spread, double error_deg) { return error_deg / spread->worst_deg; }
+double pw_spread_share_deg(const pw_spread *spread, double error_deg)
+{
+    return error_deg / spread->worst_deg;
+}
 
 static void both(const pw_range *a, const pw_range *b, double part, double out[2])
 {
@@ -52,7 +58,8 @@ static void both(const pw_range *a, const pw_range *b, double part, double out[2
     out[1] = high[0] + (high[1] - high[0]) * part;
 }
 
-void pw_spread_envelope(const pw_spread *spread, double hz, double db[2], double deg[2], double delay_s[2])
+void pw_spread_envelope(const pw_spread *spread, double hz, double db[2], double deg[2],
+                        double delay_s[2])
 {
     int i = 0;
     while (i + 2 < spread->rows && spread->row[i + 1].hz < hz) i++;
@@ -74,14 +81,18 @@ static void put_range(const pw_range *r, pw_text *out)
 
 void pw_spread_write(const pw_spread *spread, pw_text *out)
 {
-    pw_text_print(out, HEAD "\nstage %s\nseed %" PRIu64 "\ndraws %" PRId64 "\nparts %d\nfloor %.17g\n"
-                  "unstable %" PRId64 "\n", spread->sha256[0] ? spread->sha256 : "-", spread->seed, spread->draws, spread->parts,
-                  spread->floor_db, spread->unstable);
+    pw_text_print(out,
+                  HEAD "\nstage %s\nseed %" PRIu64 "\ndraws %" PRId64 "\nparts %d\nfloor %.17g\n"
+                       "unstable %" PRId64 "\n",
+                  spread->sha256[0] ? spread->sha256 : "-", spread->seed, spread->draws,
+                  spread->parts, spread->floor_db, spread->unstable);
     pw_text_print(out, "done %d\n", spread->dones);
     for (int i = 0; i < spread->dones; i++)
         pw_text_print(out, "%" PRId64 " %" PRId64 "\n", spread->done[i].from, spread->done[i].to);
-    pw_text_print(out, "rows %d\n# hz, then nominal low high corner-low corner-high of dB, degrees, delay in s\n",
-                  spread->rows);
+    pw_text_print(
+        out,
+        "rows %d\n# hz, then nominal low high corner-low corner-high of dB, degrees, delay in s\n",
+        spread->rows);
     for (int i = 0; i < spread->rows; i++) {
         pw_text_print(out, "%.17g", spread->row[i].hz);
         put_range(&spread->row[i].db, out);
@@ -129,8 +140,10 @@ static bool read_done(const char **at, pw_spread *out)
     for (int i = 0; i < out->dones; i++) {
         pw_draws *d = &out->done[i];
         used = 0;
-        if (sscanf(*at, "%" SCNd64 " %" SCNd64 "\n%n", &d->from, &d->to, &used) != 2 || !used) return false;
-        if (d->from < (i ? out->done[i - 1].to : 0) || d->to < d->from || d->to > out->draws) return false;
+        if (sscanf(*at, "%" SCNd64 " %" SCNd64 "\n%n", &d->from, &d->to, &used) != 2 || !used)
+            return false;
+        if (d->from < (i ? out->done[i - 1].to : 0) || d->to < d->from || d->to > out->draws)
+            return false;
         out->drawn += d->to - d->from;
         *at += used;
     }
@@ -140,9 +153,14 @@ static bool read_done(const char **at, pw_spread *out)
 static bool read_all(const char *at, pw_spread *out)
 {
     int used = 0;
-    if (sscanf(at, HEAD "\nstage %64s\nseed %" SCNu64 "\ndraws %" SCNd64 "\nparts %d\nfloor %lf\nunstable %" SCNd64
-               "\n%n", out->sha256, &out->seed, &out->draws, &out->parts, &out->floor_db, &out->unstable,
-               &used) != 6 || !used) return false;
+    if (sscanf(at,
+               HEAD "\nstage %64s\nseed %" SCNu64 "\ndraws %" SCNd64
+                    "\nparts %d\nfloor %lf\nunstable %" SCNd64 "\n%n",
+               out->sha256, &out->seed, &out->draws, &out->parts, &out->floor_db, &out->unstable,
+               &used)
+            != 6
+        || !used)
+        return false;
     if (!strcmp(out->sha256, "-")) out->sha256[0] = 0;
     at += used;
     if (!read_done(&at, out)) return false;
@@ -157,7 +175,8 @@ pw_status pw_spread_read(const char *name, const pw_text *text, pw_spread **out)
     pw_spread *spread = pw_take(sizeof *spread);
     *out = NULL;
     if (strlen(pw_text_string(text)) != text->size || !read_all(pw_text_string(text), spread)) {
-        fprintf(stderr, "%s: is no whole shard of a spread; expected a file that --shard wrote\n", name);
+        fprintf(stderr, "%s: is no whole shard of a spread; expected a file that --shard wrote\n",
+                name);
         pw_spread_free(spread);
         return PW_WRONG;
     }

@@ -24,7 +24,9 @@ typedef struct pw_study {
 } pw_study;
 
 /* A row of one stage beside the nominal one. */
-typedef struct pw_change { double log_ratio, degrees, delay_s; } pw_change;   /* natural log of |H/H0| */
+typedef struct pw_change {
+    double log_ratio, degrees, delay_s;
+} pw_change; /* natural log of |H/H0| */
 
 /* What one thread evaluates stages with. */
 typedef struct pw_bench {

@@ -65,7 +65,8 @@ json_t *pw_json_circuits(const pw_stage *stage)
     if (!pw_circuits_of(&stage->analog, &arena, &list, &unheard))
         for (int i = 0; i < list.count; i++) {
             pw_sensitivity *s = pw_arena_take(&arena, sizeof *s);
-            if (!pw_sensitivity_compute(&list.circuit[i], &arena, s)) json_array_append_new(o, circuit(s));
+            if (!pw_sensitivity_compute(&list.circuit[i], &arena, s))
+                json_array_append_new(o, circuit(s));
         }
     pw_messages_free(&unheard);
     pw_arena_free(&arena);

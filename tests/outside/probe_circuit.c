@@ -17,7 +17,11 @@ static pw_part part[512];
 static pw_circuit circuit;
 static pw_arena arena;
 
-static char *next(void) { char *w = strtok(NULL, " \n"); return w ? pw_arena_copy(&arena, w) : NULL; }
+static char *next(void)
+{
+    char *w = strtok(NULL, " \n");
+    return w ? pw_arena_copy(&arena, w) : NULL;
+}
 
 static double number(double otherwise)
 {
@@ -71,7 +75,8 @@ static void read_line(char *line, int at)
 static void print_roots(const char *name, const double complex *root, int n)
 {
     printf(", \"%s\": [", name);
-    for (int i = 0; i < n; i++) printf("%s[%.17g, %.17g]", i ? ", " : "", creal(root[i]), cimag(root[i]));
+    for (int i = 0; i < n; i++)
+        printf("%s[%.17g, %.17g]", i ? ", " : "", creal(root[i]), cimag(root[i]));
     printf("]");
 }
 

@@ -36,8 +36,8 @@ int main(int argc, char **argv)
     if (spread) {
         pw_spread_write(spread, &out);
         fwrite(out.data, 1, out.size, stdout);
-        fprintf(stderr, "worst %.6f dB at %.4g Hz, %.4f deg at %.4g Hz\n", spread->worst_db, spread->worst_db_hz,
-                spread->worst_deg, spread->worst_deg_hz);
+        fprintf(stderr, "worst %.6f dB at %.4g Hz, %.4f deg at %.4g Hz\n", spread->worst_db,
+                spread->worst_db_hz, spread->worst_deg, spread->worst_deg_hz);
     }
     pw_spread_free(spread);
     pw_text_free(&out);

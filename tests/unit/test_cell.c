@@ -23,9 +23,15 @@ static double parallel(double a, double b) { return b > 0 ? a * b / (a + b) : a;
 
 /* Horowitz and Hill, The Art of Electronics, 3rd ed., 1.7 */
 static cx rc_lowpass(cx s, const values *v) { return 1 / (1 + s * v->R[1] * v->C[1]); }
-static cx rc_highpass(cx s, const values *v) { return s * v->R[1] * v->C[1] / (1 + s * v->R[1] * v->C[1]); }
+static cx rc_highpass(cx s, const values *v)
+{
+    return s * v->R[1] * v->C[1] / (1 + s * v->R[1] * v->C[1]);
+}
 static cx rl_lowpass(cx s, const values *v) { return 1 / (1 + s * v->L[1] / v->R[1]); }
-static cx rl_highpass(cx s, const values *v) { return s * v->L[1] / v->R[1] / (1 + s * v->L[1] / v->R[1]); }
+static cx rl_highpass(cx s, const values *v)
+{
+    return s * v->L[1] / v->R[1] / (1 + s * v->L[1] / v->R[1]);
+}
 
 /* Ogata, Modern Control Engineering, ch. 6: lead alpha = R2/(R1+R2), T = R1 C; lag */
 static cx lead(cx s, const values *v)
@@ -42,12 +48,16 @@ static cx lag(cx s, const values *v)
 /* Bridged T: nodal analysis by hand */
 static cx bridged_t(cx s, const values *v)
 {
-    cx common = s * s * v->R[1] * v->R[2] * v->C[1] * v->C[2] + 1 + s * v->R[1] * (v->C[1] + v->C[2]);
+    cx common =
+        s * s * v->R[1] * v->R[2] * v->C[1] * v->C[2] + 1 + s * v->R[1] * (v->C[1] + v->C[2]);
     return common / (common + s * v->R[2] * v->C[2]);
 }
 
 /* Franco, Design with Operational Amplifiers, 3rd ed., ch. 3: first-order active filters */
-static cx inverting(cx s, const values *v) { return -v->R[2] / v->R[1] / (1 + s * v->R[2] * v->C[1]); }
+static cx inverting(cx s, const values *v)
+{
+    return -v->R[2] / v->R[1] / (1 + s * v->R[2] * v->C[1]);
+}
 
 static cx non_inverting(cx s, const values *v)
 {
@@ -127,7 +137,8 @@ static cx sallen_key_highpass(cx s, const values *v)
 {
     double k = v->R[3] > 0 ? 1 + v->R[4] / v->R[3] : 1;
     cx square = s * s * v->R[1] * v->R[2] * v->C[1] * v->C[2];
-    return k * square / (1 + s * (v->R[1] * (v->C[1] + v->C[2]) + v->R[2] * v->C[2] * (1 - k)) + square);
+    return k * square
+           / (1 + s * (v->R[1] * (v->C[1] + v->C[2]) + v->R[2] * v->C[2] * (1 - k)) + square);
 }
 
 static cx sallen_key_bandpass(cx s, const values *v)
@@ -243,39 +254,56 @@ static cx ladder_high_t(cx s, const values *v) { return ladder(s, v, 1, 1); }
 typedef struct row { const char *kind; int r, c, l; form form; const char *optional; } row;
 
 static const row rows[] = {
-    {"rc-lowpass", 1, 1, 0, rc_lowpass, ""}, {"rc-highpass", 1, 1, 0, rc_highpass, ""},
-    {"rl-lowpass", 1, 0, 1, rl_lowpass, ""}, {"rl-highpass", 1, 0, 1, rl_highpass, ""},
-    {"lead", 2, 1, 0, lead, ""}, {"lag", 2, 1, 0, lag, ""}, {"bridged-t", 2, 2, 0, bridged_t, ""},
+    {"rc-lowpass", 1, 1, 0, rc_lowpass, ""},
+    {"rc-highpass", 1, 1, 0, rc_highpass, ""},
+    {"rl-lowpass", 1, 0, 1, rl_lowpass, ""},
+    {"rl-highpass", 1, 0, 1, rl_highpass, ""},
+    {"lead", 2, 1, 0, lead, ""},
+    {"lag", 2, 1, 0, lag, ""},
+    {"bridged-t", 2, 2, 0, bridged_t, ""},
     {"rc-ladder", 5, 5, 0, rc_ladder, ""},
-    {"rlc-ladder-lowpass", 2, 3, 3, ladder_low, ""}, {"rlc-ladder-lowpass-t", 2, 3, 3, ladder_low_t, ""},
-    {"rlc-ladder-highpass", 2, 3, 3, ladder_high, ""}, {"rlc-ladder-highpass-t", 2, 3, 3, ladder_high_t, ""},
+    {"rlc-ladder-lowpass", 2, 3, 3, ladder_low, ""},
+    {"rlc-ladder-lowpass-t", 2, 3, 3, ladder_low_t, ""},
+    {"rlc-ladder-highpass", 2, 3, 3, ladder_high, ""},
+    {"rlc-ladder-highpass-t", 2, 3, 3, ladder_high_t, ""},
     {"rlc-ladder-lowpass-t", 2, 3, 3, ladder_low_t, "R2"},
-    {"inverting", 2, 1, 0, inverting, ""}, {"inverting", 2, 1, 0, inverting, "C1"},
-    {"non-inverting", 3, 2, 0, non_inverting, ""}, {"non-inverting", 3, 2, 0, non_inverting, "C2"},
+    {"inverting", 2, 1, 0, inverting, ""},
+    {"inverting", 2, 1, 0, inverting, "C1"},
+    {"non-inverting", 3, 2, 0, non_inverting, ""},
+    {"non-inverting", 3, 2, 0, non_inverting, "C2"},
     {"non-inverting", 3, 2, 0, non_inverting, "R2 R3 C2"},
-    {"integrator", 2, 1, 0, integrator, ""}, {"integrator", 2, 1, 0, integrator, "R2"},
+    {"integrator", 2, 1, 0, integrator, ""},
+    {"integrator", 2, 1, 0, integrator, "R2"},
     {"integrator-lead-zero", 2, 1, 0, integrator_lead_zero, ""},
-    {"compensator-type-1", 1, 1, 0, type_1, ""}, {"compensator-type-2", 2, 2, 0, type_2, ""},
+    {"compensator-type-1", 1, 1, 0, type_1, ""},
+    {"compensator-type-2", 2, 2, 0, type_2, ""},
     {"compensator-type-3", 3, 3, 0, type_3, ""},
-    {"differentiator", 2, 2, 0, differentiator, ""}, {"differentiator", 2, 2, 0, differentiator, "C2"},
+    {"differentiator", 2, 2, 0, differentiator, ""},
+    {"differentiator", 2, 2, 0, differentiator, "C2"},
     {"charge-amplifier", 2, 2, 0, charge_amplifier, ""},
     {"charge-amplifier", 2, 2, 0, charge_amplifier, "R1"},
     {"transimpedance", 1, 1, 0, transimpedance, ""},
-    {"shelving-low", 3, 1, 0, shelving_low, ""}, {"shelving-high", 3, 1, 0, shelving_high, ""},
-    {"phono-equaliser", 3, 3, 0, phono, ""}, {"phono-equaliser", 3, 3, 0, phono, "C1"},
+    {"shelving-low", 3, 1, 0, shelving_low, ""},
+    {"shelving-high", 3, 1, 0, shelving_high, ""},
+    {"phono-equaliser", 3, 3, 0, phono, ""},
+    {"phono-equaliser", 3, 3, 0, phono, "C1"},
     {"sallen-key-lowpass", 4, 2, 0, sallen_key_lowpass, ""},
     {"sallen-key-lowpass", 4, 2, 0, sallen_key_lowpass, "R3 R4"},
     {"sallen-key-highpass", 4, 2, 0, sallen_key_highpass, ""},
     {"sallen-key-highpass", 4, 2, 0, sallen_key_highpass, "R3 R4"},
     {"sallen-key-bandpass", 5, 2, 0, sallen_key_bandpass, ""},
     {"sallen-key-bandpass", 5, 2, 0, sallen_key_bandpass, "R4 R5"},
-    {"mfb-lowpass", 3, 2, 0, mfb_lowpass, ""}, {"mfb-highpass", 2, 3, 0, mfb_highpass, ""},
-    {"mfb-bandpass", 3, 2, 0, mfb_bandpass, ""}, {"mfb-bandpass", 3, 2, 0, mfb_bandpass, "R2"},
+    {"mfb-lowpass", 3, 2, 0, mfb_lowpass, ""},
+    {"mfb-highpass", 2, 3, 0, mfb_highpass, ""},
+    {"mfb-bandpass", 3, 2, 0, mfb_bandpass, ""},
+    {"mfb-bandpass", 3, 2, 0, mfb_bandpass, "R2"},
     {"state-variable-lowpass", 7, 2, 0, kerwin_low, ""},
     {"state-variable-bandpass", 7, 2, 0, kerwin_band, ""},
     {"state-variable-highpass", 7, 2, 0, kerwin_high, ""},
-    {"two-integrator-lowpass", 6, 2, 0, tow_low, ""}, {"two-integrator-bandpass", 6, 2, 0, tow_band, ""},
-    {"all-pass-1", 3, 1, 0, all_pass_1, ""}, {"all-pass-2", 4, 2, 0, all_pass_2, ""},
+    {"two-integrator-lowpass", 6, 2, 0, tow_low, ""},
+    {"two-integrator-bandpass", 6, 2, 0, tow_band, ""},
+    {"all-pass-1", 3, 1, 0, all_pass_1, ""},
+    {"all-pass-2", 4, 2, 0, all_pass_2, ""},
 };
 #define ROWS ((int)(sizeof rows / sizeof rows[0]))
 
@@ -354,7 +382,7 @@ static void every_kind_has_a_closed_form(void **state)
     }
 }
 
-/* Franco, ch. 4: passive twin-T, Q = 1/4; Horowitz and Hill, 6.3: bootstrapped, Q = 1/(4 (1 - k)) */
+/* Franco, ch. 4: passive twin-T, Q = 1/4; Horowitz and Hill, 6.3: bootstrapped, Q = 1/(4 - 4 k) */
 static void check_twin_t(const char *kind, double r4, double r5)
 {
     double r = 26530, c = 1e-7, k = r5 > 0 ? r5 / (r4 + r5) : 0;
@@ -370,7 +398,8 @@ static void check_twin_t(const char *kind, double r4, double r5)
     assert_int_equal(roots.zeros, 2);
     double w0 = 1 / (r * c), q = 0.25 / (1 - k);
     assert_true(creal(roots.zero[0]) == 0 && fabs(cimag(roots.zero[0]) - w0) < 1e-12 * w0);
-    double sum = -creal(roots.pole[0] + roots.pole[1]), product = creal(roots.pole[0] * roots.pole[1]);
+    double sum = -creal(roots.pole[0] + roots.pole[1]),
+           product = creal(roots.pole[0] * roots.pole[1]);
     assert_true(fabs(product / (w0 * w0) - 1) < 1e-12);
     assert_true(fabs(sqrt(product) / sum / q - 1) < 1e-12);
     pw_messages_free(&messages);
@@ -420,8 +449,10 @@ static void expect_message(pw_cell *cell, int line, const char *words)
 static void mistakes_are_told(void **state)
 {
     (void)state;
-    pw_cell_value list[] = {{.name = "R1", .value = 1e3, .at = {4, 9}}, {.name = "C2", .value = 1e-9, .at = {5, 9}}};
-    pw_cell cell = {.kind = "rc-lowpas", .value = list, .values = 2, .at = {2, 3}, .kind_at = {3, 9}};
+    pw_cell_value list[] = {{.name = "R1", .value = 1e3, .at = {4, 9}},
+                            {.name = "C2", .value = 1e-9, .at = {5, 9}}};
+    pw_cell cell = {
+        .kind = "rc-lowpas", .value = list, .values = 2, .at = {2, 3}, .kind_at = {3, 9}};
     expect_message(&cell, 3, "'rc-lowpass'");
     cell.kind = "rc-lowpass";
     expect_message(&cell, 2, "lacks its part 'C1'");

@@ -36,10 +36,13 @@ static void poles_at_0_are_0(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("R1: {resistor: 22k, between: [in, m]}, C1: {capacitor: 4n7, between: [m, x]}, "
-                        "U1: {op-amp: ideal, plus: ground, minus: m, out: x}, R2: {resistor: 33k, between: [x, n]}, "
-                        "C2: {capacitor: 330p, between: [n, out]}, "
-                        "U2: {op-amp: ideal, plus: ground, minus: n, out: out}")), &r, 0);
+    solve(CIRCUIT(
+              PARTS("R1: {resistor: 22k, between: [in, m]}, C1: {capacitor: 4n7, between: [m, x]}, "
+                    "U1: {op-amp: ideal, plus: ground, minus: m, out: x}, R2: {resistor: 33k, "
+                    "between: [x, n]}, "
+                    "C2: {capacitor: 330p, between: [n, out]}, "
+                    "U2: {op-amp: ideal, plus: ground, minus: n, out: out}")),
+          &r, 0);
     assert_int_equal(r.poles, 2);
     assert_int_equal(r.zeros, 0);
     assert_true(r.pole[0] == 0 && r.pole[1] == 0);
@@ -51,26 +54,33 @@ static void double_poles_stay_together(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("R1: {resistor: 10k, between: [in, a]}, C1: {capacitor: 3n3, between: [a, ground]}, "
-                        "U1: {op-amp: ideal, plus: a, minus: b, out: b}, R2: {resistor: 33k, between: [b, c]}, "
-                        "C2: {capacitor: 1n, between: [c, ground]}, U2: {op-amp: ideal, plus: c, minus: out, out: out}")),
-          &r, 0);
+    solve(
+        CIRCUIT(PARTS(
+            "R1: {resistor: 10k, between: [in, a]}, C1: {capacitor: 3n3, between: [a, ground]}, "
+            "U1: {op-amp: ideal, plus: a, minus: b, out: b}, R2: {resistor: 33k, between: [b, c]}, "
+            "C2: {capacitor: 1n, between: [c, ground]}, U2: {op-amp: ideal, plus: c, minus: out, "
+            "out: out}")),
+        &r, 0);
     assert_int_equal(r.poles, 2);
     assert_true(r.pole[0] == r.pole[1] && cimag(r.pole[0]) == 0);
     assert_true(near(creal(r.pole[0]), -1 / 33e-6, 1e-15));
 }
 
-#define LAG(i, from, to) "R" #i ": {resistor: 10k, between: [" from ", a" #i "]}, C" #i \
-    ": {capacitor: 10n, between: [a" #i ", ground]}, U" #i ": {op-amp: ideal, plus: a" #i ", minus: " to ", out: " to "}, "
+#define LAG(i, from, to)                                                                           \
+    "R" #i ": {resistor: 10k, between: [" from ", a" #i "]}, C" #i                                 \
+    ": {capacitor: 10n, between: [a" #i ", ground]}, U" #i ": {op-amp: ideal, plus: a" #i          \
+    ", minus: " to ", out: " to "}, "
 
 static void six_equal_poles_stay_together(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS(LAG(1, "in", "b") LAG(2, "b", "c") LAG(3, "c", "d") LAG(4, "d", "e") LAG(5, "e", "f")
-                        LAG(6, "f", "out"))), &r, 0);
+    solve(CIRCUIT(PARTS(LAG(1, "in", "b") LAG(2, "b", "c") LAG(3, "c", "d") LAG(4, "d", "e")
+                            LAG(5, "e", "f") LAG(6, "f", "out"))),
+          &r, 0);
     assert_int_equal(r.poles, 6);
-    for (int i = 0; i < 6; i++) assert_true(near(creal(r.pole[i]), -1e4, 1e-15) && cimag(r.pole[i]) == 0);
+    for (int i = 0; i < 6; i++)
+        assert_true(near(creal(r.pole[i]), -1e4, 1e-15) && cimag(r.pole[i]) == 0);
 }
 
 /* A double pair of complex poles: two equal unity-gain Sallen-Key sections, Q = 1. */
@@ -78,12 +88,14 @@ static void double_pairs_stay_together(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("R1: {resistor: 10k, between: [in, a]}, R2: {resistor: 10k, between: [a, b]}, "
-                        "C1: {capacitor: 4n, between: [a, c]}, C2: {capacitor: 1n, between: [b, ground]}, "
-                        "U1: {op-amp: ideal, plus: b, minus: c, out: c}, "
-                        "R3: {resistor: 10k, between: [c, d]}, R4: {resistor: 10k, between: [d, e]}, "
-                        "C3: {capacitor: 4n, between: [d, out]}, C4: {capacitor: 1n, between: [e, ground]}, "
-                        "U2: {op-amp: ideal, plus: e, minus: out, out: out}")), &r, 0);
+    solve(CIRCUIT(PARTS(
+              "R1: {resistor: 10k, between: [in, a]}, R2: {resistor: 10k, between: [a, b]}, "
+              "C1: {capacitor: 4n, between: [a, c]}, C2: {capacitor: 1n, between: [b, ground]}, "
+              "U1: {op-amp: ideal, plus: b, minus: c, out: c}, "
+              "R3: {resistor: 10k, between: [c, d]}, R4: {resistor: 10k, between: [d, e]}, "
+              "C3: {capacitor: 4n, between: [d, out]}, C4: {capacitor: 1n, between: [e, ground]}, "
+              "U2: {op-amp: ideal, plus: e, minus: out, out: out}")),
+          &r, 0);
     assert_int_equal(r.poles, 4);
     for (int i = 0; i < 4; i++) {
         assert_true(near(creal(r.pole[i]), -5e4 / 2, 1e-15));
@@ -96,10 +108,13 @@ static void matched_twin_t_is_second_order(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("R1: {resistor: 26.53k, between: [in, a]}, R2: {resistor: 26.53k, between: [a, out]}, "
-                        "C3: {capacitor: 200n, between: [a, ground]}, C1: {capacitor: 100n, between: [in, b]}, "
-                        "C2: {capacitor: 100n, between: [b, out]}, R3: {resistor: 13.265k, between: [b, ground]}")),
-          &r, 1);
+    solve(
+        CIRCUIT(PARTS(
+            "R1: {resistor: 26.53k, between: [in, a]}, R2: {resistor: 26.53k, between: [a, out]}, "
+            "C3: {capacitor: 200n, between: [a, ground]}, C1: {capacitor: 100n, between: [in, b]}, "
+            "C2: {capacitor: 100n, between: [b, out]}, R3: {resistor: 13.265k, between: [b, "
+            "ground]}")),
+        &r, 1);
     assert_int_equal(r.poles, 2);
     assert_int_equal(r.zeros, 2);
     assert_true(creal(r.zero[0]) == 0 && near(cimag(r.zero[0]), 1 / 2.653e-3, 1e-15));
@@ -110,10 +125,13 @@ static void almost_matched_twin_t_is_third_order(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("R1: {resistor: 26.53k, between: [in, a]}, R2: {resistor: 26.53k, between: [a, out]}, "
-                        "C3: {capacitor: 200n, between: [a, ground]}, C1: {capacitor: 100n, between: [in, b]}, "
-                        "C2: {capacitor: 100n, between: [b, out]}, R3: {resistor: 13.265001k, between: [b, ground]}")),
-          &r, 0);
+    solve(
+        CIRCUIT(PARTS(
+            "R1: {resistor: 26.53k, between: [in, a]}, R2: {resistor: 26.53k, between: [a, out]}, "
+            "C3: {capacitor: 200n, between: [a, ground]}, C1: {capacitor: 100n, between: [in, b]}, "
+            "C2: {capacitor: 100n, between: [b, out]}, R3: {resistor: 13.265001k, between: [b, "
+            "ground]}")),
+        &r, 0);
     assert_int_equal(r.poles, 3);
     assert_int_equal(r.zeros, 3);
     assert_true(creal(r.zero[1]) != 0);
@@ -126,9 +144,12 @@ static void eighteen_decades(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("R1: {resistor: 1, between: [in, a]}, C1: {capacitor: 1p, between: [a, ground]}, "
-                        "U1: {op-amp: ideal, plus: a, minus: b, out: b}, R2: {resistor: 100M, between: [b, out]}, "
-                        "C2: {capacitor: 10m, between: [out, ground]}")), &r, 0);
+    solve(CIRCUIT(PARTS(
+              "R1: {resistor: 1, between: [in, a]}, C1: {capacitor: 1p, between: [a, ground]}, "
+              "U1: {op-amp: ideal, plus: a, minus: b, out: b}, R2: {resistor: 100M, between: [b, "
+              "out]}, "
+              "C2: {capacitor: 10m, between: [out, ground]}")),
+          &r, 0);
     assert_int_equal(r.poles, 2);
     assert_int_equal(r.zeros, 0);
     assert_true(near(creal(r.pole[0]), -1e-6, 1e-15) && near(creal(r.pole[1]), -1e12, 1e-15));
@@ -139,8 +160,9 @@ static void large_is_not_infinite(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("R1: {resistor: 1, between: [in, a]}, C1: {capacitor: 1, between: [a, ground]}, "
-                        "R2: {resistor: 1, between: [a, out]}, C2: {capacitor: 1f, between: [out, ground]}")),
+    solve(CIRCUIT(PARTS(
+              "R1: {resistor: 1, between: [in, a]}, C1: {capacitor: 1, between: [a, ground]}, "
+              "R2: {resistor: 1, between: [a, out]}, C2: {capacitor: 1f, between: [out, ground]}")),
           &r, 0);
     assert_int_equal(r.poles, 2);
     assert_int_equal(r.zeros, 0);
@@ -155,10 +177,13 @@ static void capacitor_loops_add_no_poles(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("C0: {capacitor: 1u, between: [in, ground]}, R1: {resistor: 10k, between: [in, a]}, "
-                        "C1: {capacitor: 10n, between: [a, ground]}, C2: {capacitor: 22n, between: [a, out]}, "
-                        "C3: {capacitor: 47n, between: [out, ground]}, R2: {resistor: 47k, between: [out, ground]}")),
-          &r, 0);
+    solve(
+        CIRCUIT(PARTS(
+            "C0: {capacitor: 1u, between: [in, ground]}, R1: {resistor: 10k, between: [in, a]}, "
+            "C1: {capacitor: 10n, between: [a, ground]}, C2: {capacitor: 22n, between: [a, out]}, "
+            "C3: {capacitor: 47n, between: [out, ground]}, R2: {resistor: 47k, between: [out, "
+            "ground]}")),
+        &r, 0);
     assert_int_equal(r.poles, 2);
     assert_int_equal(r.zeros, 1);
     assert_true(r.zero[0] == 0);
@@ -168,10 +193,13 @@ static void capacitor_loops_add_no_poles(void **state)
 static void a_long_ladder_has_no_zeros(void **state)
 {
     (void)state;
-    char yaml[4000] = "stage: t\nrate: 48 kHz\nanalog: {circuit: {input: {voltage: in}, output: n20, parts: {";
+    char yaml[4000] =
+        "stage: t\nrate: 48 kHz\nanalog: {circuit: {input: {voltage: in}, output: n20, parts: {";
     for (int i = 1; i <= 20; i++)
-        sprintf(yaml + strlen(yaml), "R%d: {resistor: %dk, between: [%s%d, n%d]}, C%d: {capacitor: %dn, "
-                "between: [n%d, ground]}%s", i, 1 + i, i > 1 ? "n" : "in ,n", i > 1 ? i - 1 : 0, i, i, 30 - i, i,
+        sprintf(yaml + strlen(yaml),
+                "R%d: {resistor: %dk, between: [%s%d, n%d]}, C%d: {capacitor: %dn, "
+                "between: [n%d, ground]}%s",
+                i, 1 + i, i > 1 ? "n" : "in ,n", i > 1 ? i - 1 : 0, i, i, 30 - i, i,
                 i < 20 ? ", " : "}}}\n");
     char *wrong = strstr(yaml, "in ,n0");
     memcpy(wrong, "in    ", 6);
@@ -187,7 +215,8 @@ static void resistors_alone_have_no_roots(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("R1: {resistor: 10k, between: [in, out]}, R2: {resistor: 30k, between: [out, ground]}")),
+    solve(CIRCUIT(PARTS("R1: {resistor: 10k, between: [in, out]}, R2: {resistor: 30k, between: "
+                        "[out, ground]}")),
           &r, 0);
     assert_int_equal(r.poles, 0);
     assert_true((double)r.factor == 0.75);
@@ -202,9 +231,12 @@ static void transformer(void **state)
     (void)state;
     pw_roots r;
     double r1 = 50, r2 = 600, l1 = 3e-3, l2 = 12e-3, m = 0.98 * sqrt(l1 * l2);
-    solve(CIRCUIT(PARTS("R1: {resistor: 50, between: [in, a]}, L1: {inductor: 3 mH, between: [a, ground]}, "
-                        "L2: {inductor: 12 mH, between: [out, ground]}, R2: {resistor: 600, between: [out, ground]}, "
-                        "K1: {coupling: 0.98, between: [L1, L2]}")), &r, 0);
+    solve(CIRCUIT(PARTS(
+              "R1: {resistor: 50, between: [in, a]}, L1: {inductor: 3 mH, between: [a, ground]}, "
+              "L2: {inductor: 12 mH, between: [out, ground]}, R2: {resistor: 600, between: [out, "
+              "ground]}, "
+              "K1: {coupling: 0.98, between: [L1, L2]}")),
+          &r, 0);
     assert_int_equal(r.poles, 2);
     assert_int_equal(r.zeros, 1);
     assert_true(r.zero[0] == 0);
@@ -220,8 +252,11 @@ static void current_in_difference_out(void **state)
 {
     (void)state;
     pw_roots r;
-    solve("stage: t\nrate: 48 kHz\nanalog: {circuit: {input: {current: a, source-resistance: 2k}, output: [a, b], "
-          "load: 3k, parts: {C1: {capacitor: 10n, between: [a, b]}, R1: {resistor: 1k, between: [b, ground]}}}}\n", &r, 0);
+    solve("stage: t\nrate: 48 kHz\nanalog: {circuit: {input: {current: a, source-resistance: 2k}, "
+          "output: [a, b], "
+          "load: 3k, parts: {C1: {capacitor: 10n, between: [a, b]}, R1: {resistor: 1k, between: "
+          "[b, ground]}}}}\n",
+          &r, 0);
     /* of the current, R2k takes a part: v = i 2k (ZL) / (2k + ZL + 1k), ZL = 3k || C */
     assert_int_equal(r.poles, 1);
     assert_true(near(creal(pw_roots_at(&r, 0)), 2e3 * 3e3 / 6e3, 1e-15));
@@ -233,13 +268,42 @@ static void controlled_sources_push_up(void **state)
 {
     (void)state;
     pw_roots r;
-    solve(CIRCUIT(PARTS("E1: {amplifier: 10, sense: [in, ground], drive: [x, ground]}, "
-                        "R1: {resistor: 1k, between: [x, out]}, R2: {resistor: 1k, between: [out, ground]}")), &r, 0);
+    solve(CIRCUIT(PARTS(
+              "E1: {amplifier: 10, sense: [in, ground], drive: [x, ground]}, "
+              "R1: {resistor: 1k, between: [x, out]}, R2: {resistor: 1k, between: [out, ground]}")),
+          &r, 0);
     assert_true((double)r.factor == 5);
     solve(CIRCUIT(PARTS("R0: {resistor: 1k, between: [in, ground]}, "
                         "G1: {transconductor: 2 mS, sense: [in, ground], drive: [out, ground]}, "
                         "R1: {resistor: 1k, between: [out, ground]}")), &r, 0);
     assert_true(near((double)r.factor, 2, 1e-15));
+}
+
+/* ---- The proof that ends every solution ---- */
+
+/* Roots that are off by a millionth are told from right ones, and by how much. */
+static void wrong_roots_are_found_out(void **state)
+{
+    (void)state;
+    fixture f;
+    pw_net net;
+    pw_quad_roots quad;
+    pw_roots roots;
+    double at_hz;
+    pw_net_make(fixture_read(&f, CIRCUIT(PARTS("R1: {resistor: 10k, between: [in, out]}, "
+                                               "C1: {capacitor: 10n, between: [out, ground]}"))),
+                &net);
+    assert_int_equal(pw_net_solve(&net, NULL, &quad), PW_SOLVED);
+    assert_true(pw_quad_roots_round(&quad, &roots));
+    assert_true(pw_net_compare(&net, &roots, &at_hz) < 1e-14);
+    roots.pole[0] *= 1 + 1e-6;                           /* at DC all of it is seen */
+    double off = pw_net_compare(&net, &roots, &at_hz);
+    assert_true(near(off, 1e-6, 1e-4) && at_hz < 1000);
+    roots.pole[0] /= 1 + 1e-6;
+    roots.factor *= 1 - 1e-7L;
+    assert_true(near(pw_net_compare(&net, &roots, &at_hz), 1e-7, 1e-4));
+    pw_net_free(&net);
+    fixture_free(&f);
 }
 
 /* ---- The numerics beside other ways ---- */
@@ -276,7 +340,8 @@ static void eigenvalues_against_gsl(void **state)
         qsort(mine, (size_t)n, sizeof mine[0], by_size);
         qsort(theirs, (size_t)n, sizeof theirs[0], by_size);
         for (int i = 0; i < n; i++)
-            assert_true(fabs(mine[i][0] - theirs[i][0]) < 10 && fabs(mine[i][1] - theirs[i][1]) < 10);
+            assert_true(fabs(mine[i][0] - theirs[i][0]) < 10
+                        && fabs(mine[i][1] - theirs[i][1]) < 10);
         gsl_matrix_free(m);
         gsl_vector_complex_free(value);
         gsl_eigen_nonsymm_free(space);
@@ -315,14 +380,23 @@ static void prime_arithmetic(void **state)
 int main(void)
 {
     const struct CMUnitTest tests[] = {
-        cmocka_unit_test(poles_at_0_are_0), cmocka_unit_test(double_poles_stay_together),
-        cmocka_unit_test(six_equal_poles_stay_together), cmocka_unit_test(double_pairs_stay_together),
-        cmocka_unit_test(matched_twin_t_is_second_order), cmocka_unit_test(almost_matched_twin_t_is_third_order),
-        cmocka_unit_test(eighteen_decades), cmocka_unit_test(large_is_not_infinite),
-        cmocka_unit_test(capacitor_loops_add_no_poles), cmocka_unit_test(a_long_ladder_has_no_zeros),
-        cmocka_unit_test(resistors_alone_have_no_roots), cmocka_unit_test(transformer),
-        cmocka_unit_test(current_in_difference_out), cmocka_unit_test(controlled_sources_push_up),
-        cmocka_unit_test(eigenvalues_against_gsl), cmocka_unit_test(prime_arithmetic),
+        cmocka_unit_test(poles_at_0_are_0),
+        cmocka_unit_test(double_poles_stay_together),
+        cmocka_unit_test(six_equal_poles_stay_together),
+        cmocka_unit_test(double_pairs_stay_together),
+        cmocka_unit_test(matched_twin_t_is_second_order),
+        cmocka_unit_test(almost_matched_twin_t_is_third_order),
+        cmocka_unit_test(eighteen_decades),
+        cmocka_unit_test(large_is_not_infinite),
+        cmocka_unit_test(capacitor_loops_add_no_poles),
+        cmocka_unit_test(a_long_ladder_has_no_zeros),
+        cmocka_unit_test(resistors_alone_have_no_roots),
+        cmocka_unit_test(transformer),
+        cmocka_unit_test(current_in_difference_out),
+        cmocka_unit_test(controlled_sources_push_up),
+        cmocka_unit_test(wrong_roots_are_found_out),
+        cmocka_unit_test(eigenvalues_against_gsl),
+        cmocka_unit_test(prime_arithmetic),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

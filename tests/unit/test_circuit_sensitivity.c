@@ -9,6 +9,7 @@
 #include <math.h>
 
 #include "analog/sensitivity.h"
+#include "analog/sensitivity_adjoint.h"
 #include "circuit_text.h"
 
 static void compute(const char *yaml, fixture *f, pw_arena *arena, pw_sensitivity *s)
@@ -26,13 +27,15 @@ static int row_of(const pw_sensitivity *s, const char *part)
 
 #define NEAR(x, y) assert_true(fabs((x) - (y)) < 1e-6 * (1 + fabs((double)(y))))
 
-#define SALLEN_KEY CIRCUIT(PARTS("R1: {resistor: 12k, between: [in, a]}, R2: {resistor: 8.2k, between: [a, b]}, " \
-    "C1: {capacitor: 22n, between: [a, out]}, C2: {capacitor: 10n, between: [b, ground]}, " \
-    "RA: {resistor: 10k, between: [m, ground]}, RB: {resistor: 3.3k, between: [m, out]}, " \
-    "U1: {op-amp: ideal, plus: b, minus: m, out: out}"))
+#define SALLEN_KEY                                                                                 \
+    CIRCUIT(PARTS(                                                                                 \
+        "R1: {resistor: 12k, between: [in, a]}, R2: {resistor: 8.2k, between: [a, b]}, "           \
+        "C1: {capacitor: 22n, between: [a, out]}, C2: {capacitor: 10n, between: [b, ground]}, "    \
+        "RA: {resistor: 10k, between: [m, ground]}, RB: {resistor: 3.3k, between: [m, out]}, "     \
+        "U1: {op-amp: ideal, plus: b, minus: m, out: out}"))
 
-/* Franco, ch. 3: S(Q; R1) = -1/2 + Q sqrt(R2 C2 / (R1 C1)), S(Q; C1) = -1/2 + Q (sqrt(R1 C2/(R2 C1)) +
- * sqrt(R2 C2/(R1 C1))), S(Q; K) = Q K sqrt(R1 C1 / (R2 C2)); f0: -1/2 each. */
+/* Franco, ch. 3: S(Q; R1) = -1/2 + Q sqrt(R2 C2 / (R1 C1)), S(Q; C1) = -1/2 +
+ * Q (sqrt(R1 C2/(R2 C1)) + sqrt(R2 C2/(R1 C1))), S(Q; K) = Q K sqrt(R1 C1 / (R2 C2)); f0: -1/2 each. */
 static void sallen_key(void **state)
 {
     (void)state;
@@ -41,19 +44,23 @@ static void sallen_key(void **state)
     pw_sensitivity s;
     compute(SALLEN_KEY, &f, &arena, &s);
     double r1 = 12e3, r2 = 8.2e3, c1 = 22e-9, c2 = 10e-9, k = 1.33;
-    double q = 1 / (sqrt(r1 * c1 / (r2 * c2)) * (1 - k) + sqrt(r1 * c2 / (r2 * c1)) + sqrt(r2 * c2 / (r1 * c1)));
+    double q = 1
+               / (sqrt(r1 * c1 / (r2 * c2)) * (1 - k) + sqrt(r1 * c2 / (r2 * c1))
+                  + sqrt(r2 * c2 / (r1 * c1)));
     assert_int_equal(s.modes, 1);
     NEAR(s.mode[0].q, q);
     NEAR(s.mode[0].f0_hz, 1 / (2 * M_PI * sqrt(r1 * r2 * c1 * c2)));
     NEAR(s.mode[0].tau_s, 2 * q * sqrt(r1 * r2 * c1 * c2));
     NEAR(s.move[row_of(&s, "R1")].q, -0.5 + q * sqrt(r2 * c2 / (r1 * c1)));
     NEAR(s.move[row_of(&s, "R2")].q, 0.5 - q * sqrt(r2 * c2 / (r1 * c1)));
-    NEAR(s.move[row_of(&s, "C1")].q, -0.5 + q * (sqrt(r1 * c2 / (r2 * c1)) + sqrt(r2 * c2 / (r1 * c1))));
+    NEAR(s.move[row_of(&s, "C1")].q,
+         -0.5 + q * (sqrt(r1 * c2 / (r2 * c1)) + sqrt(r2 * c2 / (r1 * c1))));
     NEAR(s.move[row_of(&s, "RB")].q, q * k * sqrt(r1 * c1 / (r2 * c2)) * (k - 1) / k);
     NEAR(s.move[row_of(&s, "RA")].q, -q * k * sqrt(r1 * c1 / (r2 * c2)) * (k - 1) / k);
     for (int i = 0; i < s.parts; i++) {
         char kind = s.circuit->part[s.part[i]].name[0], digit = s.circuit->part[s.part[i]].name[1];
-        NEAR(s.move[i].f0, (kind == 'R' || kind == 'C') && (digit == '1' || digit == '2') ? -0.5 : 0);
+        NEAR(s.move[i].f0,
+             (kind == 'R' || kind == 'C') && (digit == '1' || digit == '2') ? -0.5 : 0);
     }
     /* K = 1 + RB/RA: dB at DC per percent of RB: 0.0869 (K - 1)/K */
     NEAR(s.gain_db[row_of(&s, "RB")][PW_GAIN_DC], 0.2 / M_LN10 * (k - 1) / k);
@@ -63,9 +70,13 @@ static void sallen_key(void **state)
     pw_arena_free(&arena);
 }
 
-#define NETWORK CIRCUIT(PARTS("R1: {resistor: 1.2k, between: [in, a]}, C1: {capacitor: 2n2, between: [a, ground]}, " \
-    "L1: {inductor: 3.3 mH, between: [a, b]}, C2: {capacitor: 4n7, between: [b, ground]}, R2: {resistor: 680, between: [b, c]}, " \
-    "C3: {capacitor: 1n, between: [c, out]}, R3: {resistor: 10k, between: [out, ground]}, L2: {inductor: 10 mH, between: [out, ground]}"))
+#define NETWORK                                                                                    \
+    CIRCUIT(PARTS(                                                                                 \
+        "R1: {resistor: 1.2k, between: [in, a]}, C1: {capacitor: 2n2, between: [a, ground]}, "     \
+        "L1: {inductor: 3.3 mH, between: [a, b]}, C2: {capacitor: 4n7, between: [b, ground]}, "    \
+        "R2: {resistor: 680, between: [b, c]}, "                                                   \
+        "C3: {capacitor: 1n, between: [c, out]}, R3: {resistor: 10k, between: [out, ground]}, "    \
+        "L2: {inductor: 10 mH, between: [out, ground]}"))
 
 /* Homogeneity (Goldstein and Kuo 1961; Temes and LaPatra, ch. 4): scaling all impedances changes no
  * voltage ratio, so that over R, L and 1/C the sums are 0; scaling frequency, over L and C, moves
@@ -100,6 +111,44 @@ static void sums_of_sensitivities(void **state)
     pw_arena_free(&arena);
 }
 
+/* The derivatives against differences: two ways that share the equations only. */
+static void derivatives_against_steps(void **state)
+{
+    (void)state;
+    fixture f;
+    pw_net net;
+    pw_quad_roots before, after;
+    double scale[16];
+    long double complex move[16], gain[16];
+    pw_net_make(fixture_read(&f, NETWORK), &net);
+    const int parts = net.circuit->parts;
+    for (int i = 0; i < parts; i++) scale[i] = 1;
+    assert_int_equal(pw_net_solve(&net, scale, &before), PW_SOLVED);
+    const double complex at = CMPLX(0, 2e5);
+    assert_true(pw_adjoint_gain(&net, at, gain));
+    for (int root = 0; root < before.poles; root++) {
+        long double complex s =
+            CMPLXL((long double)before.pole_re[root], (long double)before.pole_im[root]);
+        assert_true(pw_adjoint_root(&net, false, s, move));
+        for (int i = 0; i < parts; i++) {
+            scale[i] = 1.00000001;
+            assert_int_equal(pw_net_solve(&net, scale, &after), PW_SOLVED);
+            scale[i] = 1;
+            double complex ds =
+                CMPLX((double)((after.pole_re[root] - before.pole_re[root]) * 1e8f128),
+                      (double)((after.pole_im[root] - before.pole_im[root]) * 1e8f128));
+            assert_true(cabs(ds - (double complex)move[i]) < 1e-6 * cabs((double complex)s));
+            if (root) continue;
+            pw_roots r[2];
+            assert_true(pw_quad_roots_round(&before, &r[0]) && pw_quad_roots_round(&after, &r[1]));
+            double complex dh = (pw_roots_at(&r[1], at) / pw_roots_at(&r[0], at) - 1) * 1e8;
+            assert_true(cabs(dh - (double complex)gain[i]) < 1e-5);
+        }
+    }
+    pw_net_free(&net);
+    fixture_free(&f);
+}
+
 /* Two equal buffered lags: each pole alone moves without bound in the limit, the pair does not. */
 static void double_pole(void **state)
 {
@@ -107,9 +156,13 @@ static void double_pole(void **state)
     fixture f;
     pw_arena arena = {0};
     pw_sensitivity s;
-    compute(CIRCUIT(PARTS("R1: {resistor: 10k, between: [in, a]}, C1: {capacitor: 10n, between: [a, ground]}, "
-                          "U1: {op-amp: ideal, plus: a, minus: b, out: b}, R2: {resistor: 10k, between: [b, out]}, "
-                          "C2: {capacitor: 10n, between: [out, ground]}")), &f, &arena, &s);
+    compute(
+        CIRCUIT(PARTS(
+            "R1: {resistor: 10k, between: [in, a]}, C1: {capacitor: 10n, between: [a, ground]}, "
+            "U1: {op-amp: ideal, plus: a, minus: b, out: b}, R2: {resistor: 10k, between: [b, "
+            "out]}, "
+            "C2: {capacitor: 10n, between: [out, ground]}")),
+        &f, &arena, &s);
     assert_int_equal(s.modes, 1);
     assert_int_equal(s.mode[0].count, 2);
     NEAR(s.mode[0].q, 0.5);
@@ -128,16 +181,20 @@ static void integrator_of_a_real_op_amp(void **state)
     fixture f;
     pw_arena arena = {0};
     pw_sensitivity s;
-    compute(CIRCUIT(PARTS("R1: {resistor: 10k, between: [in, m]}, C1: {capacitor: 10n, between: [m, out]}, "
-                          "U1: {op-amp: {gain-bandwidth: 1 MHz, dc-gain: 120 dB}, plus: ground, minus: m, out: out}")),
+    compute(CIRCUIT(PARTS(
+                "R1: {resistor: 10k, between: [in, m]}, C1: {capacitor: 10n, between: [m, out]}, "
+                "U1: {op-amp: {gain-bandwidth: 1 MHz, dc-gain: 120 dB}, plus: ground, minus: m, "
+                "out: out}")),
             &f, &arena, &s);
     int u = row_of(&s, "U1");
     assert_int_equal(s.modes, 2);                         /* slow, and at the gain-bandwidth */
     assert_true(fabs(s.mode[1].f0_hz / 1e6 - 1) < 0.01 && fabs(s.move[u * 2 + 1].f0 - 1) < 0.01);
     NEAR(s.gain[PW_GAIN_DC], -1e6);
     fixture_free(&f);
-    compute(CIRCUIT(PARTS("R1: {resistor: 10k, between: [in, m]}, C1: {capacitor: 10n, between: [m, out]}, "
-                          "U1: {op-amp: ideal, plus: ground, minus: m, out: out}")), &f, &arena, &s);
+    compute(CIRCUIT(PARTS(
+                "R1: {resistor: 10k, between: [in, m]}, C1: {capacitor: 10n, between: [m, out]}, "
+                "U1: {op-amp: ideal, plus: ground, minus: m, out: out}")),
+            &f, &arena, &s);
     assert_true(s.modes == 0 && isinf(s.gain[PW_GAIN_DC]));
     assert_int_equal(s.parts, 2);
     fixture_free(&f);
@@ -148,11 +205,14 @@ static void integrator_of_a_real_op_amp(void **state)
 static void preferred_values(void **state)
 {
     (void)state;
-    static const struct { const char *series; double value, nearest; } rows[] = {
-        {"E6", 4.1e3, 4.7e3}, {"E12", 4.1e3, 3.9e3}, {"E24", 4.1e3, 4.3e3}, {"E96", 4.1e3, 4.12e3},
-        {"E24", 15.92e3, 16e3}, {"E12", 15.92e3, 15e3}, {"E24", 2.6e-9, 2.7e-9}, {"E24", 8.3e-9, 8.2e-9},
-        {"E6", 0.09, 0.1}, {"E3", 30, 22}, {"E192", 919, 920}, {"E96", 976e3, 976e3}, {"E96", 9.9e3, 10e3},
-        {"E48", 1.07e-6, 1.05e-6}, {"E24", 1e-12, 1e-12}, {"E24", 9.7, 10}, {"E24", 95, 91}, {"none", 123.4, 123.4},
+    static const struct { const char *series; double value, nearest;
+    } rows[] = {
+        {"E6", 4.1e3, 4.7e3},    {"E12", 4.1e3, 3.9e3},     {"E24", 4.1e3, 4.3e3},
+        {"E96", 4.1e3, 4.12e3},  {"E24", 15.92e3, 16e3},    {"E12", 15.92e3, 15e3},
+        {"E24", 2.6e-9, 2.7e-9}, {"E24", 8.3e-9, 8.2e-9},   {"E6", 0.09, 0.1},
+        {"E3", 30, 22},          {"E192", 919, 920},        {"E96", 976e3, 976e3},
+        {"E96", 9.9e3, 10e3},    {"E48", 1.07e-6, 1.05e-6}, {"E24", 1e-12, 1e-12},
+        {"E24", 9.7, 10},        {"E24", 95, 91},           {"none", 123.4, 123.4},
     };
     for (size_t i = 0; i < sizeof rows / sizeof rows[0]; i++) {
         double found = pw_series_nearest(rows[i].series, rows[i].value);
@@ -193,8 +253,10 @@ static void show_names_every_part(void **state)
     (void)state;
     fixture f;
     pw_text text = {0};
-    fixture_read(&f, "stage: t\nrate: 48 kHz\nanalog: {circuit: {input: {voltage: in}, output: out, nearest: E12, parts: "
-                     "{R1: {resistor: 10k, between: [in, out]}, C1: {capacitor: 4.1 nF, between: [out, ground]}}}}\n");
+    fixture_read(&f, "stage: t\nrate: 48 kHz\nanalog: {circuit: {input: {voltage: in}, output: "
+                     "out, nearest: E12, parts: "
+                     "{R1: {resistor: 10k, between: [in, out]}, C1: {capacitor: 4.1 nF, between: "
+                     "[out, ground]}}}}\n");
     pw_circuit_show(&f.stage, &text);
     const char *shown = pw_text_string(&text);
     assert_non_null(strstr(shown, "R1          10 kohm   -1.000"));
@@ -208,8 +270,12 @@ static void show_names_every_part(void **state)
 int main(void)
 {
     const struct CMUnitTest tests[] = {
-        cmocka_unit_test(sallen_key), cmocka_unit_test(sums_of_sensitivities), cmocka_unit_test(double_pole),
-        cmocka_unit_test(integrator_of_a_real_op_amp), cmocka_unit_test(preferred_values), cmocka_unit_test(published_series),
+        cmocka_unit_test(sallen_key),
+        cmocka_unit_test(sums_of_sensitivities),
+        cmocka_unit_test(derivatives_against_steps), cmocka_unit_test(double_pole),
+        cmocka_unit_test(integrator_of_a_real_op_amp),
+        cmocka_unit_test(preferred_values),
+        cmocka_unit_test(published_series),
         cmocka_unit_test(show_names_every_part),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);

@@ -23,8 +23,9 @@
                 "  - cell: {kind: rc-highpass, R1: 10k, C1: {value: 100n, tolerance: 10 %}}\n"
 #define EXACT "stage: a\nrate: 48 kHz\nanalog:\n  cell: {kind: rc-lowpass, R1: 10k, C1: 10n}\n"
 /* Q = 1 / (3 - K): with K 2.9 and a tolerance of 10 % some draws have no positive Q */
-#define NEARLY_UNSTABLE "stage: a\nrate: 48 kHz\nanalog:\n  cell: {kind: sallen-key-lowpass, R1: 10k, R2: 10k, " \
-                        "C1: 10n, C2: 10n, R3: 10k, R4: {value: 19k, tolerance: 10 %}}\n"
+#define NEARLY_UNSTABLE                                                                            \
+    "stage: a\nrate: 48 kHz\nanalog:\n  cell: {kind: sallen-key-lowpass, R1: 10k, R2: 10k, "       \
+    "C1: 10n, C2: 10n, R3: 10k, R4: {value: 19k, tolerance: 10 %}}\n"
 
 typedef struct made { pw_stage stage; pw_roots analog; pw_messages messages; } made;
 
@@ -50,7 +51,8 @@ static pw_spread *compute(made *m, int threads, int shard, int shards)
 {
     pw_spread_options options = {threads, shard, shards, true};
     pw_spread *spread = NULL;
-    assert_int_equal(pw_spread_compute(&m->stage, &m->analog, &options, &spread, &m->messages), PW_OK);
+    assert_int_equal(pw_spread_compute(&m->stage, &m->analog, &options, &spread, &m->messages),
+                     PW_OK);
     return spread;
 }
 
@@ -80,7 +82,7 @@ static void corners_of_an_rc_lowpass(void **state)
         assert_true(fabs(r->deg.corner_low - rc_deg(r->hz, slow)) < 1e-8);
         assert_true(fabs(r->deg.corner_high - rc_deg(r->hz, fast)) < 1e-8);
         double ends[] = {rc_delay(r->hz, slow), rc_delay(r->hz, fast)};
-        if (fabs(log(r->hz * 2 * M_PI * 1e-4)) > 0.1) {      /* delay is not monotonic at the corner */
+        if (fabs(log(r->hz * 2 * M_PI * 1e-4)) > 0.1) { /* delay is not monotonic at the corner */
             assert_true(fabs(r->delay_s.corner_low - fmin(ends[0], ends[1])) < 1e-12);
             assert_true(fabs(r->delay_s.corner_high - fmax(ends[0], ends[1])) < 1e-12);
         }
@@ -88,7 +90,8 @@ static void corners_of_an_rc_lowpass(void **state)
         assert_true(r->db.high - r->db.low > 0.93 * (r->db.corner_high - r->db.corner_low));
         assert_true(r->db.low < r->db.nominal && r->db.nominal < r->db.high);
     }
-    double worst = fmax(rc_db(19200, fast) - rc_db(19200, 1e-4), rc_db(19200, 1e-4) - rc_db(19200, slow));
+    double worst =
+        fmax(rc_db(19200, fast) - rc_db(19200, 1e-4), rc_db(19200, 1e-4) - rc_db(19200, slow));
     assert_true(fabs(s->worst_db - worst) < 1e-9 && s->worst_db_hz == 19200);
     assert_true(fabs(pw_spread_share_db(s, 0.05) - 0.05 / worst) < 1e-9);
     pw_spread_free(s);
@@ -104,7 +107,8 @@ static void normal_draws_go_beyond(void **state)
     pw_spread *s = compute(&m, 2, 0, 0);
     const pw_spread_row *r = &s->row[s->rows - 1];
     /* the largest of 20,000 normal draws lies near 4 sigma: 8 % instead of 6 % */
-    double at_4 = rc_db(r->hz, 1e-4 * 1.08), at_5 = rc_db(r->hz, 1e-4 * 1.10), at_3_5 = rc_db(r->hz, 1e-4 * 1.07);
+    double at_4 = rc_db(r->hz, 1e-4 * 1.08), at_5 = rc_db(r->hz, 1e-4 * 1.10),
+           at_3_5 = rc_db(r->hz, 1e-4 * 1.07);
     assert_true(r->db.low < at_3_5 && r->db.low > at_5);
     assert_true(fabs(r->db.low - at_4) < 0.15);
     assert_true(fabs(r->db.corner_low - rc_db(r->hz, 1e-4 * 1.06)) < 1e-9);
@@ -284,11 +288,16 @@ static void envelope_between_rows(void **state)
 int main(void)
 {
     const struct CMUnitTest tests[] = {
-        cmocka_unit_test(corners_of_an_rc_lowpass), cmocka_unit_test(normal_draws_go_beyond),
-        cmocka_unit_test(cascade_multiplies), cmocka_unit_test(nothing_without_tolerances),
-        cmocka_unit_test(unstable_draws_are_counted), cmocka_unit_test(threads_do_not_matter),
-        cmocka_unit_test(shards_make_the_whole), cmocka_unit_test(shards_of_other_studies_are_refused),
-        cmocka_unit_test(damaged_files_are_refused), cmocka_unit_test(envelope_between_rows),
+        cmocka_unit_test(corners_of_an_rc_lowpass),
+        cmocka_unit_test(normal_draws_go_beyond),
+        cmocka_unit_test(cascade_multiplies),
+        cmocka_unit_test(nothing_without_tolerances),
+        cmocka_unit_test(unstable_draws_are_counted),
+        cmocka_unit_test(threads_do_not_matter),
+        cmocka_unit_test(shards_make_the_whole),
+        cmocka_unit_test(shards_of_other_studies_are_refused),
+        cmocka_unit_test(damaged_files_are_refused),
+        cmocka_unit_test(envelope_between_rows),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
