@@ -35,7 +35,8 @@ static int row_of(const pw_sensitivity *s, const char *part)
         "U1: {op-amp: ideal, plus: b, minus: m, out: out}"))
 
 /* Franco, ch. 3: S(Q; R1) = -1/2 + Q sqrt(R2 C2 / (R1 C1)), S(Q; C1) = -1/2 +
- * Q (sqrt(R1 C2/(R2 C1)) + sqrt(R2 C2/(R1 C1))), S(Q; K) = Q K sqrt(R1 C1 / (R2 C2)); f0: -1/2 each. */
+ * Q (sqrt(R1 C2/(R2 C1)) + sqrt(R2 C2/(R1 C1))), S(Q; K) = Q K sqrt(R1 C1 / (R2 C2)); f0: -1/2
+ * each. */
 static void sallen_key(void **state)
 {
     (void)state;
