@@ -38,7 +38,7 @@ typedef struct pw_key pw_key;
 typedef void pw_taker(struct pw_reader *reader, const pw_key *key, const pw_tree *node, void *base);
 
 struct pw_key {
-    const char *map;             /* the map it stands in: "" the file itself; "limits", "part", .. */
+    const char *map;             /* the map it stands in: "": the file; "limits", "part" */
     const char *name;
     unsigned forms, item_forms;
     int least, most;             /* items of a list */
@@ -53,7 +53,7 @@ struct pw_key {
                                     stands; 0: no such bond */
     const char *only_with;       /* "a|b": beside key a or b only; "key=x|y": where key says x or y;
                                     null: always. A choice counts only where this holds. */
-    const char *needed_with;     /* the same, where the key must stand; null: never for this reason */
+    const char *needed_with;     /* the same, where the key must stand; null: nowhere */
     const char *fallback;        /* the default, as if it stood in the file; null: none */
     const char *otherwise;       /* the default in words, where a later step fills it in; or null */
     const char *help;            /* one line, no full stop */

@@ -51,7 +51,8 @@ static void add_sample(pw_text *out, size_t start, const char *phrase, const cha
 static void add_count(const pw_key *key, pw_text *out, size_t start)
 {
     add_or(out, start);
-    pw_text_print(out, "a whole number%s from %.0f to ", key->forms & PW_FORM_QUANTITY ? " of bits" : "", key->low);
+    pw_text_print(out, "a whole number%s from %.0f to ",
+                  key->forms & PW_FORM_QUANTITY ? " of bits" : "", key->low);
     if (key->high < 1e15) pw_text_print(out, "%.0f", key->high);
     else pw_text_add(out, "2^64 - 1");
 }

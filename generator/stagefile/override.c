@@ -9,7 +9,8 @@ static pw_tree **slot(pw_arena *arena, pw_tree *parent, const char *name, bool l
                       pw_messages *messages)
 {
     if (parent->kind == PW_TREE_MAP) {
-        if (!pw_tree_find(parent, name)) pw_tree_put(arena, parent, name, at, pw_tree_map(arena, at));
+        if (!pw_tree_find(parent, name))
+            pw_tree_put(arena, parent, name, at, pw_tree_map(arena, at));
         for (int i = 0; i < parent->count; i++)
             if (!strcmp(parent->key[i], name)) {
                 if (last) parent->key_at[i] = at;
@@ -24,12 +25,14 @@ static pw_tree **slot(pw_arena *arena, pw_tree *parent, const char *name, bool l
                  parent->count);
         return NULL;
     }
-    pw_error(messages, at, "what stands before '.%s' is not a map; expected the path of a key", name);
+    pw_error(messages, at, "what stands before '.%s' is not a map; expected the path of a key",
+             name);
     return NULL;
 }
 
 /* One component after the other; the last one's slot, or null where the path does not exist. */
-static pw_tree **walk(pw_arena *arena, pw_tree *root, char *path, pw_where at, pw_messages *messages)
+static pw_tree **walk(pw_arena *arena, pw_tree *root, char *path, pw_where at,
+                      pw_messages *messages)
 {
     pw_tree **here = NULL;
     for (char *name = path, *dot; name; name = dot) {
@@ -47,7 +50,8 @@ static pw_tree **walk(pw_arena *arena, pw_tree *root, char *path, pw_where at, p
     return here;
 }
 
-void pw_override(const char *set, pw_where at, pw_arena *arena, pw_tree *root, pw_messages *messages)
+void pw_override(const char *set, pw_where at, pw_arena *arena, pw_tree *root,
+                 pw_messages *messages)
 {
     const char *equals = strchr(set, '=');
     pw_tree *value;

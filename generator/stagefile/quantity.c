@@ -84,7 +84,9 @@ static void take_decimal(const char *p, const char *end, decimal *out)
     for (p += sign; p < end && *p != 'e' && *p != 'E'; p++) out->digits[n++] = *p;
     out->digits[n] = 0;
     long power = p < end ? strtol(p + 1, NULL, 10) : 0;
-    out->exponent = power > MOST_EXPONENT ? MOST_EXPONENT : power < -MOST_EXPONENT ? -MOST_EXPONENT : (int)power;
+    out->exponent = power > MOST_EXPONENT    ? MOST_EXPONENT
+                    : power < -MOST_EXPONENT ? -MOST_EXPONENT
+                                             : (int)power;
 }
 
 /* The nearest double; false, with a fault, where there is none. */
@@ -95,8 +97,8 @@ static bool convert(const decimal *d, const char *text, double *value, pw_quanti
     *value = strtod(all, NULL);
     bool zero = !d->digits[strcspn(d->digits, "123456789")];
     if (isfinite(*value) && (zero || fabs(*value) >= 1e-300)) return true;
-    snprintf(fault->what, sizeof fault->what, "%s is too %s for any number here", pw_shown(shown, text),
-             isfinite(*value) ? "small" : "large");
+    snprintf(fault->what, sizeof fault->what, "%s is too %s for any number here",
+             pw_shown(shown, text), isfinite(*value) ? "small" : "large");
     return false;
 }
 
@@ -126,7 +128,8 @@ static bool wrong_unit(const char *text, const char *tail, pw_dimension want, co
     char shown[PW_SHOWN_ROOM], shown_tail[PW_SHOWN_ROOM];
     pw_shown(shown, text);
     if (!of) {
-        snprintf(fault->what, sizeof fault->what, "unknown unit %s in %s", pw_shown(shown_tail, tail), shown);
+        snprintf(fault->what, sizeof fault->what, "unknown unit %s in %s",
+                 pw_shown(shown_tail, tail), shown);
         name_nearest_unit(tail, want, fault);
     } else
         snprintf(fault->what, sizeof fault->what, "%s is %s", shown,
@@ -157,15 +160,18 @@ static const pw_prefix *take_code(const char *text, decimal *out, const char **t
     return NULL;
 }
 
-static bool wrong_code(const char *text, const pw_prefix *point, pw_dimension want, pw_quantity_fault *fault)
+static bool wrong_code(const char *text, const pw_prefix *point, pw_dimension want,
+                       pw_quantity_fault *fault)
 {
     char shown[PW_SHOWN_ROOM];
     pw_shown(shown, text);
     if (!pw_dimension_has_codes(want))
-        snprintf(fault->what, sizeof fault->what, "%s is a part code, which stands for a part value only", shown);
+        snprintf(fault->what, sizeof fault->what,
+                 "%s is a part code, which stands for a part value only", shown);
     else
-        snprintf(fault->what, sizeof fault->what, "%s is not the code of %s ('%s' cannot stand for its point)",
-                 shown, pw_dimension_phrase(want), point->name);
+        snprintf(fault->what, sizeof fault->what,
+                 "%s is not the code of %s ('%s' cannot stand for its point)", shown,
+                 pw_dimension_phrase(want), point->name);
     return false;
 }
 
@@ -179,7 +185,8 @@ static bool not_a_number(const char *text, pw_quantity_fault *fault)
     bool finite = true;
     for (size_t i = 0; i < sizeof infinite / sizeof infinite[0]; i++)
         if (!strcasecmp(p, infinite[i])) finite = false;
-    snprintf(fault->what, sizeof fault->what, "%s is not a %snumber", pw_shown(shown, text), finite ? "" : "finite ");
+    snprintf(fault->what, sizeof fault->what, "%s is not a %snumber", pw_shown(shown, text),
+             finite ? "" : "finite ");
     return false;
 }
 
@@ -204,14 +211,16 @@ bool pw_quantity_read(const char *text, pw_dimension want, double *value, pw_qua
     memcpy(trimmed, text, n);
     trimmed[n] = 0;
     const pw_prefix *point = take_code(trimmed, &d, &tail);
-    if (point && !pw_dimension_takes_code(want, point)) return wrong_code(trimmed, point, want, fault);
+    if (point && !pw_dimension_takes_code(want, point))
+        return wrong_code(trimmed, point, want, fault);
     if (!point) {
         const char *end = pw_decimal_end(trimmed);
         if (end == trimmed) return not_a_number(trimmed, fault);
         take_decimal(trimmed, end, &d);
         tail = pw_skip_blanks(end);
     }
-    if (*tail == ',' || (isdigit((unsigned char)*tail)) || *tail == '.') return not_a_number(trimmed, fault);
+    if (*tail == ',' || (isdigit((unsigned char)*tail)) || *tail == '.')
+        return not_a_number(trimmed, fault);
     int exponent;
     const pw_unit *of = pw_unit_find(tail, &exponent);
     double times = of ? pw_unit_factor(want, of->kind) : 0;
@@ -221,6 +230,7 @@ bool pw_quantity_read(const char *text, pw_dimension want, double *value, pw_qua
     d.exponent += exponent + of->exponent;
     if (!convert(&d, trimmed, value, fault)) return false;
     if (finish(of->times > 0 ? times * of->times : times, want, of->kind, value)) return true;
-    snprintf(fault->what, sizeof fault->what, "%s is too large for any number here", pw_shown(shown, trimmed));
+    snprintf(fault->what, sizeof fault->what, "%s is too large for any number here",
+             pw_shown(shown, trimmed));
     return false;
 }

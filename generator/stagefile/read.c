@@ -17,13 +17,13 @@ static pw_tree *read_tree(const pw_text *yaml, const char *const *sets, int n_se
                           pw_messages *messages)
 {
     pw_tree *root;
-    pw_status status = pw_tree_parse(pw_text_string(yaml), yaml->size, (pw_where){0}, arena, &root, messages);
-    if (!root && !status)
-        pw_error(messages, (pw_where){1, 1}, "the file is empty; expected the keys of a stage, such as "
-                 "stage: keel_strain");
-    if (root && root->kind != PW_TREE_MAP) {
-        pw_error(messages, root->at, "the file is %s; expected the keys of a stage, such as stage: keel_strain",
-                 pw_tree_phrase(root));
+    pw_status status = pw_tree_parse(pw_text_string(yaml), yaml->size, (pw_where){0}, arena, &root,
+                                     messages);
+    if (root ? root->kind != PW_TREE_MAP : !status) {
+        bool empty = !root || pw_tree_is_empty(root);
+        pw_error(messages, root ? root->at : (pw_where){1, 1},
+                 "the file is %s; expected the keys of a stage, such as stage: keel_strain",
+                 empty ? "empty" : pw_tree_phrase(root));
         return NULL;
     }
     for (int i = 0; root && i < n_sets; i++)
@@ -44,7 +44,8 @@ pw_status pw_stage_read(const pw_text *yaml, const char *const *sets, int n_sets
     pw_tree *root = read_tree(yaml, sets, n_sets, &out->arena, messages);
     if (root) {
         pw_reader reader = {.stage = out, .arena = &out->arena, .messages = messages};
-        reader.taken = pw_arena_take(&out->arena, (size_t)(pw_key_count + 1) * sizeof *reader.taken);
+        reader.taken = pw_arena_take(&out->arena,
+                                     (size_t)(pw_key_count + 1) * sizeof *reader.taken);
         out->taken = reader.taken;
         pw_take_map(&reader, "", root, out);
         pw_stage_check(&reader);

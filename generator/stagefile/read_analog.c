@@ -41,7 +41,8 @@ void pw_take_coefficients(pw_reader *reader, const pw_key *key, const pw_tree *n
     if (!good) return;
     if (zero) pw_take_refuse(reader, key, node, "every coefficient is 0");
     else if (list[0] == 0)
-        pw_take_refuse(reader, &item, node->item[0], "the coefficient of the highest power is 0 (leave it out)");
+        pw_take_refuse(reader, &item, node->item[0],
+                       "the coefficient of the highest power is 0 (leave it out)");
     *(numerator ? &spec->numerator : &spec->denominator) = list;
     *(numerator ? &spec->numerators : &spec->denominators) = node->count;
 }
@@ -51,20 +52,26 @@ void pw_take_coefficients(pw_reader *reader, const pw_key *key, const pw_tree *n
 static void check_bessel(pw_reader *reader, const pw_family *family)
 {
     if (family->corner_at_db.given && family->normalise != PW_NORMALISE_MAGNITUDE)
-        pw_error(reader->messages, family->corner_at_db.at, "family.corner-at has no meaning with normalise: "
-                 "%s; it goes with normalise: magnitude", pw_normalise_words[family->normalise].word);
+        pw_error(reader->messages, family->corner_at_db.at,
+                 "family.corner-at has no meaning with normalise: "
+                 "%s; it goes with normalise: magnitude",
+                 pw_normalise_words[family->normalise].word);
 }
 
 static void check_family(pw_reader *reader, const pw_family *family)
 {
     if (family->approximation == PW_BESSEL) check_bessel(reader, family);
     if (family->approximation == PW_LINKWITZ_RILEY && family->order % 2)
-        pw_error(reader->messages, family->order_at, "family.order: %d is odd; expected an even order "
-                 "(linkwitz-riley is two butterworth filters in a row)", family->order);
+        pw_error(reader->messages, family->order_at,
+                 "family.order: %d is odd; expected an even order "
+                 "(linkwitz-riley is two butterworth filters in a row)",
+                 family->order);
     if (family->approximation == PW_ELLIPTIC && family->ripple_db.given && family->stopband_db.given
         && family->stopband_db.value <= family->ripple_db.value)
-        pw_error(reader->messages, family->stopband_db.at, "family.stopband: %g dB is not above the ripple, "
-                 "%g dB; expected decibels such as 60 dB", family->stopband_db.value, family->ripple_db.value);
+        pw_error(reader->messages, family->stopband_db.at,
+                 "family.stopband: %g dB is not above the ripple, "
+                 "%g dB; expected decibels such as 60 dB",
+                 family->stopband_db.value, family->ripple_db.value);
 }
 
 void pw_take_family(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)

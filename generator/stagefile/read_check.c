@@ -12,8 +12,10 @@ static void check_below_half(pw_reader *reader, const char *key, double hz, pw_w
     char shown[PW_NUMBER_ROOM], half[PW_NUMBER_ROOM], rate[PW_NUMBER_ROOM];
     double given = reader->stage->rate_hz;
     if (!(given > 0) || hz < given / 2) return;
-    pw_error(reader->messages, at, "%s: %s is not below half the rate, %s; expected less, or a rate above %s",
-             key, pw_si(shown, hz, "Hz", 6), pw_si(half, given / 2, "Hz", 6), pw_si(rate, 2 * hz, "Hz", 6));
+    pw_error(reader->messages, at,
+             "%s: %s is not below half the rate, %s; expected less, or a rate above %s", key,
+             pw_si(shown, hz, "Hz", 6), pw_si(half, given / 2, "Hz", 6),
+             pw_si(rate, 2 * hz, "Hz", 6));
 }
 
 static void check_frequencies(pw_reader *reader)
@@ -34,8 +36,10 @@ static void check_transform(pw_reader *reader)
 {
     const pw_transform *t = &reader->stage->transform;
     if (t->prewarp != PW_PREWARP_DEFAULT && t->method != PW_BILINEAR && t->method != PW_BEST)
-        pw_warning(reader->messages, t->prewarp_at, "transform.prewarp has no meaning with %s; it goes with "
-                   "method: bilinear or best", pw_method_word(t->method));
+        pw_warning(reader->messages, t->prewarp_at,
+                   "transform.prewarp has no meaning with %s; it goes with "
+                   "method: bilinear or best",
+                   pw_method_word(t->method));
 }
 
 /* ---- formats ---- */
@@ -46,7 +50,8 @@ static void check_structure(pw_reader *reader)
     bool floats = a->sample == PW_FLOAT32 || a->sample == PW_FLOAT64;
     bool fixed_only = a->structure == PW_DIRECT_1_SHAPED || a->structure == PW_COUPLED;
     if (floats ? !fixed_only : a->structure != PW_TRANSPOSED_2) return;
-    pw_error(reader->messages, a->structure_at, "arithmetic.structure: %s does not go with %s; expected %s",
+    pw_error(reader->messages, a->structure_at,
+             "arithmetic.structure: %s does not go with %s; expected %s",
              pw_structure_word(a->structure), pw_sample_word(a->sample),
              floats ? "auto, direct-1 or transposed-2, or sample: q15 or q31"
                     : "auto, direct-1, direct-1-shaped or coupled, or sample: float32 or float64");
@@ -57,8 +62,10 @@ static void check_coefficient(pw_reader *reader)
     pw_arithmetic *a = &reader->stage->arithmetic;
     bool floats = a->sample == PW_FLOAT32 || a->sample == PW_FLOAT64;
     if (floats && a->coefficient_bits)
-        pw_warning(reader->messages, a->coefficient_at, "arithmetic.coefficient has no meaning with %s; it "
-                   "goes with sample: q15 or q31", pw_sample_word(a->sample));
+        pw_warning(reader->messages, a->coefficient_at,
+                   "arithmetic.coefficient has no meaning with %s; it "
+                   "goes with sample: q15 or q31",
+                   pw_sample_word(a->sample));
     if (floats) a->coefficient_bits = 0;
     else if (!a->coefficient_bits) a->coefficient_bits = a->sample == PW_Q15 ? 16 : 32;
 }
@@ -87,7 +94,8 @@ void pw_stage_check(pw_reader *reader)
     check_structure(reader);
     check_coefficient(reader);
     if (stage->limits.cycles.given && !stage->target_given)
-        pw_error(reader->messages, stage->limits.cycles.at, "limits.cycles without a target; expected "
+        pw_error(reader->messages, stage->limits.cycles.at,
+                 "limits.cycles without a target; expected "
                  "a target such as target: cortex-m4f");
     fill_band(stage);
     fill_signals(&stage->vectors);

@@ -23,7 +23,8 @@ static const char *read_name(pw_reader *reader, const pw_key *key, const pw_tree
     }
     if (is_name(node->text)) return node->text;
     char what[96], shown[PW_SHOWN_ROOM];
-    snprintf(what, sizeof what, "%s is no name (one word, up to 63 bytes)", pw_shown(shown, node->text));
+    snprintf(what, sizeof what, "%s is no name (one word, up to 63 bytes)",
+             pw_shown(shown, node->text));
     pw_take_refuse(reader, key, node, what);
     return NULL;
 }
@@ -63,8 +64,9 @@ void pw_take_output(pw_reader *reader, const pw_key *key, const pw_tree *node, v
 static pw_part_kind kind_of(const char *word)
 {
     static const char *const kinds[] = {
-        [PW_RESISTOR] = "resistor", [PW_CAPACITOR] = "capacitor", [PW_INDUCTOR] = "inductor",
-        [PW_OP_AMP] = "op-amp", [PW_AMPLIFIER] = "amplifier", [PW_TRANSCONDUCTOR] = "transconductor",
+        [PW_RESISTOR] = "resistor",   [PW_CAPACITOR] = "capacitor",
+        [PW_INDUCTOR] = "inductor",   [PW_OP_AMP] = "op-amp",
+        [PW_AMPLIFIER] = "amplifier", [PW_TRANSCONDUCTOR] = "transconductor",
         [PW_COUPLING] = "coupling",
     };
     int kind = 0;
@@ -105,13 +107,17 @@ void pw_take_parts(pw_reader *reader, const pw_key *key, const pw_tree *node, vo
         part->name = node->key[i];
         part->at = node->key_at[i];
         if (!is_name(part->name))
-            pw_error(reader->messages, part->at, "a part's name is one word of up to 63 bytes; expected one "
+            pw_error(reader->messages, part->at,
+                     "a part's name is one word of up to 63 bytes; expected one "
                      "such as R1");
-        else if (node->item[i]->kind == PW_TREE_MAP) pw_take_map(reader, key->sub, node->item[i], part);
+        else if (node->item[i]->kind == PW_TREE_MAP)
+            pw_take_map(reader, key->sub, node->item[i], part);
         else
-            pw_error(reader->messages, node->item[i]->at, "the part %.40s %s %s; expected a map such as "
-                     "{resistor: 22k, between: [in, out]}", part->name,
-                     pw_tree_is_empty(node->item[i]) ? "has" : "is", pw_tree_phrase(node->item[i]));
+            pw_error(reader->messages, node->item[i]->at,
+                     "the part %.40s %s %s; expected a map such as "
+                     "{resistor: 22k, between: [in, out]}",
+                     part->name, pw_tree_is_empty(node->item[i]) ? "has" : "is",
+                     pw_tree_phrase(node->item[i]));
     }
 }
 
@@ -169,7 +175,8 @@ static bool is_mistyped_kind(pw_reader *reader, const pw_tree *cell, int index)
     return true;
 }
 
-static void read_cell_value(pw_reader *reader, const char *name, const pw_tree *node, pw_cell_value *out)
+static void read_cell_value(pw_reader *reader, const char *name, const pw_tree *node,
+                            pw_cell_value *out)
 {
     pw_cell_form form = {0};
     pw_key key = value_key(name);

@@ -68,7 +68,8 @@ void pw_take_coefficient(pw_reader *reader, const pw_key *key, const pw_tree *no
     if (bits == 16 || bits == 32) arithmetic->coefficient_bits = (int)bits;
     else {
         char path[PW_KEY_ROOM], shown[PW_SHOWN_ROOM];
-        pw_error(reader->messages, node->at, "%s: %s is no word length here; expected 16 bits or 32 bits",
+        pw_error(reader->messages, node->at,
+                 "%s: %s is no word length here; expected 16 bits or 32 bits",
                  pw_key_path(path, key), pw_shown(shown, node->text));
     }
 }
@@ -96,7 +97,8 @@ void pw_take_signals(pw_reader *reader, const pw_key *key, const pw_tree *node, 
     for (int i = 0; i < node->count; i++) {
         int index = pw_take_index(reader, &item, node->item[i]);
         if (index >= 0 && want[index])
-            pw_error(reader->messages, node->item[i]->at, "vectors.signals: '%s' stands twice; expected it once",
+            pw_error(reader->messages, node->item[i]->at,
+                     "vectors.signals: '%s' stands twice; expected it once",
                      key->words[index].word);
         if (index >= 0) want[index] = true;
     }

@@ -48,7 +48,8 @@ static bool strip_j(const char *text, char *out, size_t room, const char **commo
 }
 
 /* Both parts of a pair in rad/s. */
-static bool read_pair(pw_reader *reader, const pw_key *key, const pw_tree *node, double *real, double *imag)
+static bool read_pair(pw_reader *reader, const pw_key *key, const pw_tree *node, double *real,
+                      double *imag)
 {
     char left[128], right[128], number[160];
     size_t length = 0;
@@ -123,13 +124,15 @@ static bool read_form(pw_reader *reader, const pw_tree *node, pw_root *root)
     int before = reader->messages->errors;
     pw_take_map(reader, "root", node, &form);
     if (form.right && reader->poles)
-        pw_error(reader->messages, form.right_at, "root.right: a pole in the right half plane makes an "
+        pw_error(reader->messages, form.right_at,
+                 "root.right: a pole in the right half plane makes an "
                  "unstable stage; expected it for zeros only");
     if (reader->messages->errors > before) return false;
     if (form.real.given) {
         *root = form.imag.given ? pair_of(form.real.value, form.imag.value, node->at)
                                 : (pw_root){.s = form.real.value, .at = node->at};
-    } else if (form.infinite) *root = (pw_root){.s = CMPLX(0, form.frequency.value), .at = node->at};
+    } else if (form.infinite)
+        *root = (pw_root){.s = CMPLX(0, form.frequency.value), .at = node->at};
     else {
         double q = form.q.given ? form.q.value : 1 / (2 * form.damping.value);
         *root = resonance(form.frequency.value, q, node->at);

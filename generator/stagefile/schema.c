@@ -58,8 +58,10 @@ static json_t *pattern(const char *text)
 
 static void add_bounds(json_t *number, const pw_key *key)
 {
-    if (key->range == PW_RANGE_POSITIVE) json_object_set_new(number, "exclusiveMinimum", json_integer(0));
-    if (key->range == PW_RANGE_NOT_NEGATIVE) json_object_set_new(number, "minimum", json_integer(0));
+    if (key->range == PW_RANGE_POSITIVE)
+        json_object_set_new(number, "exclusiveMinimum", json_integer(0));
+    if (key->range == PW_RANGE_NOT_NEGATIVE)
+        json_object_set_new(number, "minimum", json_integer(0));
     if (key->range == PW_RANGE_NOT_ZERO)
         json_object_set_new(number, "not", json_pack("{s:i}", "const", 0));
     if (key->high > 0) json_object_set_new(number, "maximum", json_real(key->high));
@@ -69,7 +71,8 @@ static void add_quantity(json_t *any, const pw_key *key)
 {
     pw_text text = {0};
     bool decibels = key->dimension == PW_DIM_RATIO;   /* 0 dB is 1, and so on */
-    bool signless = !decibels && (key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_NEGATIVE);
+    bool signless = !decibels
+                    && (key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_NEGATIVE);
     bool nonzero = key->range == PW_RANGE_POSITIVE || key->range == PW_RANGE_NOT_ZERO;
     json_t *number = json_pack("{s:s}", "type", "number");
     add_bounds(number, key);
@@ -86,7 +89,8 @@ static void add_count(json_t *any, const pw_key *key)
                                                             : json_real(key->high));
     json_array_append_new(any, number);
     pw_text text = {0};
-    pw_text_print(&text, "^" BLANKS "\\+?%s[0-9]*" BLANKS "%s$", key->low >= 1 ? "0*[1-9]" : "[0-9]",
+    pw_text_print(&text, "^" BLANKS "\\+?%s[0-9]*" BLANKS "%s$",
+                  key->low >= 1 ? "0*[1-9]" : "[0-9]",
                   key->forms & PW_FORM_QUANTITY ? "(?:bits?)?" : "");
     json_array_append_new(any, pattern(pw_text_string(&text)));
     pw_text_free(&text);
@@ -120,8 +124,10 @@ static void add_text(json_t *any, const pw_key *key)
         json_array_append_new(any, json_pack("{s:s, s:s, s:{s:o}}", "type", "string", "pattern",
                                              pw_stage_name_pattern, "not", "enum", list));
     } else if (!strcmp(key->map, "") && !strcmp(key->name, "about"))
-        json_array_append_new(any, json_pack("{s:[s,s,s,s]}", "type", "string", "number", "boolean", "null"));
-    else json_array_append_new(any, json_pack("{s:[s,s,s]}", "type", "string", "number", "boolean"));
+        json_array_append_new(
+            any, json_pack("{s:[s,s,s,s]}", "type", "string", "number", "boolean", "null"));
+    else
+        json_array_append_new(any, json_pack("{s:[s,s,s]}", "type", "string", "number", "boolean"));
 }
 
 static void add_pair_text(json_t *any)
@@ -153,8 +159,8 @@ static json_t *forms(const pw_key *key, unsigned which)
     if (which & PW_FORM_LIST) add_list(any, key);
     if (which & PW_FORM_MAP) json_array_append_new(any, reference(key->sub));
     if (which & PW_FORM_NAMED)
-        json_array_append_new(any, json_pack("{s:s, s:i, s:o}", "type", "object", "minProperties", 1,
-                                             "additionalProperties", reference(key->sub)));
+        json_array_append_new(any, json_pack("{s:s, s:i, s:o}", "type", "object", "minProperties",
+                                             1, "additionalProperties", reference(key->sub)));
     if (json_array_size(any) != 1) return json_pack("{s:o}", "anyOf", any);
     json_t *one = json_incref(json_array_get(any, 0));
     json_decref(any);
@@ -168,14 +174,16 @@ static json_t *property(const pw_key *key)
     json_t *made = json_pack("{s:s}", "description", key->help), *form = forms(key, key->forms);
     json_object_update(made, form);
     json_decref(form);
-    if (key->fallback && *key->fallback) json_object_set_new(made, "default", json_of_yaml(key->fallback));
+    if (key->fallback && *key->fallback)
+        json_object_set_new(made, "default", json_of_yaml(key->fallback));
     if (key->otherwise) {
         pw_text text = {0};
         pw_text_print(&text, "%s (default: %s)", key->help, key->otherwise);
         json_object_set_new(made, "description", json_string(pw_text_string(&text)));
         pw_text_free(&text);
     }
-    if (key->example) json_object_set_new(made, "examples", json_pack("[o]", json_of_yaml(key->example)));
+    if (key->example)
+        json_object_set_new(made, "examples", json_pack("[o]", json_of_yaml(key->example)));
     return made;
 }
 
@@ -193,7 +201,7 @@ static json_t *split(const char *list)
     return made;
 }
 
-/* A schema that holds where the condition does; loose: also where it asks for a key that is not there. */
+/* A schema that holds where the condition does; loose: also where the key it asks for is missing. */
 static json_t *condition(const char *text, bool loose)
 {
     const char *equals = strchr(text, '=');
@@ -234,11 +242,13 @@ static json_t *bonds(const char *map)
             json_array_append_new(all, json_pack("{s:{s:o}}", "dependentSchemas", key->name,
                                                  condition(key->only_with, true)));
         if (key->needed_with)
-            json_array_append_new(all, json_pack("{s:o, s:{s:[s]}}", "if", condition(key->needed_with, false),
-                                                 "then", "required", key->name));
+            json_array_append_new(all, json_pack("{s:o, s:{s:[s]}}", "if",
+                                                 condition(key->needed_with, false), "then",
+                                                 "required", key->name));
         if (key->choice <= told) continue;
         told = key->choice;
-        json_array_append_new(all, key->only_with ? json_pack("{s:o, s:o}", "if", condition(key->only_with, false),
+        json_array_append_new(all, key->only_with ? json_pack("{s:o, s:o}", "if",
+                                                              condition(key->only_with, false),
                                                               "then", one_of(map, told))
                                                   : one_of(map, told));
     }
@@ -273,7 +283,8 @@ static json_t *map_schema(const pw_key_map *map)
         json_object_set_new(properties, pw_keys[i].name, property(&pw_keys[i]));
         if (pw_keys[i].needed) json_array_append_new(required, json_string(pw_keys[i].name));
     }
-    json_t *made = json_pack("{s:s, s:s, s:o}", "type", "object", "description", map->help, "properties", properties);
+    json_t *made = json_pack("{s:s, s:s, s:o}", "type", "object", "description", map->help,
+                             "properties", properties);
     if (map->free_names) add_free_names(made);
     else json_object_set_new(made, "additionalProperties", json_false());
     if (json_array_size(required)) json_object_set(made, "required", required);
@@ -285,8 +296,9 @@ static json_t *map_schema(const pw_key_map *map)
 
 void pw_schema_write(pw_text *out)
 {
-    json_t *schema = json_pack("{s:s, s:s}", "$schema", "https://json-schema.org/draft/2020-12/schema",
-                               "title", "polewright stage file");
+    json_t *schema = json_pack("{s:s, s:s}", "$schema",
+                               "https://json-schema.org/draft/2020-12/schema", "title",
+                               "polewright stage file");
     json_t *definitions = json_object();
     for (int i = 0; i < pw_key_map_count; i++) {
         json_t *made = map_schema(&pw_key_maps[i]);

@@ -21,7 +21,7 @@ typedef struct pw_given { double value; bool given; pw_where at; } pw_given;
 typedef struct pw_root {
     double complex s;            /* rad/s; imag > 0: stands for itself and its conjugate;
                                     imag == 0 and not double_real: one real root */
-    bool double_real;            /* a {frequency, q} pair with q <= 0.5 is two real roots: s and s2 */
+    bool double_real;            /* a {frequency, q} pair with q <= 0.5 is two real ones: s, s2 */
     double s2;                   /* rad/s, the other one */
     pw_where at;
 } pw_root;
@@ -31,7 +31,7 @@ typedef enum pw_gain_kind { PW_GAIN_FACTOR, PW_GAIN_AT } pw_gain_kind;
 typedef struct pw_gain {
     pw_gain_kind kind;
     double factor;               /* PW_GAIN_FACTOR: K of K prod(s-z)/prod(s-p) */
-    double at_hz, is;            /* PW_GAIN_AT: at 0 Hz H(0) itself; elsewhere |H|, sign that of K */
+    double at_hz, is;            /* PW_GAIN_AT: at 0 Hz H(0) itself; elsewhere |H|, sign of K */
     bool invert;                 /* flips the sign at the end */
     pw_where at;
 } pw_gain;
@@ -41,7 +41,9 @@ typedef enum pw_approximation {
     PW_CRITICALLY_DAMPED, PW_LINKWITZ_RILEY
 } pw_approximation;
 typedef enum pw_shape { PW_LOWPASS, PW_HIGHPASS, PW_BANDPASS, PW_BANDSTOP } pw_shape;
-typedef enum pw_normalise { PW_NORMALISE_MAGNITUDE, PW_NORMALISE_PHASE, PW_NORMALISE_DELAY } pw_normalise;
+typedef enum pw_normalise {
+    PW_NORMALISE_MAGNITUDE, PW_NORMALISE_PHASE, PW_NORMALISE_DELAY
+} pw_normalise;
 
 typedef struct pw_family {
     pw_approximation approximation;
@@ -119,8 +121,12 @@ typedef struct pw_analog_spec {
 typedef enum pw_method {
     PW_BILINEAR, PW_MATCHED_Z, PW_IMPULSE_INVARIANT, PW_STEP_INVARIANT, PW_BEST
 } pw_method;
-typedef enum pw_prewarp { PW_PREWARP_DEFAULT, PW_PREWARP_NONE, PW_PREWARP_AT, PW_PREWARP_EACH_SECTION } pw_prewarp;
-typedef enum pw_infinity { PW_INFINITY_NYQUIST, PW_INFINITY_KEEP_ONE, PW_INFINITY_KEEP } pw_infinity;
+typedef enum pw_prewarp {
+    PW_PREWARP_DEFAULT, PW_PREWARP_NONE, PW_PREWARP_AT, PW_PREWARP_EACH_SECTION
+} pw_prewarp;
+typedef enum pw_infinity {
+    PW_INFINITY_NYQUIST, PW_INFINITY_KEEP_ONE, PW_INFINITY_KEEP
+} pw_infinity;
 
 typedef struct pw_transform {
     pw_method method;
@@ -135,7 +141,9 @@ typedef enum pw_sample { PW_FLOAT32, PW_FLOAT64, PW_Q31, PW_Q15 } pw_sample;
 typedef enum pw_structure {
     PW_STRUCTURE_AUTO, PW_DIRECT_1, PW_DIRECT_1_SHAPED, PW_TRANSPOSED_2, PW_COUPLED
 } pw_structure;
-typedef enum pw_scaling { PW_SCALING_L1, PW_SCALING_LINF, PW_SCALING_L2, PW_SCALING_NONE } pw_scaling;
+typedef enum pw_scaling {
+    PW_SCALING_L1, PW_SCALING_LINF, PW_SCALING_L2, PW_SCALING_NONE
+} pw_scaling;
 
 typedef struct pw_arithmetic {
     pw_sample sample;

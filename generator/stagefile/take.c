@@ -31,7 +31,8 @@ void pw_take_refuse(pw_reader *reader, const pw_key *key, const pw_tree *node, c
                  pw_text_string(&expected));
     else
         pw_error(reader->messages, node->at, "%s %s %s; expected %s", pw_key_path(path, key),
-                 pw_tree_is_empty(node) ? "has" : "is", pw_tree_phrase(node), pw_text_string(&expected));
+                 pw_tree_is_empty(node) ? "has" : "is", pw_tree_phrase(node),
+                 pw_text_string(&expected));
     pw_text_free(&expected);
 }
 
@@ -72,8 +73,8 @@ bool pw_take_value(pw_reader *reader, const pw_key *key, const pw_tree *node, do
     if (!is_scalar(reader, key, node)) return false;
     if (!pw_quantity_read(node->text, dimension_of(reader, key), value, &fault)) {
         if (*fault.near)
-            pw_error(reader->messages, node->at, "%s: %s; did you mean '%s'?", pw_key_path(path, key),
-                     fault.what, fault.near);
+            pw_error(reader->messages, node->at, "%s: %s; did you mean '%s'?",
+                     pw_key_path(path, key), fault.what, fault.near);
         else pw_take_refuse(reader, key, node, fault.what);
         return false;
     }
@@ -108,7 +109,8 @@ bool pw_take_is_list(pw_reader *reader, const pw_key *key, const pw_tree *node)
     if (node->count >= key->least && node->count <= key->most) return true;
     if (!node->count) snprintf(what, sizeof what, "the list is empty");
     else if (key->least == key->most)
-        snprintf(what, sizeof what, "%d item%s, not %d", node->count, node->count == 1 ? "" : "s", key->least);
+        snprintf(what, sizeof what, "%d item%s, not %d", node->count, node->count == 1 ? "" : "s",
+                 key->least);
     else snprintf(what, sizeof what, "%d items, more than %d", node->count, key->most);
     pw_take_refuse(reader, key, node, what);
     return false;

@@ -51,7 +51,8 @@ pw_taker pw_take_root_list, pw_take_q, pw_take_gain;
 pw_taker pw_take_circuit, pw_take_cell, pw_take_node, pw_take_nodes, pw_take_current_node,
          pw_take_output, pw_take_parts, pw_take_part_value, pw_take_op_amp, pw_take_kind;
 /* read_rest.c */
-pw_taker pw_take_stage_name, pw_take_target, pw_take_prewarp, pw_take_coefficient, pw_take_band, pw_take_forbidden, pw_take_signals;
+pw_taker pw_take_stage_name, pw_take_target, pw_take_prewarp, pw_take_coefficient, pw_take_band,
+    pw_take_forbidden, pw_take_signals;
 /* read_signal.c */
 pw_taker pw_take_port, pw_take_rails;
 void pw_port_default(pw_port *port);   /* full scale 1 V, where the file says nothing */

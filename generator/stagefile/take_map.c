@@ -55,7 +55,8 @@ static truth holds(const char *condition, const char *map, const pw_tree *node)
     char name[48];
     snprintf(name, sizeof name, "%.*s", (int)(equals - condition), condition);
     const pw_tree *value = pw_tree_find(node, name);
-    if (!value || value->kind != PW_TREE_SCALAR || !is_known_word(pw_key_find(map, name), value->text))
+    if (!value || value->kind != PW_TREE_SCALAR
+        || !is_known_word(pw_key_find(map, name), value->text))
         return UNKNOWN;
     return is_listed(equals + 1, value->text) ? YES : NO;
 }
@@ -107,7 +108,8 @@ static void tell_unknown(pw_reader *reader, const char *map, const pw_tree *node
     char shown[PW_SHOWN_ROOM];
     int n = 0;
     for (int i = 0; i < pw_key_count && n < MOST_KEYS; i++)
-        if (!strcmp(pw_keys[i].map, map) && !pw_tree_find(node, pw_keys[i].name)) known[n++] = pw_keys[i].name;
+        if (!strcmp(pw_keys[i].map, map) && !pw_tree_find(node, pw_keys[i].name))
+            known[n++] = pw_keys[i].name;
     const char *near = pw_nearest(node->key[index], known, n);
     pw_text hint = {0};
     if (near) pw_text_print(&hint, "did you mean '%s'?", near);
@@ -181,8 +183,9 @@ static void check_choice(pw_reader *reader, const char *map, const pw_tree *node
         const pw_key *key = pw_key_find(map, node->key[i]);
         if (!key || key->choice != choice) continue;
         if (found)
-            pw_error(reader->messages, node->key_at[i], "%s: %s beside %s; expected exactly one of %s",
-                     map_phrase(map), key->name, found->name, pw_text_string(&names));
+            pw_error(reader->messages, node->key_at[i],
+                     "%s: %s beside %s; expected exactly one of %s", map_phrase(map), key->name,
+                     found->name, pw_text_string(&names));
         found = key;
     }
     if (!found && open && !mistyped)
@@ -207,7 +210,8 @@ static void state_default(pw_reader *reader, const pw_key *key)
 
 static void take_default(pw_reader *reader, const pw_key *key, const pw_tree *node, void *base)
 {
-    if (!node || !key->only_with || holds(key->only_with, key->map, node) == YES) state_default(reader, key);
+    if (!node || !key->only_with || holds(key->only_with, key->map, node) == YES)
+        state_default(reader, key);
     if (key->take == pw_take_submap && !key->needed) pw_take_submap(reader, key, NULL, base);
     if (!key->fallback) return;
     const pw_where nowhere = {0, 0};
@@ -219,11 +223,14 @@ static void take_key(pw_reader *reader, const pw_key *key, const pw_tree *node, 
     const pw_tree *value = node ? pw_tree_find(node, key->name) : NULL;
     if (!value) {
         take_default(reader, key, node, base);
-        if (node && (key->needed || (key->needed_with && holds(key->needed_with, key->map, node) == YES)))
+        if (node
+            && (key->needed
+                || (key->needed_with && holds(key->needed_with, key->map, node) == YES)))
             tell_missing(reader, key, node);
         return;
     }
-    if (key->only_with && holds(key->only_with, key->map, node) == NO) tell_misplaced(reader, key, node);
+    if (key->only_with && holds(key->only_with, key->map, node) == NO)
+        tell_misplaced(reader, key, node);
     else if (key->take) key->take(reader, key, value, base);
 }
 

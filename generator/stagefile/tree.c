@@ -63,7 +63,8 @@ static void append(pw_arena *arena, pw_tree *node, const char *key, pw_where key
         node->item = grown(arena, node->item, node->count, node->room, sizeof *node->item);
         if (node->kind == PW_TREE_MAP) {
             node->key = grown(arena, node->key, node->count, node->room, sizeof *node->key);
-            node->key_at = grown(arena, node->key_at, node->count, node->room, sizeof *node->key_at);
+            node->key_at = grown(arena, node->key_at, node->count, node->room,
+                                 sizeof *node->key_at);
         }
     }
     if (node->kind == PW_TREE_MAP) {
@@ -157,7 +158,8 @@ static pw_tree *alias(builder *b, const char *name, pw_where at, int level)
                  "that ends before it", name);
         return NULL;
     }
-    pw_error(b->messages, at, "the alias *%s has no anchor; expected &%s at an earlier value", name, name);
+    pw_error(b->messages, at, "the alias *%s has no anchor; expected &%s at an earlier value", name,
+             name);
     return NULL;
 }
 
@@ -175,7 +177,8 @@ static void refuse_tag(builder *b, const yaml_char_t *tag, pw_where at)
     static const char standard[] = "tag:yaml.org,2002:";
     if (!tag || !strcmp((const char *)tag, "!")) return;
     if (strncmp((const char *)tag, standard, sizeof standard - 1))
-        pw_error(b->messages, at, "the tag %.40s has no meaning here; take it out", (const char *)tag);
+        pw_error(b->messages, at, "the tag %.40s has no meaning here; take it out",
+                 (const char *)tag);
 }
 
 static pw_tree *node(builder *b, yaml_event_t *event, int level);
@@ -224,15 +227,18 @@ static void add_pair(builder *b, pw_tree *map, const pw_tree *key, pw_tree *valu
     if (key->kind != PW_TREE_SCALAR)
         pw_error(b->messages, key->at, "%s as a key; expected a name", pw_tree_phrase(key));
     else if (!strcmp(key->text, "<<") && !key->quoted)
-        pw_error(b->messages, key->at, "merge keys (<<) are not read; expected the keys themselves, "
+        pw_error(b->messages, key->at,
+                 "merge keys (<<) are not read; expected the keys themselves, "
                  "or an alias for a whole value");
     else if ((old = find(map, key->text)) >= 0) {
         if (map->key_at[old].line > 0)
-            pw_error(b->messages, key->at, "the key '%.40s' stands twice in one map, first on line %d; "
-                     "expected it once", key->text, map->key_at[old].line);
+            pw_error(b->messages, key->at,
+                     "the key '%.40s' stands twice in one map, first on line %d; "
+                     "expected it once",
+                     key->text, map->key_at[old].line);
         else
-            pw_error(b->messages, key->at, "the key '%.40s' stands twice in one map; expected it once",
-                     key->text);
+            pw_error(b->messages, key->at,
+                     "the key '%.40s' stands twice in one map; expected it once", key->text);
     } else append(b->arena, map, key->text, key->at, value);
 }
 
@@ -259,12 +265,15 @@ static pw_tree *collection(builder *b, pw_tree_kind kind, pw_where at, int level
 static pw_tree *node(builder *b, yaml_event_t *event, int level)
 {
     pw_where at = place(b, event->start_mark);
-    bool is_scalar = event->type == YAML_SCALAR_EVENT, is_list = event->type == YAML_SEQUENCE_START_EVENT;
+    bool is_scalar = event->type == YAML_SCALAR_EVENT,
+         is_list = event->type == YAML_SEQUENCE_START_EVENT;
     pw_tree *made = NULL;
-    if (event->type == YAML_ALIAS_EVENT) made = alias(b, (const char *)event->data.alias.anchor, at, level);
+    if (event->type == YAML_ALIAS_EVENT)
+        made = alias(b, (const char *)event->data.alias.anchor, at, level);
     else if (count_node(b, at, level, !is_scalar)) {
         const yaml_char_t *tag = is_scalar ? event->data.scalar.tag
-                               : is_list ? event->data.sequence_start.tag : event->data.mapping_start.tag;
+                                 : is_list ? event->data.sequence_start.tag
+                                           : event->data.mapping_start.tag;
         anchor *open = open_anchor(b, is_scalar ? event->data.scalar.anchor
                                  : is_list ? event->data.sequence_start.anchor
                                            : event->data.mapping_start.anchor);
@@ -286,7 +295,8 @@ static pw_tree *document(builder *b)
         yaml_event_type_t type = event.type;
         pw_where at = place(b, event.start_mark);
         if (type == YAML_DOCUMENT_START_EVENT && root) {
-            pw_error(b->messages, at, "a second YAML document begins here; expected one stage in a file");
+            pw_error(b->messages, at,
+                     "a second YAML document begins here; expected one stage in a file");
             more = false;
         }
         if (type == YAML_STREAM_START_EVENT || type == YAML_DOCUMENT_START_EVENT

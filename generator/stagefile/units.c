@@ -37,17 +37,19 @@ bool pw_dimension_has_codes(pw_dimension d) { return *dimensions[d].codes; }
 bool pw_dimension_takes_bare_prefix(pw_dimension d) { return dimensions[d].prefixed; }
 
 const pw_unit pw_units[] = {
-    {"Hz", PW_UNIT_HZ, true, 0, 0}, {"rad/s", PW_UNIT_RAD_S, true, 0, 0}, {"s", PW_UNIT_SECOND, true, 0, 0},
-    {"V", PW_UNIT_VOLT, true, 0, 0}, {"A", PW_UNIT_AMPERE, true, 0, 0},
-    {"ohm", PW_UNIT_OHM, true, 0, 0}, {"ohms", PW_UNIT_OHM, true, 0, 0}, {"Ohm", PW_UNIT_OHM, true, 0, 0},
-    {"\u03a9", PW_UNIT_OHM, true, 0, 0}, {"\u2126", PW_UNIT_OHM, true, 0, 0},
-    {"F", PW_UNIT_FARAD, true, 0, 0}, {"H", PW_UNIT_HENRY, true, 0, 0}, {"S", PW_UNIT_SIEMENS, true, 0, 0},
-    {"dB", PW_UNIT_DB, false, 0, 0}, {"%", PW_UNIT_PERCENT, false, 0, -2},
-    {"deg", PW_UNIT_DEGREE, false, 0, 0}, {"\u00b0", PW_UNIT_DEGREE, false, 0, 0},
-    {"bits", PW_UNIT_BIT, false, 0, 0}, {"bit", PW_UNIT_BIT, false, 0, 0},
-    {"bytes", PW_UNIT_BYTE, false, 0, 0}, {"byte", PW_UNIT_BYTE, false, 0, 0}, {"B", PW_UNIT_BYTE, false, 0, 0},
-    {"kB", PW_UNIT_BYTE, false, 0, 3}, {"MB", PW_UNIT_BYTE, false, 0, 6},
-    {"KiB", PW_UNIT_BYTE, false, 1024, 0}, {"MiB", PW_UNIT_BYTE, false, 1048576, 0},
+    {"Hz", PW_UNIT_HZ, true, 0, 0},          {"rad/s", PW_UNIT_RAD_S, true, 0, 0},
+    {"s", PW_UNIT_SECOND, true, 0, 0},       {"V", PW_UNIT_VOLT, true, 0, 0},
+    {"A", PW_UNIT_AMPERE, true, 0, 0},       {"ohm", PW_UNIT_OHM, true, 0, 0},
+    {"ohms", PW_UNIT_OHM, true, 0, 0},       {"Ohm", PW_UNIT_OHM, true, 0, 0},
+    {"\u03a9", PW_UNIT_OHM, true, 0, 0},     {"\u2126", PW_UNIT_OHM, true, 0, 0},
+    {"F", PW_UNIT_FARAD, true, 0, 0},        {"H", PW_UNIT_HENRY, true, 0, 0},
+    {"S", PW_UNIT_SIEMENS, true, 0, 0},      {"dB", PW_UNIT_DB, false, 0, 0},
+    {"%", PW_UNIT_PERCENT, false, 0, -2},    {"deg", PW_UNIT_DEGREE, false, 0, 0},
+    {"\u00b0", PW_UNIT_DEGREE, false, 0, 0}, {"bits", PW_UNIT_BIT, false, 0, 0},
+    {"bit", PW_UNIT_BIT, false, 0, 0},       {"bytes", PW_UNIT_BYTE, false, 0, 0},
+    {"byte", PW_UNIT_BYTE, false, 0, 0},     {"B", PW_UNIT_BYTE, false, 0, 0},
+    {"kB", PW_UNIT_BYTE, false, 0, 3},       {"MB", PW_UNIT_BYTE, false, 0, 6},
+    {"KiB", PW_UNIT_BYTE, false, 1024, 0},   {"MiB", PW_UNIT_BYTE, false, 1048576, 0},
 };
 const int pw_unit_count = (int)(sizeof pw_units / sizeof pw_units[0]);
 
@@ -73,11 +75,20 @@ bool pw_dimension_takes_code(pw_dimension d, const pw_prefix *letter)
 const char *pw_unit_phrase(pw_unit_kind kind)
 {
     static const char *const phrase[] = {
-        [PW_UNIT_NONE] = "a number with a prefix that means nothing here", [PW_UNIT_HZ] = "a frequency",
-        [PW_UNIT_RAD_S] = "a frequency", [PW_UNIT_SECOND] = "a time", [PW_UNIT_VOLT] = "a voltage",
-        [PW_UNIT_AMPERE] = "a current", [PW_UNIT_OHM] = "a resistance", [PW_UNIT_FARAD] = "a capacitance",
-        [PW_UNIT_HENRY] = "an inductance", [PW_UNIT_SIEMENS] = "a conductance", [PW_UNIT_DB] = "in decibels",
-        [PW_UNIT_PERCENT] = "a percentage", [PW_UNIT_DEGREE] = "an angle", [PW_UNIT_BIT] = "a number of bits",
+        [PW_UNIT_NONE] = "a number with a prefix that means nothing here",
+        [PW_UNIT_HZ] = "a frequency",
+        [PW_UNIT_RAD_S] = "a frequency",
+        [PW_UNIT_SECOND] = "a time",
+        [PW_UNIT_VOLT] = "a voltage",
+        [PW_UNIT_AMPERE] = "a current",
+        [PW_UNIT_OHM] = "a resistance",
+        [PW_UNIT_FARAD] = "a capacitance",
+        [PW_UNIT_HENRY] = "an inductance",
+        [PW_UNIT_SIEMENS] = "a conductance",
+        [PW_UNIT_DB] = "in decibels",
+        [PW_UNIT_PERCENT] = "a percentage",
+        [PW_UNIT_DEGREE] = "an angle",
+        [PW_UNIT_BIT] = "a number of bits",
         [PW_UNIT_BYTE] = "a size",
     };
     return phrase[kind];
@@ -115,7 +126,8 @@ double pw_unit_factor(pw_dimension want, pw_unit_kind kind)
 static void add_prefixes(pw_text *out)
 {
     pw_text_add(out, "(?:");
-    for (size_t i = 0; i < PREFIXES; i++) pw_text_print(out, "%s%s", i ? "|" : "", prefixes[i].name);
+    for (size_t i = 0; i < PREFIXES; i++)
+        pw_text_print(out, "%s%s", i ? "|" : "", prefixes[i].name);
     pw_text_add(out, ")");
 }
 

@@ -7,9 +7,21 @@
 #include "stagefile/quantity.h"
 
 typedef enum pw_unit_kind {
-    PW_UNIT_NONE, PW_UNIT_HZ, PW_UNIT_RAD_S, PW_UNIT_SECOND, PW_UNIT_VOLT, PW_UNIT_AMPERE, PW_UNIT_OHM,
-    PW_UNIT_FARAD, PW_UNIT_HENRY, PW_UNIT_SIEMENS, PW_UNIT_DB, PW_UNIT_PERCENT, PW_UNIT_DEGREE,
-    PW_UNIT_BIT, PW_UNIT_BYTE
+    PW_UNIT_NONE,
+    PW_UNIT_HZ,
+    PW_UNIT_RAD_S,
+    PW_UNIT_SECOND,
+    PW_UNIT_VOLT,
+    PW_UNIT_AMPERE,
+    PW_UNIT_OHM,
+    PW_UNIT_FARAD,
+    PW_UNIT_HENRY,
+    PW_UNIT_SIEMENS,
+    PW_UNIT_DB,
+    PW_UNIT_PERCENT,
+    PW_UNIT_DEGREE,
+    PW_UNIT_BIT,
+    PW_UNIT_BYTE
 } pw_unit_kind;
 
 typedef struct pw_unit {
@@ -42,6 +54,7 @@ bool pw_dimension_takes_bare_prefix(pw_dimension dimension);
 
 /* A regular expression (in the common part of ECMA 262 and others) that the texts of a dimension
  * match and others do not, as far as one can tell; for the schema. */
-void pw_dimension_pattern(pw_dimension dimension, bool may_be_negative, bool may_be_zero, pw_text *out);
+void pw_dimension_pattern(pw_dimension dimension, bool may_be_negative, bool may_be_zero,
+                          pw_text *out);
 
 #endif

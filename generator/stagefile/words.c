@@ -4,9 +4,11 @@
 
 const pw_word pw_method_words[] = {
     [PW_BILINEAR] = {"bilinear", "s = 2/T (z - 1)/(z + 1), on each root; see prewarp"},
-    [PW_MATCHED_Z] = {"matched-z", "each root s becomes z = exp(s T); the gain is matched at one frequency"},
+    [PW_MATCHED_Z] = {"matched-z", "each root s becomes z = exp(s T); the gain is matched at one "
+                                   "frequency"},
     [PW_IMPULSE_INVARIANT] = {"impulse-invariant", "the impulse response is T h(n T)"},
-    [PW_STEP_INVARIANT] = {"step-invariant", "the step response is sampled: a zero-order hold before the stage"},
+    [PW_STEP_INVARIANT] = {"step-invariant", "the step response is sampled: a zero-order hold "
+                                             "before the stage"},
     [PW_BEST] = {"best", "all of them are tried; the smallest error over limits.band is kept"},
     {0},
 };
@@ -17,7 +19,8 @@ const pw_word pw_prewarp_words[] = {
 };
 const pw_word pw_infinity_words[] = {
     [PW_INFINITY_NYQUIST] = {"nyquist", "every zero at infinity goes to z = -1"},
-    [PW_INFINITY_KEEP_ONE] = {"keep-one", "one stays at infinity (one sample of delay), the others go to z = -1"},
+    [PW_INFINITY_KEEP_ONE] = {"keep-one", "one stays at infinity (one sample of delay), the others "
+                                          "go to z = -1"},
     [PW_INFINITY_KEEP] = {"keep", "all stay at infinity: whole samples of delay"},
     {0},
 };
@@ -29,9 +32,11 @@ const pw_word pw_sample_words[] = {
     {0},
 };
 const pw_word pw_structure_words[] = {
-    [PW_STRUCTURE_AUTO] = {"auto", "the one that suits the format, the poles and the target; the report says why"},
+    [PW_STRUCTURE_AUTO] = {"auto", "the one that suits the format, the poles and the target; the "
+                                   "report says why"},
     [PW_DIRECT_1] = {"direct-1", "direct form I, one accumulator a section"},
-    [PW_DIRECT_1_SHAPED] = {"direct-1-shaped", "direct form I that feeds its rounding error back; fixed point"},
+    [PW_DIRECT_1_SHAPED] = {"direct-1-shaped", "direct form I that feeds its rounding error back; "
+                                               "fixed point"},
     [PW_TRANSPOSED_2] = {"transposed-2", "transposed direct form II; floats"},
     [PW_COUPLED] = {"coupled", "the rotation form, for low frequencies and high Q; fixed point"},
     {0},
@@ -49,8 +54,10 @@ const pw_word pw_signal_words[] = {
     [PW_SIGNAL_SINE] = {"sine", "a sine in the band"},
     [PW_SIGNAL_SWEEP] = {"sweep", "a sine that runs through the band"},
     [PW_SIGNAL_NOISE] = {"noise", "pseudo-random samples from the seed"},
-    [PW_SIGNAL_FULL_SCALE_SQUARE] = {"full-scale-square", "a square wave between the extreme words"},
-    [PW_SIGNAL_OVERFLOW_PROBE] = {"overflow-probe", "the input that drives the node nearest to its clamp hardest"},
+    [PW_SIGNAL_FULL_SCALE_SQUARE] = {"full-scale-square", "a square wave between the extreme "
+                                                          "words"},
+    [PW_SIGNAL_OVERFLOW_PROBE] = {"overflow-probe", "the input that drives the node nearest to its "
+                                                    "clamp hardest"},
     [PW_SIGNAL_SILENCE] = {"silence", "zeros after a disturbance: limit cycles show"},
     {0},
 };
@@ -72,7 +79,8 @@ const pw_word pw_shape_words[] = {
     {0},
 };
 const pw_word pw_normalise_words[] = {
-    [PW_NORMALISE_MAGNITUDE] = {"magnitude", "the corner is where the magnitude is down by corner-at"},
+    [PW_NORMALISE_MAGNITUDE] = {"magnitude", "the corner is where the magnitude is down by "
+                                             "corner-at"},
     [PW_NORMALISE_PHASE] = {"phase", "the corner is where the asymptotes of the magnitude meet"},
     [PW_NORMALISE_DELAY] = {"delay", "the delay at 0 Hz is 1/(2 pi corner)"},
     {0},
@@ -86,7 +94,8 @@ const pw_word pw_overflow_words[] = {
     {0},
 };
 const pw_word pw_section_order_words[] = {
-    {"auto", "the order of the lowest noise without a clip"}, {"as-listed", "the order of the poles in the file"},
+    {"auto", "the order of the lowest noise without a clip"},
+    {"as-listed", "the order of the poles in the file"},
     {0},
 };
 const pw_word pw_code_words[] = {
@@ -96,12 +105,19 @@ const pw_word pw_code_words[] = {
 };
 const pw_word pw_forbidden_words[] = {{"forbidden", "no node may be able to clip"}, {0}};
 const pw_word pw_series_words[] = {
-    {"E6", "six values a decade"}, {"E12", "twelve"}, {"E24", "twenty-four"}, {"E96", "ninety-six"}, {0},
+    {"E6", "six values a decade"},
+    {"E12", "twelve"},
+    {"E24", "twenty-four"},
+    {"E96", "ninety-six"},
+    {0},
 };
 const pw_word pw_distribution_words[] = {
-    {"uniform", "anywhere within the tolerance"}, {"normal", "the tolerance is three standard deviations"}, {0},
+    {"uniform", "anywhere within the tolerance"},
+    {"normal", "the tolerance is three standard deviations"},
+    {0},
 };
-const pw_word pw_op_amp_words[] = {{"ideal", "no current into its inputs, no voltage between them"}, {0}};
+const pw_word pw_op_amp_words[] = {{"ideal", "no current into its inputs, no voltage between them"},
+                                   {0}};
 const pw_word pw_q_words[] = {{"infinite", "on the imaginary axis; zeros only"}, {0}};
 const pw_word pw_flag_words[] = {{"false", "no"}, {"true", "yes"}, {0}};
 

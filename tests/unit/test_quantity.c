@@ -34,7 +34,8 @@ static void assert_refused(const char *text, pw_dimension dimension, const char 
 {
     pw_quantity_fault fault;
     double value;
-    if (pw_quantity_read(text, dimension, &value, &fault)) fail_msg("%s was read as %.17g", text, value);
+    if (pw_quantity_read(text, dimension, &value, &fault))
+        fail_msg("%s was read as %.17g", text, value);
     if (!strstr(fault.what, words)) fail_msg("%s: \"%s\" lacks \"%s\"", text, fault.what, words);
 }
 
@@ -115,14 +116,16 @@ static void codes_elsewhere(void **state)
 static void one_rounding(void **state)
 {
     (void)state;
-    static const struct { const char *prefix; int exponent; } rows[] = {
-        {"f", -15}, {"p", -12}, {"n", -9}, {"u", -6}, {"\u00b5", -6}, {"\u03bc", -6}, {"m", -3}, {"", 0},
-        {"k", 3}, {"K", 3}, {"M", 6}, {"G", 9}, {"T", 12},
+    static const struct { const char *prefix; int exponent;
+    } rows[] = {
+        {"f", -15}, {"p", -12}, {"n", -9}, {"u", -6}, {"\u00b5", -6}, {"\u03bc", -6}, {"m", -3},
+        {"", 0},    {"k", 3},   {"K", 3},  {"M", 6},  {"G", 9},       {"T", 12},
     };
     for (size_t i = 0; i < sizeof rows / sizeof rows[0]; i++)
         for (int tenths = 1; tenths < 1000; tenths += 7) {
             char text[48], plain[48];
-            snprintf(text, sizeof text, "%d.%d%s%sHz", tenths / 10, tenths % 10, i % 2 ? " " : "", rows[i].prefix);
+            snprintf(text, sizeof text, "%d.%d%s%sHz", tenths / 10, tenths % 10, i % 2 ? " " : "",
+                     rows[i].prefix);
             snprintf(plain, sizeof plain, "%d.%de%d", tenths / 10, tenths % 10, rows[i].exponent);
             assert_reads(text, PW_DIM_FREQUENCY, strtod(plain, NULL));
         }
@@ -219,8 +222,9 @@ int main(void)
 {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(published_codes), cmocka_unit_test(codes_equal_prefixes),
-        cmocka_unit_test(codes_elsewhere), cmocka_unit_test(one_rounding), cmocka_unit_test(mega_and_milli),
-        cmocka_unit_test(units), cmocka_unit_test(refused), cmocka_unit_test(nearest_unit),
+        cmocka_unit_test(codes_elsewhere), cmocka_unit_test(one_rounding),
+        cmocka_unit_test(mega_and_milli),  cmocka_unit_test(units),
+        cmocka_unit_test(refused),         cmocka_unit_test(nearest_unit),
         cmocka_unit_test(long_text),
     };
     return cmocka_run_group_tests_name("quantity", tests, NULL, NULL);

@@ -88,7 +88,8 @@ static void digest(void **state)
 {
     (void)state;
     outcome o = read_text("abc");
-    assert_string_equal(o.stage.sha256, "ba7816bf8f01cfea414140de5dae2223b00361a396177a9cb410ff61f20015ad");
+    assert_string_equal(o.stage.sha256, "ba7816bf8f01cfea414140de5dae2223b00361a396177a9cb410ff61f2"
+                                        "0015ad");
     drop(&o);
 }
 
@@ -112,9 +113,12 @@ static void taken_defaults(void **state)
 static void word_lengths(void **state)
 {
     (void)state;
-    static const struct { const char *yaml; int bits; } rows[] = {
-        {"arithmetic: {sample: q15}\n", 16}, {"arithmetic: {sample: q31}\n", 32},
-        {"arithmetic: {sample: q15, coefficient: 32 bits}\n", 32}, {"arithmetic: {sample: q31, coefficient: 16}\n", 16},
+    static const struct { const char *yaml; int bits;
+    } rows[] = {
+        {"arithmetic: {sample: q15}\n", 16},
+        {"arithmetic: {sample: q31}\n", 32},
+        {"arithmetic: {sample: q15, coefficient: 32 bits}\n", 32},
+        {"arithmetic: {sample: q31, coefficient: 16}\n", 16},
     };
     for (size_t i = 0; i < sizeof rows / sizeof rows[0]; i++) {
         char yaml[512];
@@ -128,35 +132,53 @@ static void word_lengths(void **state)
 static void full_scale(void **state)
 {
     (void)state;
-    outcome o = read_well(HEAD ROOTS "signal:\n  input: {low: -1 V, high: 3.3 V, bits: 12, zero: 1 V, peak: 50 mV}\n"
-                          "  output: {high: 5 V, zero: 1 V, rails: [0.1 V, 4.9 V]}\n");
+    outcome o = read_well(HEAD ROOTS "signal:\n  input: {low: -1 V, high: 3.3 V, bits: 12, zero: 1 "
+                                     "V, peak: 50 mV}\n"
+                                     "  output: {high: 5 V, zero: 1 V, rails: [0.1 V, 4.9 V]}\n");
     assert_true(o.stage.input.full_scale == 3.3 - 1.0);
     assert_true(o.stage.input.peak == 0.05 && o.stage.input.bits == 12);
-    assert_true(o.stage.output.full_scale == 4 && o.stage.output.low == 0 && o.stage.output.bits == 0);
+    assert_true(o.stage.output.full_scale == 4 && o.stage.output.low == 0
+                && o.stage.output.bits == 0);
     assert_true(o.stage.output.has_rails && o.stage.output.rail[1] == 4.9);
     drop(&o);
 }
 
 /* ---- roots ---- */
 
-#define WITH(zeros, poles) HEAD "analog:\n  roots:\n    zeros: [" zeros "]\n    poles: [" poles "]\n    gain: {factor: 2}\n"
+#define WITH(zeros, poles)                                                                         \
+    HEAD "analog:\n  roots:\n    zeros: [" zeros "]\n    poles: [" poles "]\n    gain: {factor: "  \
+                                                                         "2}\n"
 
 static void assert_root(const pw_root *root, double real, double imag)
 {
-    if (fabs(creal(root->s) - real) > 1e-12 * hypot(real, imag) || fabs(cimag(root->s) - imag) > 1e-12 * hypot(real, imag))
+    if (fabs(creal(root->s) - real) > 1e-12 * hypot(real, imag)
+        || fabs(cimag(root->s) - imag) > 1e-12 * hypot(real, imag))
         fail_msg("%.17g %.17g, not %.17g %.17g", creal(root->s), cimag(root->s), real, imag);
 }
 
 static void root_texts(void **state)
 {
     (void)state;
-    static const struct { const char *text; double real, imag; } rows[] = {
-        {"-222 ± 333j", -222, 333}, {"-222 +- 333j", -222, 333}, {"-222+/-333j", -222, 333},
-        {"-222 ± j333", -222, 333}, {"-222 ± 333i", -222, 333}, {"± 333j", 0, 333},
-        {"-1 ± 2j krad/s", -1000, 2000}, {"-1k ± 2kj", -1000, 2000}, {"-1 krad/s ± 2 krad/s j", -1000, 2000},
-        {"-1 ± 2j kHz", -2000 * M_PI, 4000 * M_PI}, {"\u2212222 ± 333j", -222, 333}, {"-5", -5, 0},
-        {"-5 krad/s", -5000, 0}, {"0", 0, 0}, {"-1 kHz", -2000 * M_PI, 0}, {"{real: -222, imag: -333}", -222, 333},
-        {"{real: -7}", -7, 0}, {"{frequency: 1000 rad/s, q: infinite}", 0, 1000},
+    static const struct { const char *text; double real, imag;
+    } rows[] = {
+        {"-222 ± 333j", -222, 333},
+        {"-222 +- 333j", -222, 333},
+        {"-222+/-333j", -222, 333},
+        {"-222 ± j333", -222, 333},
+        {"-222 ± 333i", -222, 333},
+        {"± 333j", 0, 333},
+        {"-1 ± 2j krad/s", -1000, 2000},
+        {"-1k ± 2kj", -1000, 2000},
+        {"-1 krad/s ± 2 krad/s j", -1000, 2000},
+        {"-1 ± 2j kHz", -2000 * M_PI, 4000 * M_PI},
+        {"\u2212222 ± 333j", -222, 333},
+        {"-5", -5, 0},
+        {"-5 krad/s", -5000, 0},
+        {"0", 0, 0},
+        {"-1 kHz", -2000 * M_PI, 0},
+        {"{real: -222, imag: -333}", -222, 333},
+        {"{real: -7}", -7, 0},
+        {"{frequency: 1000 rad/s, q: infinite}", 0, 1000},
         {"{real: -222, imag: 333, right: true}", 222, 333},
     };
     for (size_t i = 0; i < sizeof rows / sizeof rows[0]; i++) {
@@ -183,7 +205,8 @@ static void resonances(void **state)
         const pw_root *p = &o.stage.analog.pole[0];
         assert_int_equal(p->double_real, qs[i] <= 0.5);
         double sum = p->double_real ? creal(p->s) + p->s2 : 2 * creal(p->s);
-        double product = p->double_real ? creal(p->s) * p->s2 : creal(p->s) * creal(p->s) + cimag(p->s) * cimag(p->s);
+        double product = p->double_real ? creal(p->s) * p->s2
+                                        : creal(p->s) * creal(p->s) + cimag(p->s) * cimag(p->s);
         assert_true(fabs(sum / (-w / qs[i]) - 1) < 1e-14);
         assert_true(fabs(product / (w * w) - 1) < 1e-14);
         drop(&o);
@@ -193,7 +216,8 @@ static void resonances(void **state)
 static void damping_is_half_over_q(void **state)
 {
     (void)state;
-    outcome a = read_well(WITH("", "{frequency: 1 kHz, q: 2}")), b = read_well(WITH("", "{frequency: 1 kHz, damping: 0.25}"));
+    outcome a = read_well(WITH("", "{frequency: 1 kHz, q: 2}")),
+            b = read_well(WITH("", "{frequency: 1 kHz, damping: 0.25}"));
     assert_true(a.stage.analog.pole[0].s == b.stage.analog.pole[0].s);
     drop(&a);
     drop(&b);
@@ -202,7 +226,8 @@ static void damping_is_half_over_q(void **state)
 static void gains(void **state)
 {
     (void)state;
-    outcome o = read_well(HEAD "analog:\n  roots:\n    poles: [-1]\n    gain: {at: 2, is: -20 dB, invert: true}\n");
+    outcome o = read_well(HEAD "analog:\n  roots:\n    poles: [-1]\n    gain: {at: 2, is: -20 dB, "
+                               "invert: true}\n");
     assert_int_equal(o.stage.analog.gain.kind, PW_GAIN_AT);
     assert_true(o.stage.analog.gain.at_hz == 2 && fabs(o.stage.analog.gain.is - 0.1) < 1e-16);
     assert_true(o.stage.analog.gain.invert);
@@ -215,8 +240,12 @@ static void overrides(void **state)
 {
     (void)state;
     static const char *const sets[] = {
-        "rate=96k", "transform.method=matched-z", "limits.band=[1 Hz, 3 kHz]", "analog.roots.poles.1=-5",
-        "analog.roots.gain={factor: 3}", "about=a=b",
+        "rate=96k",
+        "transform.method=matched-z",
+        "limits.band=[1 Hz, 3 kHz]",
+        "analog.roots.poles.1=-5",
+        "analog.roots.gain={factor: 3}",
+        "about=a=b",
     };
     outcome o = read_with(HEAD ROOTS "arithmetic: {sample: q15}\n", sets, 6);
     assert_string_equal(o.said, "");
@@ -254,7 +283,8 @@ static void override_of_an_alias(void **state)
 {
     (void)state;
     static const char *const sets[] = {"signal.output.high=5 V"};
-    outcome o = read_with(HEAD ROOTS "signal:\n  input: &adc {high: 3.3 V}\n  output: *adc\n", sets, 1);
+    outcome o = read_with(HEAD ROOTS "signal:\n  input: &adc {high: 3.3 V}\n  output: *adc\n", sets,
+                          1);
     assert_string_equal(o.said, "");
     assert_true(o.stage.input.high == 3.3 && o.stage.output.high == 5);
     drop(&o);
@@ -285,7 +315,8 @@ static void alias_place(void **state)
 {
     (void)state;
     outcome o = read_text(HEAD ROOTS "signal:\n  input: &adc {high: 3 F}\n  output: *adc\n");
-    assert_true(strstr(o.said, "f:8:22: signal.input.high") && strstr(o.said, "f:8:22: signal.output.high"));
+    assert_true(strstr(o.said, "f:8:22: signal.input.high")
+                && strstr(o.said, "f:8:22: signal.output.high"));
     drop(&o);
 }
 
@@ -312,10 +343,14 @@ static void table_is_whole(void **state)
     (void)state;
     for (int i = 0; i < pw_key_count; i++) {
         const pw_key *key = &pw_keys[i];
-        if (!has_map(key->map) || (key->sub && !has_map(key->sub))) fail_msg("%s.%s: no such map", key->map, key->name);
-        if (pw_key_find(key->map, key->name) != key) fail_msg("%s.%s stands twice", key->map, key->name);
-        if (!*key->help || !key->example) fail_msg("%s.%s has no help or example", key->map, key->name);
-        if (key->needed && (key->fallback || key->otherwise)) fail_msg("%s.%s is needed and has a default", key->map, key->name);
+        if (!has_map(key->map) || (key->sub && !has_map(key->sub)))
+            fail_msg("%s.%s: no such map", key->map, key->name);
+        if (pw_key_find(key->map, key->name) != key)
+            fail_msg("%s.%s stands twice", key->map, key->name);
+        if (!*key->help || !key->example)
+            fail_msg("%s.%s has no help or example", key->map, key->name);
+        if (key->needed && (key->fallback || key->otherwise))
+            fail_msg("%s.%s is needed and has a default", key->map, key->name);
         if ((key->forms & PW_FORM_WORD || key->item_forms & PW_FORM_WORD) && !key->words)
             fail_msg("%s.%s has no words", key->map, key->name);
     }
@@ -338,12 +373,24 @@ static void words_fit(void **state)
 int main(void)
 {
     const struct CMUnitTest tests[] = {
-        cmocka_unit_test(smallest), cmocka_unit_test(digest), cmocka_unit_test(taken_defaults),
-        cmocka_unit_test(word_lengths), cmocka_unit_test(full_scale), cmocka_unit_test(root_texts),
-        cmocka_unit_test(resonances), cmocka_unit_test(damping_is_half_over_q), cmocka_unit_test(gains),
-        cmocka_unit_test(overrides), cmocka_unit_test(later_override_wins), cmocka_unit_test(override_mends),
-        cmocka_unit_test(override_of_an_alias), cmocka_unit_test(places), cmocka_unit_test(alias_place),
-        cmocka_unit_test(warnings_are_no_errors), cmocka_unit_test(table_is_whole), cmocka_unit_test(words_fit),
+        cmocka_unit_test(smallest),
+        cmocka_unit_test(digest),
+        cmocka_unit_test(taken_defaults),
+        cmocka_unit_test(word_lengths),
+        cmocka_unit_test(full_scale),
+        cmocka_unit_test(root_texts),
+        cmocka_unit_test(resonances),
+        cmocka_unit_test(damping_is_half_over_q),
+        cmocka_unit_test(gains),
+        cmocka_unit_test(overrides),
+        cmocka_unit_test(later_override_wins),
+        cmocka_unit_test(override_mends),
+        cmocka_unit_test(override_of_an_alias),
+        cmocka_unit_test(places),
+        cmocka_unit_test(alias_place),
+        cmocka_unit_test(warnings_are_no_errors),
+        cmocka_unit_test(table_is_whole),
+        cmocka_unit_test(words_fit),
     };
     return cmocka_run_group_tests_name("stage file", tests, NULL, NULL);
 }
