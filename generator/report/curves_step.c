@@ -266,6 +266,7 @@ pw_status pw_curve_step(const pw_results *results, pw_step_curve *out)
         double octaves = log2(span / (first * PER_OCTAVE));
         out->analogs = (int)fmin(PW_CURVE_POINTS, PER_OCTAVE * (octaves + 1));
     }
-    digital_curve(results, span, out);
-    return analog_curve(&results->analog, rate, first, out);
+    pw_status status = analog_curve(&results->analog, rate, first, out);
+    digital_curve(results, out->analog_t[out->analogs - 1], out);
+    return status;
 }

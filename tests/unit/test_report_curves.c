@@ -34,6 +34,8 @@ static void assert_step(const pw_roots *analog, closed_form *expected, bool loga
         largest = fmax(largest, fabs(expected(curve.analog_t[i])));
         worst = fmax(worst, fabs(curve.analog[i] - expected(curve.analog_t[i])));
     }
+    double last = curve.analog_t[curve.analogs - 1];
+    assert_float_equal(curve.digital_t[curve.digitals - 1] / last, 1, 0.1);
     if (worst > 1e-9 * largest) fail_msg("off by %g of %g", worst, largest);
 }
 
