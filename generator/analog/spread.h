@@ -86,6 +86,10 @@ PW_CHECKED pw_status pw_spread_read(const char *name, const pw_text *text, struc
 PW_CHECKED pw_status pw_spread_merge(struct pw_spread *into, const struct pw_spread *more,
                                      const char *name);
 
+/* Whether frequencies, nominal magnitudes and their corners agree: what no draw decides, but every
+ * part's value and tolerance does (a --set changes them and not the stage file). */
+bool pw_spread_same_stage(const struct pw_spread *left, const struct pw_spread *right);
+
 /* The worst figures anew, from the rows. */
 void pw_spread_finish(struct pw_spread *spread);
 

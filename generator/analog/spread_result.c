@@ -187,14 +187,27 @@ pw_status pw_spread_read(const char *name, const pw_text *text, pw_spread **out)
 
 /* ---- Merging ---- */
 
+static bool same_range(const pw_range *a, const pw_range *b)
+{
+    return a->nominal == b->nominal && a->corner_low == b->corner_low
+           && a->corner_high == b->corner_high;
+}
+
+bool pw_spread_same_stage(const pw_spread *a, const pw_spread *b)
+{
+    if (a->rows != b->rows) return false;
+    for (int i = 0; i < a->rows; i++)
+        if (a->row[i].hz != b->row[i].hz || !same_range(&a->row[i].db, &b->row[i].db)) return false;
+    return true;
+}
+
 static const char *difference(const pw_spread *a, const pw_spread *b)
 {
     if (strcmp(a->sha256, b->sha256)) return "is of another stage file";
     if (a->seed != b->seed) return "has another seed";
     if (a->draws != b->draws) return "is of a study with another number of draws";
     if (a->parts != b->parts || a->rows != b->rows) return "is of another study";
-    for (int i = 0; i < a->rows; i++)
-        if (a->row[i].hz != b->row[i].hz) return "is at other frequencies";
+    if (!pw_spread_same_stage(a, b)) return "is of other part values or frequencies";
     for (int i = 0; i < a->dones; i++)
         for (int k = 0; k < b->dones; k++)
             if (a->done[i].from < b->done[k].to && b->done[k].from < a->done[i].to)

@@ -58,7 +58,7 @@ static pw_status realise(pw_analysis *analysis)
     return status;
 }
 
-pw_status pw_analysis_run(const pw_call *call, pw_analysis *analysis)
+pw_status pw_analysis_results(const pw_call *call, pw_analysis *analysis)
 {
     pw_status status = pw_analysis_read(call, analysis);
     if (!status) status = pw_analysis_model(call, analysis);
@@ -68,6 +68,14 @@ pw_status pw_analysis_run(const pw_call *call, pw_analysis *analysis)
     pw_response_analyse(&analysis->stage, &r->analog, &r->digital, &r->realisation, &r->response);
     pw_cost_estimate(&analysis->stage, &r->realisation, &r->target, &r->cost);
     pw_judge(r);
+    return PW_OK;
+}
+
+pw_status pw_analysis_run(const pw_call *call, pw_analysis *analysis)
+{
+    pw_status status = pw_analysis_results(call, analysis);
+    if (status) return status;
+    pw_results *r = &analysis->results;
     const pw_spread_options options = {.quiet = call->quiet};
     status = pw_spread_compute(&analysis->stage, &r->analog, &options, &r->spread, &analysis->messages);
     return pw_analysis_tell(call, analysis, status);

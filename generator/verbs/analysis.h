@@ -16,8 +16,10 @@ typedef struct pw_analysis {
 PW_CHECKED pw_status pw_analysis_read(const pw_call *call, pw_analysis *analysis);
 /* The analog model of what was read. */
 PW_CHECKED pw_status pw_analysis_model(const pw_call *call, pw_analysis *analysis);
-/* All of it: read, model, transform, words, response, cost, limits. */
+/* All of it: read, model, transform, words, response, cost, limits, spread of tolerances. */
 PW_CHECKED pw_status pw_analysis_run(const pw_call *call, pw_analysis *analysis);
+/* All of it but for the spread. */
+PW_CHECKED pw_status pw_analysis_results(const pw_call *call, pw_analysis *analysis);
 /* Prints the messages so far: warnings only where not --quiet. Returns status. */
 pw_status pw_analysis_tell(const pw_call *call, pw_analysis *analysis, pw_status status);
 void pw_analysis_free(pw_analysis *analysis);

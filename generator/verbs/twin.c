@@ -3,12 +3,15 @@
 
 #include "twin/play.h"
 #include "verbs/analysis.h"
+#include "verbs/spread_shards.h"
 
-enum { PLAY, SAMPLES };
+enum { PLAY, SAMPLES, SHARD, MERGE };
 
 static const pw_option options[] = {
     {"play", "IN", "run the emitted arithmetic over the record IN and write what comes out to -o FILE"},
     {"samples", NULL, "the record holds the samples that the C sees, not volts"},
+    {"shard", "I/N", "draw only share I of N of the tolerances; -o FILE takes it (default <stage>.I-of-N.spread)"},
+    {"merge", "FILES", "join shards: a directory of *.spread files, or files divided by commas"},
     {NULL, NULL, NULL},
 };
 
@@ -31,6 +34,8 @@ static pw_status play(const pw_call *call, const pw_results *results)
 static pw_status run(const pw_call *call)
 {
     static pw_analysis analysis;
+    if (call->extra[SHARD]) return pw_spread_share(call, call->extra[SHARD]);
+    if (call->extra[MERGE]) return pw_spread_join(call, call->extra[MERGE]);
     pw_status status = pw_analysis_run(call, &analysis);
     if (!status) status = play(call, &analysis.results);
     pw_analysis_free(&analysis);
@@ -40,5 +45,7 @@ static pw_status run(const pw_call *call)
 const pw_verb pw_verb_twin = {
     .name = "twin", .summary = "run the stage over a measured record or response, compare, and fit the parts",
     .run = run, .needs_stage = true, .option = options,
-    .examples = "  polewright twin stage.yaml --play in.csv -o out.csv\n",
+    .examples = "  polewright twin stage.yaml --shard 3/8 -o study/3.spread\n"
+                "  polewright twin stage.yaml --merge study\n"
+                "  polewright twin stage.yaml --play in.csv -o out.csv\n",
 };
