@@ -62,7 +62,7 @@ static void add_peaks(const char *label, const pw_error_figures *e, pw_text *out
                   pw_figure(deg, e->phase_deg.max, "deg"));
 }
 
-static void put_errors(const pw_results *results, const pw_style *style, pw_text *out)
+static void put_errors(const pw_results *results, bool parts, const pw_style *style, pw_text *out)
 {
     const pw_response *r = &results->response;
     const pw_error_figures *e = &r->total;
@@ -74,6 +74,7 @@ static void put_errors(const pw_results *results, const pw_style *style, pw_text
     pw_text_add(&body, ", ");
     pw_phrase_peak(&e->delay_s, "s", &body);
     put_line("Error", &body, style, out);
+    if (!parts) return;
     add_peaks("transform", &r->transform, &body);
     if (results->digital.candidates > 1) {
         pw_text_add(&body, " (");
@@ -118,18 +119,38 @@ static int lines_of(const pw_text *text)
     return n;
 }
 
+/* How much is left out, in this order, where a screen has no room for everything. */
+typedef enum room { ROOM_FOR_ALL, NO_ERROR_PARTS, NO_COST, NO_SPREAD, NO_CYCLES } room;
+
+/* What stands above and below the table of nodes. */
+static void compose(const pw_results *results, room left_out, const pw_style *style, pw_text *head,
+                    pw_text *tail)
+{
+    pw_text body = {0};
+    put_phrase("Stage", pw_phrase_stage, results, style, head);
+    put_errors(results, left_out < NO_ERROR_PARTS, style, head);
+    if (results->spread && left_out < NO_SPREAD)
+        put_phrase("Parts", pw_phrase_spread, results, style, head);
+    put_phrase("Range", pw_phrase_range, results, style, head);
+    put_phrase("Noise", pw_phrase_noise, results, style, tail);
+    if (left_out < NO_CYCLES) put_phrase("Cycles", pw_phrase_limit_cycle, results, style, tail);
+    if (left_out < NO_COST) put_phrase("Cost", pw_phrase_cost, results, style, tail);
+    pw_text_add(&body, pw_caution_short);
+    put_line("Caution", &body, style, tail);
+    if (left_out == ROOM_FOR_ALL) return;
+    pw_text_add(&body, "--verbose prints what found no room here");
+    put_line("More", &body, style, tail);
+}
+
 static void put_screen(const pw_results *results, const pw_style *style, pw_text *out)
 {
-    pw_text head = {0}, tail = {0}, body = {0};
-    put_phrase("Stage", pw_phrase_stage, results, style, &head);
-    put_errors(results, style, &head);
-    if (results->spread) put_phrase("Parts", pw_phrase_spread, results, style, &head);
-    put_phrase("Range", pw_phrase_range, results, style, &head);
-    put_phrase("Noise", pw_phrase_noise, results, style, &tail);
-    put_phrase("Cycles", pw_phrase_limit_cycle, results, style, &tail);
-    put_phrase("Cost", pw_phrase_cost, results, style, &tail);
-    pw_text_add(&body, pw_caution_short);
-    put_line("Caution", &body, style, &tail);
+    pw_text head = {0}, tail = {0};
+    for (int left_out = ROOM_FOR_ALL; left_out <= NO_CYCLES; left_out++) {
+        pw_text_free(&head);
+        pw_text_free(&tail);
+        compose(results, (room)left_out, style, &head, &tail);
+        if (lines_of(out) + lines_of(&head) + lines_of(&tail) <= SCREEN) break;
+    }
     pw_text_add(out, pw_text_string(&head));
     put_nodes(results, SCREEN - lines_of(out) - lines_of(&tail), out);
     pw_text_add(out, pw_text_string(&tail));

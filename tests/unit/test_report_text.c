@@ -6,6 +6,7 @@
 #include <stdlib.h>
 #include <cmocka.h>
 
+#include "analog/spread.h"
 #include "report/figures.h"
 #include "report/phrases.h"
 #include "report/rootgroups.h"
@@ -82,6 +83,10 @@ static void the_screen_says_what_matters(void **state)
 
 static void fill_to_the_brim(void)
 {
+    static pw_spread spread = {.seed = UINT64_MAX, .draws = 1000000, .drawn = 1000000, .parts = 47,
+                               .unstable = 12345, .worst_db = 12.345, .worst_db_hz = 12345.67,
+                               .worst_deg = 123.456, .worst_deg_hz = 12345.67};
+    results.spread = &spread;
     pw_realisation *r = &results.realisation;
     static const char *const name[] = {"magnitude", "phase", "delay", "noise", "overflow", "cycles",
                                        "flash", "ram"};
@@ -114,6 +119,8 @@ static void the_screen_is_a_screen_even_when_there_is_much(void **state)
     fill_to_the_brim();
     text = written(false, false);
     assert_true(lines_within(&text, WIDTH) <= SCREEN);
+    assert_has(&text, "--verbose prints what found no room here");
+    assert_has(&text, "not certified");
     pw_text_free(&text);
     text = written(false, true);
     lines_within(&text, WIDTH);
