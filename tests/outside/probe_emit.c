@@ -4,9 +4,9 @@
  * truncate, wrap, length, seed, peak, rate, target, input and output (low high zero bits rails),
  * sections: list of {structure, order, b, a, bf, af, k} or {sigma, omega, g, c1, c2, d, af, cf},
  * with cannot_clip and fits_32, or for floats {structure, order, b, a}; state: list of six numbers
- * a section. Prints for each: the clips of every signal, or the tolerance, as JSON. With "settle"
- * and "x" it prints what the simulation gives for the inputs x, a list, after settling at settle
- * (or from rest: null). */
+ * a section. Prints for each: the clips of every signal, or the tolerance, as JSON, and "plays":
+ * for each of the list "settle" what the simulation gives for the inputs "x", a list, after
+ * settling there (null: from rest), with its clips. */
 #include <jansson.h>
 #include <math.h>
 #include <stdio.h>
@@ -133,17 +133,15 @@ static void read_stage(json_t *o, pw_stage *stage, pw_results *results)
     results->cost.cycles_per_sample = NAN;
 }
 
-/* What the simulation makes of the list x. */
-static json_t *play(json_t *o, const pw_realisation *r)
+/* What the simulation makes of the list x, after settling at settle or from rest (null). */
+static json_t *play(json_t *list, json_t *settle, const pw_realisation *r)
 {
-    json_t *list = json_object_get(o, "x"), *settle = json_object_get(o, "settle"),
-           *y = json_array(), *v;
+    json_t *y = json_array(), *v;
     pw_simulation sim;
     size_t i;
     pw_simulation_reset(&sim, r);
     if (json_is_number(settle)) pw_simulation_settle(&sim, json_number_value(settle));
-    json_array_foreach(list, i, v)
-    {
+    json_array_foreach(list, i, v) {
         if (r->sample == PW_Q15 || r->sample == PW_Q31) {
             int32_t word = (int32_t)json_number_value(v);
             pw_simulation_run_words(&sim, &word, &word, 1);
@@ -154,7 +152,16 @@ static json_t *play(json_t *o, const pw_realisation *r)
             json_array_append_new(y, json_real(real));
         }
     }
-    return y;
+    return json_pack("{s:o, s:I}", "y", y, "clips", (json_int_t)sim.clipped);
+}
+
+static json_t *plays(json_t *o, const pw_realisation *r)
+{
+    json_t *all = json_array(), *settle;
+    size_t i;
+    json_array_foreach(json_object_get(o, "settle"), i, settle)
+        json_array_append_new(all, play(json_object_get(o, "x"), settle, r));
+    return all;
 }
 
 static pw_status emit(json_t *o, pw_results *results)
@@ -198,7 +205,7 @@ int main(void)
         read_stage(o, stage, results);
         if (emit(o, results)) return 3;
         out = tell(results);
-        if (json_object_get(o, "x")) json_object_set_new(out, "y", play(o, &results->realisation));
+        json_object_set_new(out, "plays", plays(o, &results->realisation));
         json_dumpf(out, stdout, JSON_REAL_PRECISION(17));
         putchar('\n');
         fflush(stdout);
