@@ -34,6 +34,13 @@ void pw_show_span(const pw_stage *stage, const pw_roots *analog, double span_hz[
     if (span_hz[1] < 1000 * span_hz[0]) span_hz[0] = span_hz[1] / 1000;
 }
 
+pw_show_point pw_show_at(const pw_roots *analog, double hz)
+{
+    double log_magnitude, phase;
+    pw_roots_log_at(analog, 2 * M_PI * hz * I, &log_magnitude, &phase);
+    return (pw_show_point){log_magnitude * 20 / M_LN10, phase * 180 / M_PI};
+}
+
 int pw_show_frequencies(const double span_hz[2], double *hz, int room)
 {
     static const double fine[] = {1, 2, 5}, coarse[] = {1, 3}, whole[] = {1};
@@ -103,13 +110,6 @@ static double tidy(double value, int decimals)
     return fabs(value) < 0.5 * pow(10, -decimals) ? 0 : value;
 }
 
-static double decibels(const pw_roots *analog, double hz)
-{
-    double log_magnitude, phase;
-    pw_roots_log_at(analog, 2 * M_PI * hz * I, &log_magnitude, &phase);
-    return log_magnitude * 20 / M_LN10;
-}
-
 static int zeros_at_origin(const pw_roots *analog)
 {
     int n = 0;
@@ -130,7 +130,7 @@ static void put_gain(const pw_roots *analog, const pw_style *style, pw_text *out
     pw_text_print(out, "%sGain%s\n  ", style->strong, style->plain);
     if (!low) {
         double complex dc = pw_roots_at(analog, 0);
-        pw_text_print(out, "%.6g (%.3f dB) at 0 Hz", creal(dc), tidy(decibels(analog, 0), 3));
+        pw_text_print(out, "%.6g (%.3f dB) at 0 Hz", creal(dc), tidy(pw_show_at(analog, 0).db, 3));
     } else pw_text_add(out, low < 0 ? "without end at 0 Hz" : "none at 0 Hz");
     add_slope("; towards 0 Hz", low, out);
     add_slope("; towards infinity", high, out);
@@ -139,26 +139,12 @@ static void put_gain(const pw_roots *analog, const pw_style *style, pw_text *out
 
 /* ---- response ---- */
 
-static double degrees(const pw_roots *analog, double hz)
-{
-    double log_magnitude, phase;
-    pw_roots_log_at(analog, 2 * M_PI * hz * I, &log_magnitude, &phase);
-    return phase * 180 / M_PI;
-}
-
-static int lines_of(const pw_text *text)
-{
-    int n = 0;
-    for (const char *c = pw_text_string(text); *c; c++) n += *c == '\n';
-    return n;
-}
-
 static void put_table(const pw_roots *analog, const double span[2], const pw_style *style,
                       pw_text *out)
 {
     double hz[MOST_ROWS];
     char figure[PW_FIGURE_ROOM];
-    int room = SCREEN - 2 - lines_of(out);
+    int room = SCREEN - 2 - pw_text_lines(out);
     if (room > MOST_ROWS) room = MOST_ROWS;
     int n = pw_show_frequencies(span, hz, room > LEAST_ROWS ? room : LEAST_ROWS);
     pw_table table = {.align = "rrrr"};
@@ -166,10 +152,10 @@ static void put_table(const pw_roots *analog, const double span[2], const pw_sty
     pw_text_print(out, "%sResponse%s\n", style->strong, style->plain);
     for (int i = 0; i < 4; i++) pw_table_cell(&table, "%s", head[i]);
     for (int i = 0; i < n; i++) {
-        double db = decibels(analog, hz[i]);
+        pw_show_point point = pw_show_at(analog, hz[i]);
         pw_table_cell(&table, "%s", pw_figure(figure, hz[i], "Hz"));
-        pw_table_cell(&table, isfinite(db) ? "%.3f dB" : "none", tidy(db, 3));
-        pw_table_cell(&table, "%.2f deg", tidy(degrees(analog, hz[i]), 2));
+        pw_table_cell(&table, isfinite(point.db) ? "%.3f dB" : "none", tidy(point.db, 3));
+        pw_table_cell(&table, "%.2f deg", tidy(point.deg, 2));
         pw_table_cell(&table, "%s", pw_figure(figure, pw_analog_group_delay(analog, hz[i]), "s"));
     }
     pw_table_print(&table, 2, out);

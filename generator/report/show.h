@@ -21,6 +21,10 @@ void pw_show_json(const pw_stage *stage, const pw_roots *analog, pw_text *out);
  * decade above the fastest, at least three decades; about rate/10 where there is none. */
 void pw_show_span(const pw_stage *stage, const pw_roots *analog, double span_hz[2]);
 
+/* The analog response at a frequency: level in dB (-INFINITY at a zero), continuous phase. */
+typedef struct pw_show_point { double db, deg; } pw_show_point;
+pw_show_point pw_show_at(const pw_roots *analog, double hz);
+
 /* Frequencies of a short table over the span, rising: 1-2-5 steps, or decades where those are more
  * than room. Returns how many. */
 int pw_show_frequencies(const double span_hz[2], double *hz, int room);

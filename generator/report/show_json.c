@@ -13,12 +13,11 @@ static json_t *table(const pw_roots *analog, const double span_hz[2])
     json_t *list = json_array();
     for (int i = 0; i < ROWS; i++) {
         double hz = span_hz[0] * pow(span_hz[1] / span_hz[0], i / (double)(ROWS - 1));
-        double log_magnitude, phase;
         json_t *row = json_object();
-        pw_roots_log_at(analog, 2 * M_PI * hz * I, &log_magnitude, &phase);
+        pw_show_point point = pw_show_at(analog, hz);
         pw_json_put(row, "hz", pw_json_number(hz));
-        pw_json_put(row, "analog_db", pw_json_number(log_magnitude * 20 / M_LN10));
-        pw_json_put(row, "analog_deg", pw_json_number(phase * 180 / M_PI));
+        pw_json_put(row, "analog_db", pw_json_number(point.db));
+        pw_json_put(row, "analog_deg", pw_json_number(point.deg));
         pw_json_put(row, "analog_delay_s", pw_json_number(pw_analog_group_delay(analog, hz)));
         json_array_append_new(list, row);
     }

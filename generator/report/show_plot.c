@@ -30,9 +30,7 @@ typedef struct reach { double low, high; } reach;
 
 static void add_level(const pw_roots *analog, double hz, reach *to)
 {
-    double log_magnitude, phase;
-    pw_roots_log_at(analog, 2 * M_PI * hz * I, &log_magnitude, &phase);
-    double db = log_magnitude * 20 / M_LN10;
+    double db = pw_show_at(analog, hz).db;
     if (isnan(db)) return;
     to->low = fmin(to->low, db);
     to->high = fmax(to->high, db);

@@ -30,6 +30,13 @@ int pw_text_width(const char *text)
     return width;
 }
 
+int pw_text_lines(const pw_text *text)
+{
+    int n = 0;
+    for (const char *c = pw_text_string(text); *c; c++) n += *c == '\n';
+    return n;
+}
+
 /* The text after this cell; null after the last. */
 static const char *next(const pw_table *table, const char *cell)
 {

@@ -22,5 +22,7 @@ void pw_table_print(pw_table *table, int indent, pw_text *out);
 
 /* Columns that a text takes on a terminal. */
 int pw_text_width(const char *text);
+/* Lines that a text takes there. */
+int pw_text_lines(const pw_text *text);
 
 #endif

@@ -112,13 +112,6 @@ static void put_nodes(const pw_results *results, int lines, pw_text *out)
     pw_table_print(&table, 2, out);
 }
 
-static int lines_of(const pw_text *text)
-{
-    int n = 0;
-    for (const char *c = pw_text_string(text); *c; c++) n += *c == '\n';
-    return n;
-}
-
 /* How much is left out, in this order, where a screen has no room for everything. */
 typedef enum room { ROOM_FOR_ALL, NO_ERROR_PARTS, NO_COST, NO_SPREAD, NO_CYCLES } room;
 
@@ -149,10 +142,10 @@ static void put_screen(const pw_results *results, const pw_style *style, pw_text
         pw_text_free(&head);
         pw_text_free(&tail);
         compose(results, (room)left_out, style, &head, &tail);
-        if (lines_of(out) + lines_of(&head) + lines_of(&tail) <= SCREEN) break;
+        if (pw_text_lines(out) + pw_text_lines(&head) + pw_text_lines(&tail) <= SCREEN) break;
     }
     pw_text_add(out, pw_text_string(&head));
-    put_nodes(results, SCREEN - lines_of(out) - lines_of(&tail), out);
+    put_nodes(results, SCREEN - pw_text_lines(out) - pw_text_lines(&tail), out);
     pw_text_add(out, pw_text_string(&tail));
     pw_text_free(&head);
     pw_text_free(&tail);
