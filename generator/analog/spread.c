@@ -40,7 +40,7 @@ static void add_varied(pw_study *study, int circuit)
     }
 }
 
-static void begin_study(const pw_stage *stage, const pw_circuit_list *list, const double *hz,
+void pw_study_begin(const pw_stage *stage, const pw_circuit_list *list, const double *hz,
                         int rows, pw_study *study)
 {
     int parts = 0;
@@ -58,14 +58,14 @@ static void begin_study(const pw_stage *stage, const pw_circuit_list *list, cons
     }
 }
 
-static void end_study(pw_study *study)
+void pw_study_end(pw_study *study)
 {
     for (int i = 0; i < study->circuits; i++) pw_net_free(&study->net[i]);
     pw_arena_free(&study->arena);
 }
 
 /* The nominal stage by the same equations, so that ratios to it are exact where nothing moves. */
-static bool find_nominal(pw_study *study)
+bool pw_study_nominal(pw_study *study)
 {
     pw_bench bench;
     pw_bench_make(study, &bench);
@@ -237,7 +237,7 @@ static pw_status spread_study(const pw_stage *stage, const pw_roots *analog, pw_
     if (!study->n) return PW_OK;
     pw_spread *spread = new_spread(stage, study, options);
     for (int i = 0; i < study->rows; i++) fill_nominal(analog, &spread->row[i], study->hz[i]);
-    if (!find_nominal(study) || !pw_study_corners(study, spread->row)) {
+    if (!pw_study_nominal(study) || !pw_study_corners(study, spread->row)) {
         pw_error(messages, stage->analog.at,
                  "the circuit has no response at a corner of its tolerances; "
                  "expected smaller tolerances");
@@ -260,9 +260,9 @@ pw_status pw_spread_compute_at(const pw_stage *stage, const pw_roots *analog, co
     *out = NULL;
     pw_status status = pw_circuits_of(&stage->analog, &arena, &list, messages);
     if (!status && n > 0) {
-        begin_study(stage, &list, hz, n, &study);
+        pw_study_begin(stage, &list, hz, n, &study);
         status = spread_study(stage, analog, &study, options, out, messages);
-        end_study(&study);
+        pw_study_end(&study);
     }
     pw_arena_free(&arena);
     return status;
