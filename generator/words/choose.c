@@ -79,6 +79,13 @@ static bool zero_at_one(const pw_section *section)
     return false;
 }
 
+/* A section that blocks a constant, and yet would rest more than one LSB from zero: plain rounding
+ * moves y no more where |(1 + a1 + a2) y| is at most half an LSB. */
+static bool holds_offset(const pw_section *section)
+{
+    return zero_at_one(section) && fabs(1 + section->a[1] + section->a[2]) <= 0.25;
+}
+
 static void set_all(pw_job *job, pw_structure structure)
 {
     for (int k = 0; k < job->out->count; k++)
@@ -181,7 +188,8 @@ static bool automatic(pw_job *job)
     for (int k = 0; k < job->out->count; k++) {
         const pw_section *section = &job->out->ideal[k];
         bool loud = !noise->given && pw_feedback_power(section->a, 0, 0) / 12 > QUIET;
-        if ((loud || pw_integrates_from(job->out, k)) && shapes(job, k)) {
+        bool holds = pw_integrates_from(job->out, k) || holds_offset(section);
+        if ((loud || holds) && shapes(job, k)) {
             job->structure[k] = PW_DIRECT_1_SHAPED;
             job->out->structure_why = WHY_SHAPED;
         }

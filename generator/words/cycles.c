@@ -1,7 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The bound: once transients are gone, a zero-input cycle is the response to its own rounding errors,
  * so it is no larger than the sum of half steps times the L1 norms from their places to the output;
- * amplitudes are whole or half LSB, so the bound is rounded down to those.
+ * amplitudes are whole or half LSB, so the bound is rounded down to those. It holds as long as nothing
+ * wraps: where an input within the peak can make a node wrap, what follows may keep itself up at any
+ * size, so the bound is full scale; where none can, cycles that wrap are not reached and not counted.
  *
  * The search: bit-true runs without input, and with small constant inputs, from states where cycles
  * are known to live: a constant and an alternating value at the edge of the dead band
@@ -25,6 +27,7 @@ typedef struct hunt {
     long left;                   /* section steps */
     uint64_t random;
     double bound[PW_MAX_SECTIONS];   /* LSB, of a cycle at each section's output */
+    bool overflows;              /* an input within the peak can make a node clip or wrap */
     int64_t start[PW_MAX_SECTIONS][6];
 } hunt;
 
@@ -36,10 +39,10 @@ static int64_t random_within(hunt *h, double size)
     return (int64_t)rint((2 * unit - 1) * fmin(size, limit));
 }
 
-static int64_t step_all(const hunt *h, int64_t state[][6], int64_t x)
+static int64_t step_all(const hunt *h, int64_t state[][6], int64_t x, uint64_t *clips)
 {
     for (int k = 0; k < h->r->count; k++)
-        x = pw_step_section(h->format, h->r->wrap, &h->r->section[k], state[k], x, NULL);
+        x = pw_step_section(h->format, h->r->wrap, &h->r->section[k], state[k], x, clips);
     return x;
 }
 
@@ -53,7 +56,7 @@ static bool find_cycle(hunt *h, int64_t input, long most, int64_t state[][6], in
     memcpy(state, h->start, bytes);
     memcpy(mark, state, bytes);
     for (long n = 0; n < most; n++) {
-        step_all(h, state, input);
+        step_all(h, state, input, NULL);
         h->left -= h->r->count;
         since++;
         if (memcmp(mark, state, bytes) == 0) {
@@ -69,12 +72,12 @@ static bool find_cycle(hunt *h, int64_t input, long most, int64_t state[][6], in
 }
 
 /* What a cycle does at the output: the largest value without input, half the swing with one. */
-static double amplitude(hunt *h, int64_t input, int64_t state[][6], int period)
+static double amplitude(hunt *h, int64_t input, int64_t state[][6], int period, uint64_t *clips)
 {
     int64_t copy[PW_MAX_SECTIONS][6], high = INT64_MIN, low = INT64_MAX;
     memcpy(copy, state, (size_t)h->r->count * sizeof copy[0]);
     for (int n = 0; n < period; n++) {
-        int64_t y = step_all(h, copy, input);
+        int64_t y = step_all(h, copy, input, clips);
         high = y > high ? y : high, low = y < low ? y : low;
     }
     h->left -= (long)period * h->r->count;
@@ -88,7 +91,10 @@ static void attempt(hunt *h, int64_t input)
     pw_limit_cycle *found = &h->r->limit_cycle;
     if (h->left <= 0 || !find_cycle(h, input, h->left / (6 * h->r->count) + 64, state, &period))
         return;
-    double size = amplitude(h, input, state, period);
+    uint64_t clips = 0;
+    double size = amplitude(h, input, state, period, &clips);
+    if (clips && !h->overflows)
+        return;                  /* kept up by overflow, which no input brings about */
     if (input)
         found->found_constant_lsb = fmax(found->found_constant_lsb, size);
     if (input || !(size > found->found_lsb))
@@ -173,7 +179,10 @@ void pw_cycles_find(pw_proof *proof, pw_realisation *r)
     c->bound_lsb = h.bound[r->count - 1];
     if (isinf(c->bound_lsb))
         return;
-    c->bound_lsb = floor(2 * c->bound_lsb) / 2;
+    for (int i = 0; i < r->nodes; i++)
+        h.overflows = h.overflows || r->node[i].can_clip;
+    double whole = ldexp(1, proof->format.sample_bits - 1);
+    c->bound_lsb = r->wrap && h.overflows ? whole : fmin(floor(2 * c->bound_lsb) / 2, whole);
     for (int k = 0; k < r->count; k++)
         section_attempts(&h, k);
     random_attempts(&h);

@@ -112,6 +112,23 @@ static long double any_state(const pw_format *format, const pw_words *w, long do
     return sum + format->lsb * (1 + abs(w->k1) + abs(w->k2));
 }
 
+/* Over every state and every input up to the given size: a word of the rotation, unclamped. */
+static long double any_word(const pw_format *format, const pw_words *w, int place,
+                            long double input)
+{
+    long double drive = place == PW_PLACE_U1 ? fabsl((long double)w->g) * input : 0;
+    long double turn = fabsl((long double)w->sigma) + fabsl((long double)w->omega);
+    return ldexpl(turn + drive, -w->a_fraction) + format->lsb;
+}
+
+/* Whether a clamp can act inside the recursion of the rotation: then the linear bounds of the other
+ * word and of the output hold no more. The clamp of the output alone is behind it. */
+static bool words_clip(const pw_format *format, const pw_words *w, const section_bound *s)
+{
+    return format->fixed && w->structure == PW_COUPLED
+        && !(s->bound[PW_PLACE_U1] <= format->largest && s->bound[PW_PLACE_U2] <= format->largest);
+}
+
 /* ---- nodes ---- */
 
 static pw_node *add_node(pw_realisation *r, int section, const char *what)
@@ -164,18 +181,24 @@ static pw_node *node_of(pw_realisation *r, int section, int which)
 static void record(pw_proof *p, pw_realisation *r, int k, const section_bound *s, long double input)
 {
     const pw_words *w = &r->section[k];
+    bool turned = words_clip(&p->format, w, s);
     long double out = s->bound[PW_PLACE_OUTPUT];
-    if (s->clips && !p->paths.integrates[k] && w->structure == PW_COUPLED)
+    if (turned)
         out = fmaxl(out, any_state(&p->format, w, input));
     fill_node(&p->format, node_of(r, k, 0), out, s->gain[PW_PLACE_OUTPUT]);
     node_of(r, k, 0)->integrates = p->paths.integrates[k];
     if (w->structure == PW_COUPLED) {
-        for (int i = 1; i < PW_PLACES; i++)
-            fill_node(&p->format, node_of(r, k, i), s->bound[i], s->gain[i]);
+        for (int i = 1; i < PW_PLACES; i++) {
+            long double word = s->bound[i];
+            if (turned && word <= p->format.largest)
+                word = fmaxl(word, any_word(&p->format, w, i, input));
+            fill_node(&p->format, node_of(r, k, i), word, s->gain[i]);
+        }
     } else if (p->format.fixed) {
         long double acc = s->clips ? any_state(&p->format, w, input)
                                    : out + p->format.lsb * (p->format.truncate ? 1 : 0.5L);
         fill_node(&p->format, node_of(r, k, 1), acc, s->gain[PW_PLACE_OUTPUT]);
+        node_of(r, k, 1)->can_clip = s->clips;     /* half a step above a word is still that word */
     }
 }
 
