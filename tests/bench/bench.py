@@ -80,7 +80,9 @@ def main():
             file.write("\n")
     if not names:
         import host
+        import circuits_bench
         host.main()
+        circuits_bench.main()
 
 
 if __name__ == "__main__":
