@@ -143,6 +143,15 @@ static void full_scale(void **state)
     drop(&o);
 }
 
+/* The larger side of zero counts. */
+static void full_scale_below_zero(void **state)
+{
+    (void)state;
+    outcome o = read_well(HEAD ROOTS "signal:\n  input: {high: 3 V, zero: 2 V}\n");
+    assert_true(o.stage.input.full_scale == 2 && o.stage.input.peak == 2);
+    drop(&o);
+}
+
 /* ---- roots ---- */
 
 #define WITH(zeros, poles)                                                                         \
@@ -310,6 +319,20 @@ static void places(void **state)
     assert_says("stage: &n quay_hum\nabout: *n\nrate: &r 8 kV\n", "f:3:7: rate:");
 }
 
+/* Columns count characters, not bytes, also where the text is refused before it is YAML. */
+static void utf8_places(void **state)
+{
+    (void)state;
+    pw_where at;
+    assert_non_null(pw_utf8_fault("a\nä€\xf0\x9f\x8c\x8a\xff", 12, &at));
+    assert_true(at.line == 2 && at.column == 4);
+    assert_non_null(pw_utf8_fault("a\r\nb\rc\xed\xa0\x80", 9, &at));   /* a surrogate */
+    assert_true(at.line == 3 && at.column == 2);
+    assert_null(pw_utf8_fault("\t\xf4\x8f\xbf\xbd\n", 6, &at));
+    assert_non_null(pw_utf8_fault("\xf4\x90\x80\x80", 4, &at));        /* above U+10FFFF */
+    assert_non_null(pw_utf8_fault("\xe2\x82", 2, &at));                /* cut off */
+}
+
 /* A fault in an anchored value is told where the value stands, once. */
 static void alias_place(void **state)
 {
@@ -377,7 +400,7 @@ int main(void)
         cmocka_unit_test(digest),
         cmocka_unit_test(taken_defaults),
         cmocka_unit_test(word_lengths),
-        cmocka_unit_test(full_scale),
+        cmocka_unit_test(full_scale), cmocka_unit_test(full_scale_below_zero),
         cmocka_unit_test(root_texts),
         cmocka_unit_test(resonances),
         cmocka_unit_test(damping_is_half_over_q),
@@ -386,7 +409,7 @@ int main(void)
         cmocka_unit_test(later_override_wins),
         cmocka_unit_test(override_mends),
         cmocka_unit_test(override_of_an_alias),
-        cmocka_unit_test(places),
+        cmocka_unit_test(places), cmocka_unit_test(utf8_places),
         cmocka_unit_test(alias_place),
         cmocka_unit_test(warnings_are_no_errors),
         cmocka_unit_test(table_is_whole),
