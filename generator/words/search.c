@@ -150,9 +150,10 @@ static int gather(search *s, const double rounded[3], candidate kept[KEPT])
     return n;
 }
 
+/* A step of 0 is that of a coefficient that is exactly 0 (a zero at z = 0): it stays. */
 static double round_to(double value, double step)
 {
-    return rint(value / step) * step;
+    return step > 0 ? rint(value / step) * step : value;
 }
 
 /* Values of b for a unit-circle pair: first = second / ratio, with a second that is nearly whole. */

@@ -14,6 +14,11 @@ import numpy as np
 from stages import STAGES
 from tap import check, done, polewright
 
+# Beside the stages whose pages are looked at: zeros at z = 0, whose words are exactly 0.
+FIGURES = dict(STAGES, delayed={
+    "stage": "echo_gate", "rate": "2 MHz", "transform": {"method": "impulse-invariant"},
+    "analog": {"family": {"approximation": "bessel", "shape": "lowpass", "order": 6, "corner": "200 kHz"}},
+    "limits": {"band": ["10 Hz", "300 kHz"], "delay": "1 ns"}})
 N, I, S, B = (int, float), int, str, bool
 PEAK = {"max": N, "at_hz": N}
 ERROR = {"magnitude_db": PEAK, "phase_deg": PEAK}
@@ -149,7 +154,7 @@ def check_words(name, r):
 def check_verdict(name, r, status):
     met = all(row["met"] for row in r["limits"])
     check((r["verdict"] == "met") == met == (status == 0), f"{name}: verdict, limits and exit status agree")
-    wanted = set(STAGES[name].get("limits", {})) - {"band", "floor"}
+    wanted = set(FIGURES[name].get("limits", {})) - {"band", "floor"}
     check({row["name"] for row in r["limits"]} == wanted, f"{name}: a row for each limit that was given")
     named = r["transform"]["candidates"]
     check(any(c["method"] == r["transform"]["method"] for c in named), f"{name}: the method is one that was tried")
@@ -167,7 +172,7 @@ def check_text(name, stage):
 
 
 def main():
-    for name, stage in STAGES.items():
+    for name, stage in FIGURES.items():
         ran = polewright("check", "-", "--json", stdin=json.dumps(stage))
         report = json.loads(ran.stdout)
         wrong = faults(report, CONTRACT)
