@@ -1,6 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include "verbs/analysis.h"
 
+#include <math.h>
+#include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
 
@@ -47,6 +49,19 @@ pw_status pw_analysis_model(const pw_call *call, pw_analysis *analysis)
     return pw_analysis_tell(call, analysis, status);
 }
 
+/* The last net under the search for words: nothing that is no number goes on to a verdict or to C. */
+static pw_status check_words(const pw_realisation *r)
+{
+    for (int i = 0; i < r->count; i++)
+        for (int k = 0; k < 3; k++)
+            if (!isfinite(r->section[i].realised_b[k]) || !isfinite(r->section[i].realised_a[k])) {
+                fprintf(stderr, "polewright: the words of section %d did not come out as numbers; try another"
+                        " arithmetic.structure or transform.method\n", i + 1);
+                return PW_FAILED;
+            }
+    return PW_OK;
+}
+
 static pw_status realise(pw_analysis *analysis)
 {
     const pw_stage *stage = &analysis->stage;
@@ -55,7 +70,7 @@ static pw_status realise(pw_analysis *analysis)
     if (!status) status = pw_discretise(stage, &r->analog, &r->digital, &analysis->messages);
     if (!status)
         status = pw_realise(stage, &r->analog, &r->digital, &r->target, &r->realisation, &analysis->messages);
-    return status;
+    return status ? status : check_words(&r->realisation);
 }
 
 pw_status pw_analysis_results(const pw_call *call, pw_analysis *analysis)
