@@ -5,7 +5,7 @@
  * largest deviation over the band is the same up and down, rounded, and its neighbours are tried.
  * The rounded words are among the candidates, so the result is never worse than rounding. Where the
  * zeros are a pair on the unit circle, the two values of b are taken as the fraction that is nearest
- * to their ratio, within a millionth of gain: the notch then stands where it should. */
+ * to their ratio, within GAIN_GIVEN of gain: the notch then stands where it should. */
 #include "words/search.h"
 
 #include <complex.h>
@@ -14,6 +14,7 @@
 
 #define REACH 2                  /* steps of a, each way */
 #define KEPT 4                   /* pairs of a whose b is searched */
+#define GAIN_GIVEN 5e-5          /* of gain that a notch may cost to stand where it should: 0.0004 dB */
 #define POINTS ((int)(sizeof ((pw_band *)0)->hz / sizeof(double)))
 
 typedef struct candidate {
@@ -156,18 +157,20 @@ static double round_to(double value, double step)
     return step > 0 ? rint(value / step) * step : value;
 }
 
-/* Values of b for a unit-circle pair: first = second / ratio, with a second that is nearly whole. */
+/* Values of b for a unit-circle pair whose ratio is nearly that of whole numbers: the first such pair on
+ * either side of the rounded one. Near z = 1 the ratio is almost -2, and the way there is long. */
 static void fit_ratio(const search *s, double scale, double value[3])
 {
     double step = s->b_step[0], w0 = rint((double)s->basis.value[0] * scale / step);
     long double ratio = s->basis.value[1] / s->basis.value[0];
-    int reach = s->format->word_bits == 16 ? 1 : (int)fmin(400, fabs(w0) * 1e-6);
+    int reach = 1 + (int)fmin(40000, fabs(w0) * GAIN_GIVEN);
     double best = INFINITY;
-    for (int d = -reach; d <= reach; d++) {
-        long double exact = ratio * (w0 + d), off = fabsl(exact - rintl(exact));
+    for (int d = 0; d <= 2 * reach && best > 0.01; d++) {
+        int away = d % 2 ? (d + 1) / 2 : -d / 2;
+        long double exact = ratio * (w0 + away), off = fabsl(exact - rintl(exact));
         if ((double)off < best) {
             best = (double)off;
-            value[0] = (w0 + d) * step;
+            value[0] = (w0 + away) * step;
             value[1] = (double)rintl(exact) * step;
         }
     }
