@@ -38,11 +38,18 @@ static const char *amount(char *buffer, double value, const char *unit)
 
 /* ---- Gains ---- */
 
+/* So that a small negative value does not print as -0. */
+static double decibels(double gain)
+{
+    double db = 20 * log10(fabs(gain));
+    return fabs(db) < 0.0005 ? 0 : db;
+}
+
 static void put_gain(const char *where, double gain, pw_text *out)
 {
     if (isinf(gain)) pw_text_print(out, "%s without end", where);
     else if (gain == 0) pw_text_print(out, "%s 0", where);
-    else pw_text_print(out, "%s %.5g (%.3f dB)", where, gain, 20 * log10(fabs(gain)) + 0.0);
+    else pw_text_print(out, "%s %.5g (%.3f dB)", where, gain, decibels(gain));
 }
 
 static void put_gains(const pw_sensitivity *s, pw_text *out)
@@ -51,8 +58,10 @@ static void put_gains(const pw_sensitivity *s, pw_text *out)
     bool integrates = isinf(s->gain[PW_GAIN_DC]);
     pw_text_add(out, "  gain: ");
     put_gain("DC", s->gain[PW_GAIN_DC], out);
-    put_gain(integrates ? "; mid-band" : "; largest", s->gain[PW_GAIN_MIDDLE], out);
-    pw_text_print(out, " at %s", pw_si(hz, s->middle_hz, "Hz", 4));
+    if (s->middle_hz > 0) {
+        put_gain(integrates ? "; mid-band" : "; largest", s->gain[PW_GAIN_MIDDLE], out);
+        pw_text_print(out, " at %s", pw_si(hz, s->middle_hz, "Hz", 4));
+    } else pw_text_add(out, ", the largest");
     put_gain("; infinity", s->gain[PW_GAIN_INFINITY], out);
     pw_text_add(out, "\n");
 }

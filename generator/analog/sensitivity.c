@@ -9,6 +9,7 @@
 #include "analog/sensitivity_adjoint.h"
 
 #define STEP 1e-8               /* relative change of a part */
+#define GRID 2000                /* frequencies that are tried for the largest gain */
 #define TOGETHER 1e-4            /* real roots this close, relative, are one cluster */
 
 #define TWO_PI 6.28318530717958647692528676655900577L
@@ -141,25 +142,43 @@ static int at_origin(const pw_quad_roots *r, bool zero)
     return n;
 }
 
-/* The largest gain over the range of the modes; with poles at 0 the middle of that range. */
+static long double gain_at(const pw_quad_roots *r, double hz)
+{
+    return cabsl(response(r, TWO_PI * hz));
+}
+
+/* Golden section between the neighbours of the largest of a grid, on a logarithmic scale. */
+static double refine(const pw_quad_roots *r, double low, double high)
+{
+    const double part = 0.6180339887498949;
+    for (int i = 0; i < 60; i++) {
+        double ratio = pow(high / low, part), up = low * ratio, down = high / ratio;
+        if (gain_at(r, up) > gain_at(r, down)) low = down;
+        else high = up;
+    }
+    return sqrt(low * high);
+}
+
+/* Where the gain is largest, from DC (0) to two decades above the modes; with poles at 0 the middle
+ * of the modes. */
 static double find_middle(const pw_quad_roots *r, const pw_sensitivity *s)
 {
-    double low = INFINITY, high = 0, best = 0;
+    double low = INFINITY, high = 0, step, best = 0;
     for (int i = 0; i < s->modes; i++) {
         low = fmin(low, s->mode[i].f0_hz);
         high = fmax(high, s->mode[i].f0_hz);
     }
-    if (!s->modes) return 1e3;
-    if (at_origin(r, false)) return sqrt(low * high);
-    long double most = 0;
-    for (int i = 0; i <= 2000; i++) {
-        double hz = low / 100 * pow(high / low * 1e4, i / 2000.0);
-        long double size = cabsl(response(r, TWO_PI * hz));
-        if (size <= most * (1 + 1e-12L)) continue;
-        most = size;
+    if (at_origin(r, false)) return s->modes ? sqrt(low * high) : 1e3;
+    if (!s->modes) return 0;
+    long double most = gain_at(r, 0) * (1 + 1e-9L);
+    step = pow(high / low * 1e4, 1.0 / GRID);
+    for (int i = 0; i <= GRID; i++) {
+        double hz = low / 100 * pow(step, i);
+        if (gain_at(r, hz) <= most) continue;
+        most = gain_at(r, hz);
         best = hz;
     }
-    return best;
+    return best > 0 ? refine(r, best / step, best * step) : 0;
 }
 
 static void find_gains(const pw_quad_roots *r, double middle_hz, double *gain)
@@ -252,12 +271,13 @@ static bool derive_modes(const pw_net *net, pw_sensitivity *out, long_complex *m
 /* DC and infinity are taken far below and above every root, where magnitudes stand to 1e-12. */
 static void derive_gains(const pw_net *net, pw_sensitivity *out, long_complex *move)
 {
-    double low = out->middle_hz, high = out->middle_hz;
+    double low = out->middle_hz > 0 ? out->middle_hz : INFINITY, high = out->middle_hz;
     for (int i = 0; i < out->modes; i++) {
         low = fmin(low, out->mode[i].f0_hz);
         high = fmax(high, out->mode[i].f0_hz);
     }
-    double hz[] = {low * 1e-6, out->middle_hz, high * 1e6};
+    if (isinf(low)) low = high = 1;
+    double hz[] = {low * 1e-6, fmax(out->middle_hz, low * 1e-6), high * 1e6};
     for (int k = 0; k < PW_GAIN_PLACES; k++) {
         bool there = isfinite(out->gain[k]) && out->gain[k] != 0
                      && pw_adjoint_gain(net, CMPLXL(0, TWO_PI * hz[k]), move);

@@ -36,7 +36,8 @@ typedef struct pw_sensitivity {
     const pw_circuit *circuit;
     int modes;
     pw_mode mode[2 * PW_MAX_ROOTS];              /* poles first; roots at 0 are left out */
-    double middle_hz;                            /* where the middle gain is taken: the largest */
+    double middle_hz; /* where the gain is largest; 0: at DC. With poles at
+                                                    0: the middle of the modes */
     double gain[PW_GAIN_PLACES];                 /* signed at DC and infinity, |H| in the middle;
                                                     INFINITY with poles at 0 */
     int parts;

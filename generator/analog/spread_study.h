@@ -29,12 +29,12 @@ typedef struct pw_change {
     double log_ratio, degrees, delay_s;
 } pw_change; /* natural log of |H/H0| */
 
-/* The study of a stage's circuits at these frequencies (above 0, borrowed): every part with a tolerance
- * is varied. seed: of the stage. Ended by pw_study_end. */
+/* The study of a stage's circuits at these frequencies (above 0, borrowed): every part with a
+ * tolerance is varied. seed: of the stage. Ended by pw_study_end. */
 void pw_study_begin(const pw_stage *stage, const pw_circuit_list *list, const double *hz, int rows,
                     pw_study *study);
 void pw_study_end(pw_study *study);
-/* Finds the nominal stage by the same equations; before any pw_bench_at. false: it has no response. */
+/* Finds the nominal stage by the same equations; before any pw_bench_at. false: no response. */
 bool pw_study_nominal(pw_study *study);
 
 /* What one thread evaluates stages with. */

@@ -202,6 +202,35 @@ static void integrator_of_a_real_op_amp(void **state)
     pw_arena_free(&arena);
 }
 
+/* A multiple-feedback band-pass of Q 70: its gain at f0 is -R3 C1 / (R1 (C1 + C2)) (Franco, ch. 3);
+ * a low-pass without a peak is largest at DC. */
+static void where_the_gain_is_largest(void **state)
+{
+    (void)state;
+    fixture f;
+    pw_arena arena = {0};
+    pw_sensitivity s;
+    compute(CIRCUIT(PARTS(
+                "R1: {resistor: 10k, between: [in, a]}, R2: {resistor: 51, between: [a, ground]}, "
+                "C1: {capacitor: 10n, between: [a, m]}, C2: {capacitor: 10n, between: [a, out]}, "
+                "R3: {resistor: 1M, between: [m, out]}, "
+                "U1: {op-amp: ideal, plus: ground, minus: m, out: out}")),
+            &f, &arena, &s);
+    NEAR(s.gain[PW_GAIN_MIDDLE], 50);
+    assert_true(fabs(s.middle_hz / s.mode[0].f0_hz - 1) < 1e-6);
+    NEAR(s.gain_db[row_of(&s, "R1")][PW_GAIN_MIDDLE], -0.2 / M_LN10);
+    NEAR(s.gain_db[row_of(&s, "R3")][PW_GAIN_MIDDLE], 0.2 / M_LN10);
+    NEAR(s.gain_db[row_of(&s, "C1")][PW_GAIN_MIDDLE], 0.1 / M_LN10);
+    fixture_free(&f);
+    compute(CIRCUIT(PARTS("R1: {resistor: 10k, between: [in, out]}, "
+                          "C1: {capacitor: 10n, between: [out, ground]}")), &f, &arena, &s);
+    assert_true(s.middle_hz == 0);
+    NEAR(s.gain[PW_GAIN_MIDDLE], 1);
+    NEAR(s.gain_db[0][PW_GAIN_MIDDLE], 0);
+    fixture_free(&f);
+    pw_arena_free(&arena);
+}
+
 /* IEC 60063: values of each series, with those that are not rounded powers. */
 static void preferred_values(void **state)
 {
@@ -275,7 +304,7 @@ int main(void)
         cmocka_unit_test(sums_of_sensitivities),
         cmocka_unit_test(derivatives_against_steps), cmocka_unit_test(double_pole),
         cmocka_unit_test(integrator_of_a_real_op_amp),
-        cmocka_unit_test(preferred_values),
+        cmocka_unit_test(where_the_gain_is_largest), cmocka_unit_test(preferred_values),
         cmocka_unit_test(published_series),
         cmocka_unit_test(show_names_every_part),
     };
