@@ -18,7 +18,7 @@ PACKAGES_BUILD := gcc make pkg-config libgsl-dev libyaml-dev libjansson-dev libm
                   libmpc-dev libmpfr-dev libgmp-dev
 PACKAGES_RUN   := gnuplot-nox
 PACKAGES_TEST  := g++ clang libcmocka-dev python3 python3-numpy python3-scipy python3-mpmath python3-yaml \
-                  python3-jsonschema chromium chromium-driver fonts-dejavu-core \
+                  python3-jsonschema mandoc lintian debootstrap zsh cmake chromium chromium-driver fonts-dejavu-core \
                   $(if $(shell command -v npm),,npm)
 PACKAGES_PART  := gcc-arm-none-eabi libnewlib-arm-none-eabi qemu-system-arm qemu-system-misc \
                   gcc-riscv64-unknown-elf picolibc-riscv64-unknown-elf gcc-avr avr-libc libsimavr-dev libelf1
@@ -135,7 +135,8 @@ sizes: all                       ## the size of the program and of each runtime 
 # ---- Installing ----
 
 SHARE = $(DESTDIR)$(PREFIX)/share
-LIB   = $(DESTDIR)$(PREFIX)/lib
+LIBDIR ?= lib
+LIB   = $(DESTDIR)$(PREFIX)/$(LIBDIR)
 DOCS := $(OUT)/documents
 
 $(OUT)/make-documents: $(OUT)/generator/documents.o $(OBJECTS)
@@ -167,9 +168,9 @@ install: all documents $(OUT)/libpolewright-runtime.a          ## installs under
 	install -d $(DESTDIR)$(PREFIX)/include/polewright $(LIB)/pkgconfig $(LIB)/cmake/polewright-runtime
 	install -m 644 include/polewright/*.h runtime/*.h $(DESTDIR)$(PREFIX)/include/polewright/
 	install -m 644 $(OUT)/libpolewright-runtime.a $(LIB)/
-	sed -e 's|@PREFIX@|$(PREFIX)|' -e 's|@VERSION@|$(VERSION)|' generator/packaging/polewright-runtime.pc.in \
+	sed -e 's|@PREFIX@|$(PREFIX)|' -e 's|@LIBDIR@|$(LIBDIR)|' -e 's|@VERSION@|$(VERSION)|' generator/packaging/polewright-runtime.pc.in \
 	  > $(LIB)/pkgconfig/polewright-runtime.pc
-	sed -e 's|@VERSION@|$(VERSION)|' generator/packaging/polewright-runtime-config.cmake.in \
+	sed -e 's|@PREFIX@|$(PREFIX)|' -e 's|@LIBDIR@|$(LIBDIR)|' -e 's|@VERSION@|$(VERSION)|' generator/packaging/polewright-runtime-config.cmake.in \
 	  > $(LIB)/cmake/polewright-runtime/polewright-runtime-config.cmake
 	install -m 644 $(DOCS)/polewright-stage.schema.json $(SHARE)/polewright/
 	install -D -m 644 $(DOCS)/polewright.1 $(SHARE)/man/man1/polewright.1

@@ -223,6 +223,8 @@ static int stands(const char *root, const char *name, char *buffer, size_t room)
 pw_status pw_data_path(const char *name, char *buffer, size_t room)
 {
     static const char *const near[] = {"/../share/polewright", "/..", "/../..", "/../../.."};
+    /* For where /proc does not tell where the program stands. */
+    static const char *const installed[] = {PW_PREFIX "/share/polewright", "/usr/share/polewright"};
     const char *told = getenv("POLEWRIGHT_DATA");
     if (told && *told && stands(told, name, buffer, room)) return PW_OK;
     char self[PATH_MAX];
@@ -235,7 +237,8 @@ pw_status pw_data_path(const char *name, char *buffer, size_t room)
             if (stands(self, name, buffer, room)) return PW_OK;
         }
     }
-    if (stands(PW_PREFIX "/share/polewright", name, buffer, room)) return PW_OK;
+    for (size_t i = 0; i < sizeof installed / sizeof installed[0]; i++)
+        if (stands(installed[i], name, buffer, room)) return PW_OK;
     fprintf(stderr, "polewright: the shipped file %s is not found; set POLEWRIGHT_DATA to the "
                     "directory that holds runtime/ and targets/\n", name);
     return PW_FAILED;

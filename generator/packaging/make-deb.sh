@@ -11,10 +11,9 @@ arch=$(dpkg --print-architecture)
 export SOURCE_DATE_EPOCH
 rm -rf "$root"
 mkdir -p "$root/DEBIAN" "$root/usr/share/doc/polewright"
-make -s install PREFIX=/usr DESTDIR="$root"
-# Debian keeps a program's own data out of the architecture's library folders: nothing else to move.
+make -s install PREFIX=/usr LIBDIR="lib/$(dpkg-architecture -qDEB_HOST_MULTIARCH)" DESTDIR="$root"
 strip --strip-unneeded "$root/usr/bin/polewright"
-strip --strip-debug "$root"/usr/lib/*.a
+strip --strip-debug "$root"/usr/lib/*/*.a
 gzip -9n "$root"/usr/share/man/man*/*
 install -m 644 $here/copyright "$root/usr/share/doc/polewright/copyright"
 printf 'polewright (%s) unstable; urgency=medium\n\n  * Release %s.\n\n -- polewright maintainers <maintainers@polewright.example>  %s\n' \
