@@ -356,7 +356,8 @@ void pw_cells_list(pw_text *out)
         const pw_cell_kind *kind = pw_cell_row(i);
         pw_text_print(out, "\n  %s: %s\n      parts: ", kind->name, kind->about);
         list_parts(kind, out);
-        pw_text_print(out, "\n      H(s) = %s\n      (%s)\n", kind->formula, kind->source);
+        pw_text_print(out, "\n      H(s) = %s\n      %s\n      (%s)\n", kind->formula,
+                      pw_cell_figures(kind->name), kind->source);
         list_diagram(kind->diagram, out);
     }
 }

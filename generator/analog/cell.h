@@ -23,6 +23,9 @@ typedef struct pw_cell_kind {
 extern const pw_cell_kind pw_cells_passive[], pw_cells_amplifier[], pw_cells_filter[];
 extern const int pw_cells_passive_count, pw_cells_amplifier_count, pw_cells_filter_count;
 
+/* f0, Q and gain of the kind of this name by hand, one line of ASCII; null where there is none. */
+const char *pw_cell_figures(const char *name);
+
 /* Row i of all kinds in their order of listing; null at the end. */
 const pw_cell_kind *pw_cell_row(int i);
 /* The row of this name, or null. */

@@ -140,6 +140,46 @@ def others():
     tap.check(all(close(z, w, 1e-12) for z, w in zip(zeros, wanted)), "Franco, example 11.21: the zeros", str(zeros))
 
 
+def ladder(g, rate=1.0):
+    """A doubly terminated LC ladder of these prototype values (ohms, farads, henries, rad/s)."""
+    lines, node = ["V in", "R RS in n0 1"], 0
+    for k, value in enumerate(g):
+        if k % 2 == 0:
+            lines.append(f"C C{k} n{node} ground {value / rate!r}")
+        else:
+            lines.append(f"L L{k} n{node} n{node + 1} {value / rate!r}")
+            node += 1
+    return lines + [f"R RL n{node} ground 1", f"O n{node}"]
+
+
+def ladders():
+    """Prototype values of Matthaei, Young and Jones, Microwave Filters, tables 4.05-1 and 4.05-2, and
+    Zverev (from memory; Butterworth's are 2 sin((2k - 1) pi / 2n) exactly)."""
+    for n in range(2, 10):
+        g = [2 * np.sin((2 * k - 1) * np.pi / (2 * n)) for k in range(1, n + 1)]
+        poles = sorted((complex(*p) for p in solve(ladder(g))["poles"]), key=lambda s: (s.imag, s.real))
+        wanted = sorted((np.exp(1j * np.pi * (2 * k + n - 1) / (2 * n)) for k in range(1, n + 1)),
+                        key=lambda s: (s.imag, s.real))
+        worst = max(abs(p - w) for p, w in zip(poles, wanted))
+        tap.check(len(poles) == n and worst < 1e-12, f"Butterworth's ladder of order {n}", f"{worst:.1e}")
+    tables = {0.1: {3: [1.0315, 1.1474, 1.0315], 5: [1.1468, 1.3712, 1.9750, 1.3712, 1.1468]},
+              0.5: {3: [1.5963, 1.0967, 1.5963], 5: [1.7058, 1.2296, 2.5408, 1.2296, 1.7058]},
+              3.0: {3: [3.3487, 0.7117, 3.3487]}}
+    for ripple, orders in tables.items():
+        for n, g in orders.items():
+            a = solve(ladder(g))
+            epsilon = np.sqrt(10 ** (ripple / 10) - 1)
+            w = np.linspace(0.05, 3, 200)
+            h = circuits.roots_response(a, 1j * w)
+            chebyshev = 1 / (1 + (epsilon * np.cosh(n * np.arccosh(w + 0j)).real) ** 2)
+            worst = np.abs(20 * np.log10(2 * np.abs(h)) - 10 * np.log10(chebyshev)).max()
+            tap.check(worst < 0.005, f"Chebyshev's ladder, {ripple} dB, order {n}, from the table", f"{worst:.4f} dB")
+    fast = solve(ladder([1.7058, 1.2296, 2.5408, 1.2296, 1.7058], 2 * np.pi * 1e9))
+    slow = solve(ladder([1.7058, 1.2296, 2.5408, 1.2296, 1.7058], 2 * np.pi * 1e-3))
+    ratio = [complex(*f) / complex(*s) for f, s in zip(fast["poles"], slow["poles"])]
+    tap.check(max(abs(r / 1e12 - 1) for r in ratio) < 1e-13, "a ladder scaled by twelve decades scales its poles")
+
+
 def finite_gain_bandwidth():
     """First-order formulas from memory of Franco, ch. 6 (closed-loop bandwidth; biquad and
     multiple-feedback band-pass); each is compared as the gain-bandwidth grows."""
@@ -184,5 +224,6 @@ def finite_gain_bandwidth():
 sallen_key()
 bessel()
 others()
+ladders()
 finite_gain_bandwidth()
 tap.done()

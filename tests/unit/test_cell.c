@@ -476,6 +476,7 @@ static void list_shows_every_kind(void **state)
         const pw_cell_kind *kind = pw_cell_row(i);
         assert_non_null(strstr(pw_text_string(&text), kind->name));
         assert_non_null(strstr(pw_text_string(&text), kind->formula));
+        assert_non_null(pw_cell_figures(kind->name));
     }
     assert_non_null(strstr(pw_text_string(&text), "parts: R1 C1 R2 C2 [R3 R4]\n"));
     pw_text_free(&text);
