@@ -121,6 +121,7 @@ check-all: all                   ## the tests and every target in full
 
 bench: all probes                ## what emitted code costs on every part, beside the yardstick; generator time
 	$(PYTHON) tests/bench/bench.py
+	$(PYTHON) tests/bench/twin_speed.py
 
 bench-write: all probes          ## the same, and pins it: tests/bench/table.md and counts.json
 	$(PYTHON) tests/bench/bench.py --write

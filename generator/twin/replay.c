@@ -46,10 +46,10 @@ void pw_replay_words(pw_simulation *sim, const int32_t *in, int32_t *out, size_t
     const pw_realisation *r = sim->realisation;
     pw_word_rules rules = pw_word_rules_of(r);
     bool lanes = pw_replay_reach() >= PW_REACH_AVX2;
-    if (in != out && n) memmove(out, in, n * sizeof *out);
     for (size_t at = 0, size; at < n; at += size) {
         size = n - at < PW_REPLAY_BLOCK ? n - at : PW_REPLAY_BLOCK;
         int32_t *io = out + at;
+        if (in != out) memcpy(io, in + at, size * sizeof *io);
         for (int k = 0, m; k < r->count; k += m) {
             m = lanes ? run_length(r, k, true) : 0;
             if (m > 1) pw_lanes_words(sim, k, m, io, size);
@@ -84,9 +84,9 @@ static void plain_float64(pw_simulation *sim, int k, double *io, size_t n)
     {                                                                                              \
         const pw_realisation *r = sim->realisation;                                                \
         bool lanes = pw_replay_reach() > PW_REACH_PLAIN;                                           \
-        if (in != out && n) memmove(out, in, n * sizeof *out);                                     \
         for (size_t at = 0, size; at < n; at += size) {                                            \
             size = n - at < PW_REPLAY_BLOCK ? n - at : PW_REPLAY_BLOCK;                            \
+            if (in != out) memcpy(out + at, in + at, size * sizeof *out);                          \
             for (int k = 0, m; k < r->count; k += m) {                                             \
                 m = lanes ? run_length(r, k, false) : 0;                                           \
                 if (m > 1) pw_lanes_##NAME(sim, k, m, out + at, size);                             \

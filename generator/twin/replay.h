@@ -17,7 +17,7 @@
 #define PW_REPLAY_BLOCK 8192     /* samples that lanes fill and drain for */
 
 /* sim is that of simulate.h: reset or settled there, and may change between the two ways of running.
- * in may be out. */
+ * in may be out, else apart from it. */
 void pw_replay_words(pw_simulation *sim, const int32_t *in, int32_t *out, size_t n);     /* q15, q31 */
 void pw_replay_float32(pw_simulation *sim, const float *in, float *out, size_t n);
 void pw_replay_float64(pw_simulation *sim, const double *in, double *out, size_t n);

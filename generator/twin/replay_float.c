@@ -13,18 +13,24 @@
 #define SIGN INT64_MIN
 #define TARGET
 #define NAME(x) x##_f64
+#define WIDTH 2
 #include "twin/replay_lanes.h"
+#undef WIDTH
 #undef TARGET
 #undef NAME
 #ifdef WITH_AVX
 #define TARGET __attribute__((target("avx2")))
 #define NAME(x) x##_f64_avx2
+#define WIDTH 4
 #include "twin/replay_lanes.h"
+#undef WIDTH
 #undef TARGET
 #undef NAME
 #define TARGET __attribute__((target("avx512f,avx512vl,avx512dq,avx512bw,prefer-vector-width=512")))
 #define NAME(x) x##_f64_avx512
+#define WIDTH 4
 #include "twin/replay_lanes.h"
+#undef WIDTH
 #undef TARGET
 #undef NAME
 #endif
@@ -37,18 +43,24 @@
 #define SIGN INT32_MIN
 #define TARGET
 #define NAME(x) x##_f32
+#define WIDTH 4
 #include "twin/replay_lanes.h"
+#undef WIDTH
 #undef TARGET
 #undef NAME
 #ifdef WITH_AVX
 #define TARGET __attribute__((target("avx2")))
 #define NAME(x) x##_f32_avx2
+#define WIDTH 8
 #include "twin/replay_lanes.h"
+#undef WIDTH
 #undef TARGET
 #undef NAME
 #define TARGET __attribute__((target("avx512f,avx512vl,avx512dq,avx512bw")))
 #define NAME(x) x##_f32_avx512
+#define WIDTH 8
 #include "twin/replay_lanes.h"
+#undef WIDTH
 #undef TARGET
 #undef NAME
 #endif

@@ -56,7 +56,12 @@ static void random_cascade(pw_realisation *r, pw_sample sample)
     r->truncate = whole(0, 2) == 0;
     r->wrap = whole(0, 3) == 0;
     r->count = whole(1, 10);
-    for (int k = 0; k < r->count; k++) random_section(&r->section[k], fixed, sample == PW_Q31);
+    bool full = whole(0, 2) == 0;        /* eight sections of second order take a way of their own */
+    if (full) r->count = whole(8, 10);
+    for (int k = 0; k < r->count; k++)
+        do random_section(&r->section[k], fixed, sample == PW_Q31);
+        while (full && r->section[k].order != 2);
+    if (full) return;
     if (fixed && whole(0, 4) == 0)
         r->section[r->count / 2] = (pw_words){.structure = PW_COUPLED, .order = 2, .sigma = 20000, .omega = 15000,
                                               .g = 9000, .c1 = 8000, .c2 = -7000, .d = 3000, .a_fraction = 15,
