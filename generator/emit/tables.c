@@ -150,8 +150,20 @@ static void float_table(const pw_emission *e, const pw_words *w, pw_code *in)
     if (second) pw_entry(table, pw_real(w->fa[2], e->single), "a2");
 }
 
+/* What was proved of the section's nodes, above its table. */
+static void bounds(const pw_emission *e, const pw_words *w, pw_code *in)
+{
+    bool rotates = w->structure == PW_COUPLED;
+    const char *const node[] = {"output", rotates ? "u1" : "accumulator", rotates ? "u2" : ""};
+    for (int i = 0; i < 3 && e->fixed; i++) {
+        const char *note = pw_bound_note(e, in->section, node[i]);
+        if (*note) pw_comment_line(in, note);
+    }
+}
+
 static void constants(const pw_emission *e, const pw_words *w, pw_code *in)
 {
+    bounds(e, w, in);
     if (is_gain(e, w))
         gain_table(e, w, in);
     else if (!e->fixed)
