@@ -37,30 +37,43 @@ static void state_struct(const pw_emission *e, pw_code *file)
     if (!has_state(e)) pw_put_with(members, "char none;", "a gain keeps nothing");
 }
 
+static bool has_structure(const pw_emission *e, pw_structure structure)
+{
+    for (int k = 0; k < e->r->count; k++)
+        if (e->r->section[k].structure == structure) return true;
+    return false;
+}
+
+static void settle_comment(const pw_emission *e, pw_code *comment)
+{
+    if (e->integrates) {
+        pw_prose(comment,
+                 "This stage integrates: no steady state goes with a constant input, so settle"
+                 " does what reset does.");
+        return;
+    }
+    pw_prose(comment,
+             "The state as if x had been there for ever, so that a filter starts without a thump.");
+    if (e->fixed && has_structure(e, PW_DIRECT_1_SHAPED))
+        pw_prose(comment,
+                 "The error that is fed back then keeps the output moving by a unit or so.");
+    if (e->fixed) pw_prose(comment, "Also clears the count of clips.");
+}
+
 static void prototypes(const pw_emission *e, pw_code *file)
 {
     pw_put_with(file, "void $_reset($_state *s);", "at rest, as if 0 had been there for ever");
     pw_put_with(file, "@ $_step($_state *s, @ x);", "one sample");
     pw_put_with(file, "void $_block($_state *s, const @ *in, @ *out, size_t n);", "in may be out");
     pw_blank(file);
-    pw_code *comment = pw_comment(file);
-    if (e->integrates)
-        pw_prose(comment, "This stage integrates: no steady state goes with a constant input, so "
-                          "settle does what reset does.");
-    else if (e->fixed)
-        pw_prose(comment, "The state as if x had been there for ever, so that a filter starts "
-                          "without a thump. Also clears the count of clips.");
-    else
-        pw_prose(
-            comment,
-            "The state as if x had been there for ever, so that a filter starts without a thump.");
+    settle_comment(e, pw_comment(file));
     pw_put(file, "void $_settle($_state *s, @ x);");
     if (!e->fixed) return;
     pw_blank(file);
-    pw_comment_line(
-        file, e->counts ? (e->r->wrap ? "How many times a node wrapped since reset, modulo 2^32."
-                                      : "How many times a node clipped since reset, modulo 2^32.")
-                        : "How many times a node clipped since reset: always 0, no node can.");
+    pw_comment_line(file, !e->counts
+                              ? "How many times a node clipped since reset: always 0, no node can."
+                          : e->r->wrap ? "How many times a node wrapped since reset, modulo 2^32."
+                                       : "How many times a node clipped since reset, modulo 2^32.");
     pw_put(file, "uint32_t $_clipped(const $_state *s);");
 }
 

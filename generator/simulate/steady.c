@@ -3,9 +3,9 @@
  *
  * Method: for a constant x a direct-1 section rests at y where
  *     y 2^f <= p - (a1 + a2) y + half < (y + 1) 2^f,
- * that is, D y - half <= p < D y - half + 2^f with D = 2^f + a1 + a2. With half = 2^(f-1) and D <= 2^f the nearest y to p / D (half up) satisfies
- * it, with half = 0 the floor of p / D does. D > 2^f (poles on the negative real side) may leave no
- * y. */
+ * that is, D y - half <= p < D y - half + 2^f with D = 2^f + a1 + a2. With half = 2^(f-1) and
+ * D <= 2^f the nearest y to p / D (half up) satisfies it, with half = 0 the floor of p / D does.
+ * D > 2^f (poles on the negative real side) may leave no y. */
 #include "simulate/inner.h"
 
 __extension__ typedef __int128 pw_wide;

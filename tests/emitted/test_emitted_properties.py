@@ -158,6 +158,20 @@ def settled(top):
         tap.check(abs(rest[0] - y[0]) > abs(x) / 2, f"{sample}: which from rest it would not")
 
 
+def settled_other_forms(top):
+    """Fed-back errors move the output by a unit or so; a rotation stays in its dead band."""
+    for structure, slack in (("direct-1-shaped", 2), ("coupled", 2)):
+        for sample, x in (("q15", 12345), ("q15", -777), ("q31", 123456789)):
+            more = {"structure": structure, "coefficient": "32 bits"}
+            name = f"form_{structure.replace('-', '_')}_{sample}"
+            built = compiled(stage_of(name, sample, **more), f"{top}/{name}")
+            _, y, clips, _, _ = run(built, [x] * 3000, start=x, repeats=1)
+            drift = max(abs(v - y[0]) for v in y)
+            close = abs(y[0] - x) <= max(3, abs(x) * 1e-6)
+            what = f"{structure} {sample}: settled at {x}, it stays within {slack} of {y[0]:.9g}"
+            tap.check(drift <= slack and close and not clips, what, f"drift {drift:g}")
+
+
 def integrator(top):
     stage = {
         "stage": "integ",
@@ -187,5 +201,6 @@ with tempfile.TemporaryDirectory() as folder:
     response(folder)
     linear(folder)
     settled(folder)
+    settled_other_forms(folder)
     integrator(folder)
 tap.done()
