@@ -10,7 +10,7 @@ static pw_status run(const pw_call *call)
 {
     static pw_analysis analysis;
     pw_fileset files = {0};
-    pw_status status = pw_analysis_run(call, &analysis);
+    pw_status status = pw_analysis_results(call, &analysis);
     if (!status) status = pw_emit_vectors(&analysis.results, &files);
     if (!status) {
         const char *directory = pw_analysis_directory(call, &analysis);

@@ -151,10 +151,29 @@ static void equal_sallen_key_bandpass(void **state)
     }
 }
 
+/* Where equal RC stages are 3 dB down, in corners of one stage: what show --cells prints. */
+static void ladders_of_equal_stages(void **state)
+{
+    (void)state;
+    static const double slower[] = {1, 2.67, 5.15, 8.44};
+    for (int n = 1; n <= 4; n++) {
+        pw_cell_value list[] = {{.name = "R1", .value = 1e4}, {.name = "C1", .value = 1e-8},
+                                {.name = "stages", .value = n}};
+        pw_cell cell = {.kind = "rc-ladder", .value = list, .values = 3};
+        pw_messages messages = {.file = "cell"};
+        pw_roots roots;
+        assert_int_equal(pw_analog_from_cell(&cell, &roots, &messages), PW_OK);
+        double gain = cabs(pw_roots_at(&roots, CMPLX(0, 1e4 / slower[n - 1])));
+        assert_true(fabs(gain - sqrt(0.5)) < 1e-3);
+        pw_messages_free(&messages);
+    }
+}
+
 int main(void)
 {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(design_formulas), cmocka_unit_test(equal_sallen_key_bandpass),
+        cmocka_unit_test(ladders_of_equal_stages),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
