@@ -2,20 +2,6 @@
 /* The recursions of norms.c, for one type of number: REAL, with names made by NAME. No guard: it is
  * included once for each. The block is summed on its own, so that its sum rounds little. */
 
-static void NAME(tally)(runner *r, pw_place place, const REAL *v, int n)
-{
-    REAL sum = 0, square = 0, dc = 0, peak = 0;
-    for (int i = 0; i < n; i++) {
-        REAL size = v[i] < 0 ? -v[i] : v[i];
-        sum += size;
-        peak = size > peak ? size : peak;
-        square += v[i] * v[i];
-        dc += v[i];
-    }
-    r->peak[place] = peak > r->peak[place] ? peak : r->peak[place];
-    r->sum[place] += sum, r->square[place] += square, r->dc[place] += dc;
-}
-
 static void NAME(run_direct)(const pw_line *s, runner *r, REAL *v, int n)
 {
     REAL b0 = (REAL)s->b[0], b1 = (REAL)s->b[1], b2 = (REAL)s->b[2];
@@ -36,8 +22,8 @@ static void NAME(run_coupled)(const pw_line *s, runner *r, REAL *v, int n)
     REAL first[BLOCK], second[BLOCK];
     for (int i = 0; i < n; i++) {
         REAL y = c1 * u1 + c2 * u2 + d * v[i];
-        first[i] = sigma * u1 - omega * u2 + g1 * v[i];
-        second[i] = omega * u1 + sigma * u2 + g2 * v[i];
+        first[i] = (g1 * v[i] - omega * u2) + sigma * u1;
+        second[i] = (g2 * v[i] + omega * u1) + sigma * u2;
         u1 = first[i], u2 = second[i], v[i] = y;
     }
     r->y1 = u1, r->y2 = u2;
