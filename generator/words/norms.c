@@ -10,7 +10,8 @@
 
 #define OUTWARD (1.0L + 1e-9L)   /* covers the rounding of the closed forms themselves */
 #define RELATIVE 0.0025L         /* a tail below this part of the sum ends the run */
-#define LONGEST (1L << 26)       /* samples */
+#define LONGEST (1L << 25)       /* samples times sections */
+#define HOPELESS (1L << 18)      /* samples, where LONGEST is too few to settle */
 #define BLOCK 1024
 #define FADED 1e-200L
 
@@ -225,6 +226,20 @@ static long double conclude(const pw_line *line, int count, const runner *r, lon
     return share;
 }
 
+/* Samples after which a run ends in any case; its tails, then large, still are bounds. */
+static long limit_of(const pw_line *line, int count)
+{
+    double slowest = 1;
+    for (int k = 0; k < count; k++) {
+        double a1 = (double)line[k].a[1], a2 = (double)line[k].a[2];
+        double gap = line[k].coupled ? 1 - hypot((double)line[k].sigma, (double)line[k].omega)
+                   : a1 * a1 < 4 * a2 ? (1 - a2) / 2 : (double)real_gap(a1, a2) / 2;
+        slowest = fmax(slowest, 1 / gap);
+    }
+    long most = LONGEST / count;
+    return 4 * slowest > (double)most && most > HOPELESS ? HOPELESS : most;
+}
+
 /* One run in double or in long double; the share that rounding has. */
 static long double run(const pw_line *line, int count, bool wide, pw_norm out[][PW_PLACES])
 {
@@ -232,7 +247,7 @@ static long double run(const pw_line *line, int count, bool wide, pw_norm out[][
     memset(r, 0, (size_t)count * sizeof *r);
     memset(out, 0, (size_t)count * sizeof *out);
     union { double narrow[BLOCK]; long double wide[BLOCK]; } block;
-    long samples = 0;
+    long samples = 0, limit = limit_of(line, count);
     int n = 32;
     bool done = false;
     while (!done) {
@@ -250,7 +265,7 @@ static long double run(const pw_line *line, int count, bool wide, pw_norm out[][
             tail = close_section(&line[k], &r[k], tail);
         }
         samples += n;
-        done = samples >= LONGEST || settled(line, count, r) || isinf(tail);
+        done = samples >= limit || settled(line, count, r) || isinf(tail);
         n = n < BLOCK / 2 ? 2 * n : BLOCK;
     }
     long double share = conclude(line, count, r, samples, wide ? LDBL_EPSILON : DBL_EPSILON, out);

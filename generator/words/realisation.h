@@ -55,7 +55,8 @@ typedef struct pw_words {        /* one section, as computed */
     int32_t sigma, omega, g, c1, c2, d;
     int c_fraction;              /* a_fraction is that of sigma, omega, g */
     /* what was proved: */
-    bool cannot_clip;            /* every clamp of this section may be left out */
+    bool cannot_clip;            /* every clamp of this section may be left out, for any input word (not
+                                    only within the peak) */
     bool fits_32;                /* the accumulator may be kept modulo 2^32: its final value always
                                     fits int32_t (needs b_fraction == a_fraction, 16-bit words) */
     double realised_b[3], realised_a[3];   /* exactly what the words compute, sample to sample
@@ -65,7 +66,9 @@ typedef struct pw_words {        /* one section, as computed */
 typedef struct pw_node {
     char name[40];               /* "section 2 output", "section 2 accumulator", "section 3 u1" */
     int section;                 /* from 1 */
-    double bound;                /* of |node|, full scale 1.0; INFINITY for an integrator */
+    double bound;                /* of |node|, full scale 1.0; INFINITY for an integrator. From a state
+                                    that reset or settle made; behind a section that can clip, and in the
+                                    accumulator of one, for an input of full scale there */
     double headroom_db;          /* 20 log10(largest positive word / bound); -INFINITY */
     double peak_gain;            /* L1 from input to node, without round-off */
     bool can_clip, integrates;
@@ -79,7 +82,8 @@ typedef struct pw_noise {
     bool given;                  /* false for floats */
     double output_rms_lsb, output_offset_lsb, output_dbfs, snr_db, effective_bits;
     double input_quantisation_rms_lsb;    /* what the input's own rounding becomes at the output */
-    double growth_lsb2_per_sample;        /* integrators: variance per sample; else 0 */
+    double growth_lsb2_per_sample;        /* integrators: variance per sample, INFINITY where that grows
+                                             itself; else 0. The rms above is then of the rest */
     bool grows;
 } pw_noise;
 
@@ -110,7 +114,8 @@ typedef struct pw_realisation {
     double input_code;           /* of full scale: one code of the input's converter where its bits
                                     are given, at least one LSB; else one LSB; 0 for floats */
     double first_clip_input;     /* input level (of full scale) at which the first node can clip;
-                                    INFINITY: none can at any level up to full scale */
+                                    INFINITY: none can at any level up to full scale; 0 with an
+                                    integrator, and where rounding alone could fill a node */
     pw_noise noise;
     pw_limit_cycle limit_cycle;
     int worst_node;              /* index of the node nearest to its clamp */

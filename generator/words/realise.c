@@ -96,7 +96,8 @@ static void set_up(pw_job *j, const pw_stage *stage, const pw_digital *digital, 
     out->scaling = stage->arithmetic.scaling;
     out->input_full_scale = stage->input.full_scale;
     out->output_full_scale = stage->output.full_scale;
-    out->input_peak = fmin(1, stage->input.peak / stage->input.full_scale);
+    double peak = stage->input.peak / stage->input.full_scale;
+    out->input_peak = peak > 0 && peak < 1 ? peak : 1;
     out->input_code = input_code(&stage->input, &j->format);
     out->structure_why = "";
     j->factor = digital->z.factor * out->input_full_scale / out->output_full_scale;

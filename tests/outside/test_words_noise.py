@@ -25,12 +25,12 @@ def designs():
 def measured_noise():
     cases, questions = [], []
     for name, z, p, k in designs():
-        for sample in ("q15", "q31"):
+        for sample, bits in (("q15", 32), ("q15", 16), ("q31", 32)):
             for structure in ("direct-1", "direct-1-shaped", "coupled"):
                 for truncate in (0, 1) if structure != "coupled" else (0,):
-                    cases.append(f"{name}, {sample}, {structure}{', truncated' if truncate else ''}")
-                    questions.append(wp.question(z, p, k, sample=sample, bits=32, structure=structure,
-                                                 truncate=truncate, random=1200000 if FULL else 400000, level=0.3))
+                    cases.append(f"{name}, {sample}, {bits} bits, {structure}{', truncated' if truncate else ''}")
+                    questions.append(wp.question(z, p, k, sample=sample, bits=bits, structure=structure,
+                                                 truncate=truncate, random=1200000 if FULL else 300000, level=0.3))
     worst = worst_mean = 0
     for case, answer in zip(cases, wp.ask(questions)):
         noise, got = answer["noise"], answer["random"]
