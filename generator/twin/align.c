@@ -74,9 +74,9 @@ void pw_lag_end(pw_lag *lag) { pw_arena_free(&lag->arena); }
 
 /* ---- Parts of a sample ---- */
 
-double pw_align_phase(const pw_welch *w, int whole, bool inverted)
+double pw_align_phase(const pw_welch *w, bool inverted)
 {
-    double delay = whole;
+    double delay = 0;
     for (int round = 0; round < 3; round++) {    /* again where the whole one was one off */
         double above = 0, below = 0;
         for (int k = 1; k < w->bins - 1; k++) {
@@ -88,10 +88,10 @@ double pw_align_phase(const pw_welch *w, int whole, bool inverted)
             above -= weight * omega * carg(rest);
             below += weight * omega * omega;
         }
-        if (!(below > 0)) return whole;
+        if (!(below > 0)) return 0;
         delay += above / below;
     }
-    return fabs(delay - whole) < 2 ? delay : whole;
+    return fabs(delay) < 2 ? delay : 0;
 }
 
 static void make_taps(double part, double *tap)

@@ -23,9 +23,9 @@ void pw_lag_add(pw_lag *lag, double r, double y);
 int pw_lag_find(pw_lag *lag, bool *inverted);
 void pw_lag_end(pw_lag *lag);
 
-/* The delay in samples near the whole one: slope of the phase of ry, bins weighted by their power and
+/* The delay in samples of y behind r, which is below 2 of them: slope of the phase of ry, bins weighted by their power and
  * by coherence / (1 - coherence). Accuracy: without noise, and with y a delayed r, 1e-6 samples. */
-double pw_align_phase(const pw_welch *welch, int whole, bool inverted);
+double pw_align_phase(const pw_welch *welch, bool inverted);
 
 /* y and r brought to one time: r is delayed by delay samples (fewer than 0: y instead), by a
  * Kaiser-windowed sinc of 64 taps (beta 10; Kaiser 1974), flat to 1e-4 up to 0.43 of the rate. */

@@ -225,10 +225,31 @@ static pw_status refer_all(pw_flow *flow, pw_hold hold, pw_comparison *out)
 
 /* ---- The whole ---- */
 
+/* Whole samples of delay are taken out first: a segment must hold the same piece of both. */
+typedef struct spectral { pw_welch welch; pw_aligned aligned; } spectral;
+
 static void to_welch(void *to, const pw_frame *f, int64_t at)
 {
+    spectral *s = to;
+    double r, y;
     (void)at;
-    pw_welch_add(to, f->input, f->output, f->twin);
+    if (pw_aligned_add(&s->aligned, f->twin, f->output, &r, &y)) pw_welch_add(&s->welch, f->input, y, r);
+}
+
+/* welch has no segments where the record is too short. */
+static pw_status spectra(pw_flow *flow, int whole, pw_comparison *out, pw_welch *welch)
+{
+    spectral s = {{0}, {0}};
+    int64_t left = out->used - 2 * PW_ALIGN_TAPS - (whole < 0 ? -(int64_t)whole : whole);
+    out->segment = pw_spectrum_segment(left);
+    if (!out->segment) return PW_OK;
+    pw_welch_begin(out->segment, &s.welch);
+    pw_aligned_begin(whole, &s.aligned);
+    pw_status status = pass(flow, out->skipped, to_welch, &s);
+    pw_aligned_end(&s.aligned);
+    *welch = s.welch;
+    out->averages = pw_welch_averages(welch);
+    return status;
 }
 
 pw_status pw_compare_record(pw_flow *flow, pw_hold hold, pw_arena *arena, pw_comparison *out, pw_messages *messages)
@@ -239,17 +260,12 @@ pw_status pw_compare_record(pw_flow *flow, pw_hold hold, pw_arena *arena, pw_com
     *out = (pw_comparison){.points = {.worst = -1}};
     pw_status status = first_pass(flow, out, &whole, &inverted);
     if (status) return status;
-    out->segment = pw_spectrum_segment(out->used);
-    if (out->segment) {
-        pw_welch_begin(out->segment, &welch);
-        status = pass(flow, out->skipped, to_welch, &welch);
-        out->averages = pw_welch_averages(&welch);
-    }
-    double delay = welch.segments ? pw_align_phase(&welch, whole, inverted) : whole;
+    status = spectra(flow, whole, out, &welch);
+    double delay = whole + (welch.segments ? pw_align_phase(&welch, inverted) : 0);
     out->delay_samples = usable_delay(delay, out->used);
     if (!status) status = residuals(flow, out);
     if (!status && welch.segments) {
-        pw_spectrum_points(flow->results, &welch, out->delay_samples, arena, &out->points);
+        pw_spectrum_points(flow->results, &welch, out->delay_samples - whole, arena, &out->points);
         status = pw_points_judge(flow->results, flow->quiet, PW_EVEN_SHARE, &out->points, messages);
     }
     pw_welch_end(&welch);

@@ -80,7 +80,8 @@ static const char *code_letter(const char *text)
     const char *p = text + strspn(text, "0123456789");
     const char *next = *p ? p + 1 : p;
     while (((unsigned char)*next & 0xC0) == 0x80) next++;
-    return *p && *p != '.' && *p != 'e' && *p != 'E' && isdigit((unsigned char)*next) ? p : NULL;
+    bool letter = isalpha((unsigned char)*p) || ((unsigned char)*p & 0x80);
+    return letter && *p != 'e' && *p != 'E' && isdigit((unsigned char)*next) ? p : NULL;
 }
 
 static const char *scaled_code(editing *e, const char *text, const char *letter, double ratio)

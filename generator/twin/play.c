@@ -21,7 +21,6 @@ typedef struct playing {
     pw_sink sink;
     SNDFILE *sound;
     double *in, *out;
-    bool volts;                  /* both sides CSV and not samples, else whole values are printed as such */
 } playing;
 
 static bool ends_in_wav(const char *path)
@@ -43,18 +42,26 @@ static void put_names(const playing *p, const pw_results *results)
     fputc('\n', p->sink.file);
 }
 
-static void put_frames(const playing *p, size_t frames)
+/* single: the value is a float32. */
+static void put_value(FILE *file, double v, bool single)
 {
     char number[PW_NUMBER_ROOM];
-    int n = p->record.columns;
-    for (size_t k = 0; k < frames; k++)
-        for (int i = 0; i < 2 * n; i++) {
-            double v = i < n ? p->in[k * (size_t)n + (size_t)i] : p->out[k * (size_t)n + (size_t)(i - n)];
-            bool whole = v == floor(v) && fabs(v) < 1e15 && !(v == 0 && signbit(v));
-            if (whole) fprintf(p->sink.file, "%.0f", v);
-            else fputs(pw_shortest(number, v), p->sink.file);
-            fputc(i + 1 < 2 * n ? ',' : '\n', p->sink.file);
-        }
+    bool whole = v == floor(v) && fabs(v) < 1e15 && !(v == 0 && signbit(v));
+    if (whole) fprintf(file, "%.0f", v);
+    else fputs(single ? pw_shortest_float(number, (float)v) : pw_shortest(number, v), file);
+}
+
+static void put_frames(const playing *p, size_t frames)
+{
+    FILE *file = p->sink.file;
+    size_t n = (size_t)p->record.columns;
+    const pw_scale *out = &p->channels.out;
+    bool single = out->single && out->unit == 1 && out->zero == 0;
+    for (size_t k = 0; k < frames * n; k += n) {
+        for (size_t i = 0; i < n; i++) put_value(file, p->in[k + i], false), fputc(',', file);
+        for (size_t i = 0; i < n; i++)
+            put_value(file, p->out[k + i], single), fputc(i + 1 < n ? ',' : '\n', file);
+    }
 }
 
 static int sound_format(pw_sample sample)

@@ -7,6 +7,7 @@
 
 #define ABOVE_LEAKAGE 4
 #define WIDEST_BAND 6.0          /* dB */
+#define BINS_OF_ONE (35.0 / 18)  /* 1 + 2 (2/3)^2 + 2 (1/6)^2: a Hann window correlates its bins */
 #define SIGMAS 1.96              /* 95 % of a normal distribution */
 
 int pw_spectrum_segment(int64_t samples)
@@ -57,7 +58,7 @@ static pw_point make_point(const pw_results *results, const pw_welch *w, double 
     pw_point p = {.hz = s.hz, .db = NAN, .deg = NAN, .band_db = INFINITY, .band_deg = INFINITY};
     pw_point_models(results, &p);
     if (!(s.rr > 0) || !(s.yy > 0)) return p;
-    double averages = pw_welch_averages(w) * fmax(1, s.bins / 1.5);
+    double averages = pw_welch_averages(w) * fmax(1, s.bins / BINS_OF_ONE);
     double complex ratio = s.ry / s.rr;
     p.coherence = fmin(1, creal(s.ry * conj(s.ry)) / (s.rr * s.yy));
     double relative = sqrt((1 - p.coherence) / (2 * averages * p.coherence));

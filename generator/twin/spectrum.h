@@ -17,7 +17,8 @@ int pw_spectrum_segment(int64_t samples);
  * smears is alike in R and Y and leaves it alone.
  * Coherence g2 = |sum conj(R) Y|^2 / (sum |R|^2 sum |Y|^2); the standard error of |E| / |E| and of
  * its angle is sqrt((1 - g2) / (2 n g2)) over n averages (Bendat and Piersol, Random Data, random
- * errors of frequency response estimates); adjacent bins of a Hann window count as 1 / 1.5 each.
+ * errors of frequency response estimates); adjacent bins of a Hann window, which
+ * correlate by 2/3 and the next ones by 1/6, count as 18 / 35 each.
  * Not excited: where input or twin have no more than 4 times what leakage can explain, where g2 is
  * below the 95 % point of coherence by chance, 1 - 0.05^(1 / (n - 1)), or the band is above 6 dB. */
 void pw_spectrum_points(const pw_results *results, const pw_welch *welch, double delay, pw_arena *arena,
