@@ -52,7 +52,8 @@ static double chain_l1(const table *t, const state *s, double peak)
         step[n++] = t->pairs ? t->pairs[s->step.pole] : s->step;
     pw_quick_start(t->units, t->poles, quick);
     while (n-- > 0) {
-        pw_section section = pw_units_section(t->units, step[n].pole, step[n].zero[0], step[n].zero[1]);
+        pw_section section = pw_units_section(t->units, step[n].pole, step[n].zero[0],
+                                              step[n].zero[1]);
         size = pw_quick_add(quick, &section, peak);
     }
     return size;
@@ -168,11 +169,13 @@ static bool read_back(const table *t, pw_arranged *order)
     return k == 0;
 }
 
-static bool search(const pw_units *units, int poles, const pw_arranged *pairs, const pw_curves *curves, double factor,
+static bool search(const pw_units *units, int poles, const pw_arranged *pairs,
+                   const pw_curves *curves, double factor,
                    pw_arranged *order)
 {
     table *t = pw_take(sizeof *t);
-    *t = (table){.units = units, .curves = curves, .poles = poles, .pairs = pairs, .factor = factor};
+    *t = (table){.units = units, .curves = curves, .poles = poles};
+    t->pairs = pairs, t->factor = factor;
     t->list = pw_take(sizeof *t->list * STATES);
     t->quick = pw_take(sizeof *t->quick);
     bool found = explore(t) && read_back(t, order);
@@ -203,7 +206,12 @@ static void fuse(const pw_arranged *order, int poles, pw_curves *curves)
                 curves->pole[order[k].pole][i] += curves->zero[order[k].zero[j]][i];
 }
 
-typedef struct walk { const pw_units *units; const pw_curves *curves; int poles; double factor; } walk;
+typedef struct walk {
+    const pw_units *units;
+    const pw_curves *curves;
+    int poles;
+    double factor;
+} walk;
 
 /* The cost of the first n of an order. */
 static double cost_of(const walk *w, const pw_arranged *order, int n)
@@ -217,7 +225,8 @@ static double cost_of(const walk *w, const pw_arranged *order, int n)
         for (int i = 0; i < w->curves->points; i++)
             product[i] += w->curves->pole[order[k].pole][i];
         pw_curves_place(w->curves, product, &placed);
-        pw_section section = pw_units_section(w->units, order[k].pole, order[k].zero[0], order[k].zero[1]);
+        pw_section section = pw_units_section(w->units, order[k].pole, order[k].zero[0],
+                                              order[k].zero[1]);
         placed.peak = pw_quick_add(&quick, &section, placed.peak);
         cost += pw_curves_noise(w->curves, &placed, order[k].pole, k + 1 == w->poles, w->factor);
     }

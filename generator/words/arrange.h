@@ -5,12 +5,14 @@
 
 #include "words/units.h"
 
-typedef struct pw_arranged { int pole, zero[2]; } pw_arranged;   /* a pole unit and its zero groups, -1 none */
+typedef struct pw_arranged { int pole, zero[2]; } pw_arranged;   /* a pole unit and its zero
+                                                                    groups, -1 none */
 
 /* What the noise depends on beside the order. */
 typedef struct pw_arrange_context {
     bool shaped;                 /* error feedback where a section is loud */
-    double factor;               /* magnitude of the whole, sample to sample, times the input's peak */
+    double factor;               /* magnitude of the whole, sample to sample, times the input's
+                                    peak */
 } pw_arrange_context;
 
 /* Every pairing and every order of the first `poles` pole units with the zero groups: exact for the
@@ -19,13 +21,14 @@ typedef struct pw_arrange_context {
  *
  * Cost: sections are scaled so that the product up to each one can just reach full scale (its L1
  * norm); each one's rounding then reaches the output through what follows it. The last section's
- * scale is that of the output. Noise is taken on a grid of frequencies that is dense about each pole. */
+ * scale is that of the output. Noise is taken on a grid of frequencies that is dense about each
+ * pole. */
 bool pw_arrange_all(const pw_units *units, int poles, const pw_arrange_context *context,
                     pw_arranged *order);
 
-/* The order alone, pairs given in order[]: exact up to 12 sections; above, a local search that takes
- * one section out and puts it in elsewhere while that helps, from the order given and from the one
- * in which each next section adds least. Returns true where exact. */
+/* The order alone, pairs given in order[]: exact up to 12 sections; above, a local search that
+ * takes one section out and puts it in elsewhere while that helps, from the order given and from
+ * the one in which each next section adds least. Returns true where exact. */
 bool pw_arrange_order(const pw_units *units, int poles, const pw_arrange_context *context,
                       pw_arranged *order);
 

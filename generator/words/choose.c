@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Which structure each section gets. Cost rises from direct-1 (5 multiplications) over direct-1-shaped
- * (two shifts or small products more) to coupled (8 multiplications) on every target. */
+/* Which structure each section gets. Cost rises from direct-1 (5 multiplications) over
+ * direct-1-shaped (two shifts or small products more) to coupled (8 multiplications) on every
+ * target. */
 #include "words/job.h"
 #include "words/noise.h"
 
@@ -13,11 +14,13 @@ static const char *const WHY_FLOAT = "transposed-2 is the short form for floats"
 static const char *const WHY_PLAIN =
     "direct-1 is the cheapest, and the rounding of each section stays below 1 LSB rms";
 static const char *const WHY_SHAPED =
-    "direct-1, with error feedback where plain rounding would exceed 1 LSB rms or hold a value for ever";
+    "direct-1, with error feedback where plain rounding would exceed 1 LSB rms or hold a value "
+    "for ever";
 static const char *const WHY_LIMIT = "the cheapest that meets the noise limit";
 static const char *const WHY_QUIETEST = "the quietest; no structure here meets the noise limit";
 static const char *const WHY_COUPLED =
-    "coupled where the words of direct-1 would move the poles too far; zeros there are exact to a word";
+    "coupled where the words of direct-1 would move the poles too far; zeros there are exact to "
+    "a word";
 
 /* ---- words that would do ---- */
 
@@ -27,15 +30,19 @@ static double deviation_with(pw_job *job, int bits)
     pw_job saved = *job;
     job->out = &trial;
     job->format.word_bits = bits;
-    double worst = pw_job_words(job) ? (pw_deviation_monic(job), trial.word_magnitude_db.max) : INFINITY;
+    double worst = INFINITY;
+    if (pw_job_words(job)) {
+        pw_deviation_monic(job);
+        worst = trial.word_magnitude_db.max;
+    }
     *job = saved;
     job->out = keep;
     return worst;
 }
 
-/* The shortest words up to 32 bits, longer than now, that keep the deviation with a fifth to spare (the
- * last word is luck, and scales move a little after this); 0: none. Deviation falls by half a bit, not
- * always by each: found by halving. */
+/* The shortest words up to 32 bits, longer than now, that keep the deviation with a fifth to spare
+ * (the last word is luck, and scales move a little after this); 0: none. Deviation falls by half a
+ * bit, not always by each: found by halving. */
 static int bits_for(pw_job *job, double deviation_db)
 {
     int low = job->format.word_bits, high = 32;
@@ -60,12 +67,14 @@ static pw_status complain(pw_job *job)
         at = job->stage->arithmetic.at;
     int bits = bits_for(job, 0.5);
     if (bits)
-        pw_error(job->messages, at, "coefficient words of %d bits move the poles of section %d onto or "
-                 "outside the unit circle; expected coefficient: 32 bits (%d bits would do)",
+        pw_error(job->messages, at,
+                 "coefficient words of %d bits move the poles of section %d onto or outside the unit "
+                 "circle; expected coefficient: 32 bits (%d bits would do)",
                  job->format.word_bits, section, bits);
     else
-        pw_error(job->messages, at, "no coefficient words of up to 32 bits hold the poles of section %d; "
-                 "expected structure: coupled, float samples or a lower rate", section);
+        pw_error(job->messages, at,
+                 "no coefficient words of up to 32 bits hold the poles of section %d; expected "
+                 "structure: coupled, float samples or a lower rate", section);
     return PW_WRONG;
 }
 
@@ -97,8 +106,8 @@ static bool may_couple(const pw_job *job, int k)
     return job->structure[k] != PW_COUPLED && pw_coupled_suits(&job->format, &job->out->ideal[k]);
 }
 
-/* Words; a section whose words fail is turned into the rotation form where it can be: the only case in
- * which a zero at 1 is given up for one that is exact to a word. */
+/* Words; a section whose words fail is turned into the rotation form where it can be: the only
+ * case in which a zero at 1 is given up for one that is exact to a word. */
 static bool words_or_couple(pw_job *job)
 {
     while (!pw_job_words(job)) {
@@ -111,9 +120,9 @@ static bool words_or_couple(pw_job *job)
     return true;
 }
 
-/* What the words bend the response by, against what they may: with a limit on magnitude, the largest
- * deviation in dB and a quarter of the limit (the transform has its part); without one, the error
- * against the largest response and what words of that length mostly do. */
+/* What the words bend the response by, against what they may: with a limit on magnitude, the
+ * largest deviation in dB and a quarter of the limit (the transform has its part); without one,
+ * the error against the largest response and what words of that length mostly do. */
 static double excess_bend(pw_job *job)
 {
     const pw_given *limit = &job->stage->limits.magnitude_db;
@@ -123,7 +132,8 @@ static double excess_bend(pw_job *job)
     return pw_bend(job) / (job->format.word_bits == 32 ? 0.002 : 0.2);
 }
 
-/* Where the words bend the response too much, the sections that do become coupled, if that helps. */
+/* Where the words bend the response too much, the sections that do become coupled, if that
+ * helps. */
 static bool straighten(pw_job *job)
 {
     pw_structure before[PW_MAX_SECTIONS];
@@ -202,7 +212,8 @@ static bool automatic(pw_job *job)
 static pw_status refuse(pw_job *job, const char *what, const char *expected)
 {
     pw_where at = job->stage->arithmetic.structure_at;
-    pw_error(job->messages, at.line ? at : job->stage->arithmetic.at, "%s; expected %s", what, expected);
+    pw_error(job->messages, at.line ? at : job->stage->arithmetic.at, "%s; expected %s", what,
+             expected);
     return PW_WRONG;
 }
 
@@ -224,9 +235,11 @@ pw_status pw_job_choose(pw_job *job)
     pw_structure asked = job->stage->arithmetic.structure;
     bool direct = asked == PW_DIRECT_1 || asked == PW_STRUCTURE_AUTO;
     if (!job->format.fixed && !direct && asked != PW_TRANSPOSED_2)
-        return refuse(job, "this structure is for fixed point (q15, q31)", "auto, direct-1 or transposed-2");
+        return refuse(job, "this structure is for fixed point (q15, q31)",
+                      "auto, direct-1 or transposed-2");
     if (job->format.fixed && asked == PW_TRANSPOSED_2)
-        return refuse(job, "transposed-2 is for float samples", "auto, direct-1, direct-1-shaped or coupled");
+        return refuse(job, "transposed-2 is for float samples",
+                      "auto, direct-1, direct-1-shaped or coupled");
     job->out->structure_why = "";
     if (job->format.fixed && asked == PW_STRUCTURE_AUTO)
         return automatic(job) ? PW_OK : complain(job);
@@ -234,7 +247,8 @@ pw_status pw_job_choose(pw_job *job)
         job->out->structure_why = WHY_FLOAT;
     set_all(job, asked == PW_STRUCTURE_AUTO ? PW_TRANSPOSED_2 : asked);
     if (asked == PW_COUPLED && !named_coupled(job))
-        return refuse(job, "the coupled form needs a complex pair of poles", "auto, direct-1 or direct-1-shaped");
+        return refuse(job, "the coupled form needs a complex pair of poles",
+                      "auto, direct-1 or direct-1-shaped");
     return pw_job_solve(job) ? PW_OK : complain(job);
 }
 

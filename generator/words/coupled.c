@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The rotation form: two words that turn and shrink, [sigma -omega; omega sigma]. Its poles stand on
- * a square grid of the z plane, as dense at z = 1 as anywhere, and rounding is never amplified by
- * more than 1 / (1 - r). */
+/* The rotation form: two words that turn and shrink, [sigma -omega; omega sigma]. Its poles stand
+ * on a square grid of the z plane, as dense at z = 1 as anywhere, and rounding is never amplified
+ * by more than 1 / (1 - r). */
 #include "words/job.h"
 
 #include <complex.h>

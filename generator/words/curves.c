@@ -60,7 +60,8 @@ static double feedback_square(int k1, int k2, double theta)
     return creal(n) * creal(n) + cimag(n) * cimag(n);
 }
 
-static void feedback_of(const pw_pole_unit *unit, const pw_arrange_context *context, int32_t *k1, int32_t *k2)
+static void feedback_of(const pw_pole_unit *unit, const pw_arrange_context *context, int32_t *k1,
+                        int32_t *k2)
 {
     double complex p = unit->pole[0], q = unit->size == 2 ? unit->pole[1] : 0;
     double a[3] = {1, -creal(p + q), creal(p * q)};
@@ -85,12 +86,14 @@ static void pole_curves(const pw_units *units, int u, const pw_arrange_context *
     }
 }
 
-void pw_curves_make(const pw_units *units, int poles, const pw_arrange_context *context, pw_curves *out)
+void pw_curves_make(const pw_units *units, int poles, const pw_arrange_context *context,
+                    pw_curves *out)
 {
     double angle[PW_CURVE_POINTS];
     memset(out, 0, sizeof *out);
     int n = out->points = choose_angles(units, poles, angle);
-    float *next = out->memory = pw_take(sizeof *next * (size_t)(n * (2 * poles + units->zeros + 1)));
+    size_t curves = (size_t)(2 * poles + units->zeros + 1);
+    float *next = out->memory = pw_take(sizeof *next * (size_t)n * curves);
     for (int i = 0; i < n; i++) {
         double low = i ? angle[i - 1] : 0, high = i + 1 < n ? angle[i + 1] : M_PI;
         out->weight[i] = (i ? (high - low) / 2 : (high + angle[0]) / 2) / M_PI;
@@ -125,7 +128,8 @@ void pw_curves_place(const pw_curves *curves, const float *product, pw_placed *o
     out->peak = exp(peak);
 }
 
-double pw_curves_noise(const pw_curves *curves, const pw_placed *placed, int u, bool last, double factor)
+double pw_curves_noise(const pw_curves *curves, const pw_placed *placed, int u, bool last,
+                       double factor)
 {
     double sum = 0;
     for (int i = 0; i < curves->points; i++)

@@ -17,7 +17,8 @@ typedef struct pw_curves {
     float *memory;
 } pw_curves;
 
-void pw_curves_make(const pw_units *units, int poles, const pw_arrange_context *context, pw_curves *out);
+void pw_curves_make(const pw_units *units, int poles, const pw_arrange_context *context,
+                    pw_curves *out);
 void pw_curves_free(pw_curves *curves);
 
 /* With a product log |.|^2 placed so far, whose last section is pole unit u: the noise of that
@@ -25,10 +26,12 @@ void pw_curves_free(pw_curves *curves);
 typedef struct pw_placed { double peak; double rest[PW_CURVE_POINTS]; } pw_placed;
 void pw_curves_place(const pw_curves *curves, const float *product, pw_placed *out);
 
-double pw_curves_noise(const pw_curves *curves, const pw_placed *placed, int u, bool last, double factor);
+double pw_curves_noise(const pw_curves *curves, const pw_placed *placed, int u, bool last,
+                       double factor);
 
-/* The L1 norm of a growing chain of monic sections, squared, to a per cent or so: for choosing only.
- * at_least: its peak on the circle, squared, from which it is guessed where poles are too slow to sum. */
+/* The L1 norm of a growing chain of monic sections, squared, to a per cent or so: for choosing
+ * only. at_least: its peak on the circle, squared, from which it is guessed where poles are too
+ * slow to sum. */
 #define PW_QUICK_SAMPLES 4096
 typedef struct pw_quick { int samples; double v[PW_QUICK_SAMPLES]; } pw_quick;
 void pw_quick_start(const pw_units *units, int poles, pw_quick *out);

@@ -1,17 +1,18 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The bound: once transients are gone, a zero-input cycle is the response to its own rounding errors,
- * so it is no larger than the sum of half steps times the L1 norms from their places to the output;
- * amplitudes are whole or half LSB, so the bound is rounded down to those. It holds as long as nothing
- * wraps: where an input within the peak can make a node wrap, what follows may keep itself up at any
- * size, so the bound is full scale; where none can, cycles that wrap are not reached and not counted.
+/* The bound: once transients are gone, a zero-input cycle is the response to its own rounding
+ * errors, so it is no larger than the sum of half steps times the L1 norms from their places to
+ * the output; amplitudes are whole or half LSB, so the bound is rounded down to those. It holds as
+ * long as nothing wraps: where an input within the peak can make a node wrap, what follows may
+ * keep itself up at any size, so the bound is full scale; where none can, cycles that wrap are not
+ * reached and not counted.
  *
  * The search: bit-true runs without input, and with small constant inputs, from states where cycles
  * are known to live: a constant and an alternating value at the edge of the dead band
  * 0.5 / |1 + a1 + a2| and 0.5 / |1 - a1 + a2|; a sine at the pole's angle of 0.5 / (1 - a2)
  * (L. B. Jackson, An analysis of limit cycles due to multiplication rounding in recursive digital
  * filters, 1969); and random states within the bound. Each run ends when a state comes back (R. P.
- * Brent, An improved Monte Carlo factorization algorithm, BIT 20, 1980, for the way to notice), or at
- * the end of its share of samples. */
+ * Brent, An improved Monte Carlo factorization algorithm, BIT 20, 1980, for the way to notice), or
+ * at the end of its share of samples. */
 #include "words/cycles.h"
 #include "words/step.h"
 

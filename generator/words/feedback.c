@@ -5,8 +5,8 @@
 #include <math.h>
 #include <stddef.h>
 
-/* Tries the small integers that put zeros of the noise on the unit circle; of equals the smaller ones,
- * which cost less. */
+/* Tries the small integers that put zeros of the noise on the unit circle; of equals the smaller
+ * ones, which cost less. */
 void pw_choose_feedback(const double a[3], bool hold, int32_t *k1, int32_t *k2)
 {
     static const int tried[][2] = {

@@ -26,7 +26,8 @@ static wide size_of(int64_t v) { return v < 0 ? (wide)-v : (wide)v; }
  * state and input; *inner that of the unshifted products of b. */
 static wide direct_reach(const pw_format *format, const pw_words *w, wide *inner)
 {
-    wide sample = (wide)1 << (format->sample_bits - 1), b = 0, a = size_of(w->a[1]) + size_of(w->a[2]);
+    wide sample = (wide)1 << (format->sample_bits - 1), b = 0;
+    wide a = size_of(w->a[1]) + size_of(w->a[2]);
     int shift = w->b_fraction - w->a_fraction;
     for (int k = 0; k < 3; k++)
         b += size_of(w->b[k]);

@@ -21,9 +21,10 @@ static double extrapolate(double sum, double h, double d, double target)
     return h > 0 ? left / h : INFINITY;
 }
 
-/* Whether a constant input of one code is lost in rounding on its way: a bit-true run that should move
- * the output by eight LSB moves it by less than four. */
-static bool stands_still(const pw_format *format, const pw_realisation *r, int k, double samples_to_clip)
+/* Whether a constant input of one code is lost in rounding on its way: a bit-true run that should
+ * move the output by eight LSB moves it by less than four. */
+static bool stands_still(const pw_format *format, const pw_realisation *r, int k,
+                         double samples_to_clip)
 {
     int64_t code = llround(r->input_code / format->lsb);
     int64_t state[PW_MAX_SECTIONS][6] = {{0}}, y = 0;
@@ -39,8 +40,8 @@ static bool stands_still(const pw_format *format, const pw_realisation *r, int k
     return wanted >= 0.6 && (double)(y < 0 ? -y : y) < wanted;
 }
 
-/* The response of sections 0..k to an impulse: |h| times the peak adds up for the worst input, h times
- * one code for a constant one. */
+/* The response of sections 0..k to an impulse: |h| times the peak adds up for the worst input, h
+ * times one code for a constant one. */
 static reach find_reach(const pw_line *line, int k, double peak, double code)
 {
     double state[PW_MAX_SECTIONS][4] = {{0}}, size = 0, step = 0, h = 0, before = 0;
@@ -73,7 +74,8 @@ static reach find_reach(const pw_line *line, int k, double peak, double code)
     if (isnan(out.worst))
         out.worst = ceil(RUN + extrapolate(size, fabs(h) * peak, slope * peak, 1));
     if (isnan(out.code))
-        out.code = ceil(RUN + extrapolate(step * (h < 0 ? -1 : 1), fabs(h) * code, slope * code, 1));
+        out.code = ceil(RUN + extrapolate(step * (h < 0 ? -1 : 1), fabs(h) * code, slope * code,
+                                          1));
     return out;
 }
 

@@ -29,15 +29,15 @@ bool pw_job_solve(pw_job *job);
 bool pw_job_words(pw_job *job);
 void pw_job_free(pw_job *job);
 
-/* Word length that keeps the deviation within limits.magnitude (0.5 dB where not given): the present
- * one where it does, else the shortest that would; 0: none up to 32 bits. */
+/* Word length that keeps the deviation within limits.magnitude (0.5 dB where not given): the
+ * present one where it does, else the shortest that would; 0: none up to 32 bits. */
 int pw_job_enough_bits(pw_job *job);
 
 /* Fills out->word_magnitude_db and word_phase_deg, while ideal[] is monic. */
 void pw_deviation_monic(pw_job *job);
 /* The largest error of the response, complex, against the largest response of the band, as dB (8.7
- * times the ratio): what a deviation deep in a stop band or a notch amounts to. Of one section: what
- * its words alone would do to the whole. */
+ * times the ratio): what a deviation deep in a stop band or a notch amounts to. Of one section:
+ * what its words alone would do to the whole. */
 double pw_bend(const pw_job *job);
 double pw_section_bend(const pw_job *job, int k);
 
@@ -56,8 +56,8 @@ bool pw_coupled_suits(const pw_format *format, const pw_section *section);
 
 /* ---- feedback.c ---- */
 
-/* k1 and k2 of the quietest error feedback for these poles. hold: of those that lose nothing at rest
- * (k1 + k2 = 1), for a section that an integrator follows or that integrates. */
+/* k1 and k2 of the quietest error feedback for these poles. hold: of those that lose nothing at
+ * rest (k1 + k2 = 1), for a section that an integrator follows or that integrates. */
 void pw_choose_feedback(const double a[3], bool hold, int32_t *k1, int32_t *k2);
 /* Whether a section from k on integrates. */
 bool pw_integrates_from(const pw_realisation *r, int k);

@@ -20,7 +20,8 @@ double pw_feedback_power(const double a[3], int k1, int k2)
 
 /* ---- one source ---- */
 
-typedef struct source { double variance, mean; } source;   /* LSB^2, LSB, at the place of rounding */
+typedef struct source { double variance, mean; } source;   /* LSB^2, LSB, at the place of
+                                                              rounding */
 
 static int trailing_zeros(int64_t word)
 {
@@ -106,7 +107,8 @@ static route_end to_output(const pw_paths *paths, int from, const pw_line *first
     return end;
 }
 
-static route_end end_of(const pw_paths *paths, int from, const pw_route *route, const pw_line *first)
+static route_end end_of(const pw_paths *paths, int from, const pw_route *route,
+                        const pw_line *first)
 {
     if (route->reach < paths->count)
         return to_output(paths, from, first);

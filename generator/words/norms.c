@@ -137,8 +137,8 @@ static void tally_long(runner *r, pw_place place, const long double *v, int n)
 #define NAME(name) name##_long
 #include "words/norms_loop.h"
 
-/* Responses that have faded are made zero: denormal numbers are slow. What is lost is below 1e-200 with
- * any all_pole that a word can give, and is added by conclude(). */
+/* Responses that have faded are made zero: denormal numbers are slow. What is lost is below 1e-200
+ * with any all_pole that a word can give, and is added by conclude(). */
 static void fade(runner *r)
 {
     if (fabsl(r->x1) + fabsl(r->x2) + fabsl(r->y1) + fabsl(r->y2) < 1e-280L)
@@ -258,10 +258,14 @@ static long double run(const pw_line *line, int count, bool wide, pw_norm out[][
         else if (samples == 0)
             block.narrow[0] = 1;
         for (int k = 0; k < count; k++) {
-            if (wide)
-                (line[k].coupled ? run_coupled_long : run_direct_long)(&line[k], &r[k], block.wide, n);
+            if (wide && line[k].coupled)
+                run_coupled_long(&line[k], &r[k], block.wide, n);
+            else if (wide)
+                run_direct_long(&line[k], &r[k], block.wide, n);
+            else if (line[k].coupled)
+                run_coupled_double(&line[k], &r[k], block.narrow, n);
             else
-                (line[k].coupled ? run_coupled_double : run_direct_double)(&line[k], &r[k], block.narrow, n);
+                run_direct_double(&line[k], &r[k], block.narrow, n);
             tail = close_section(&line[k], &r[k], tail);
         }
         samples += n;
@@ -292,8 +296,8 @@ static bool same_line(const pw_line *p, const pw_line *q)
     for (int k = 0; k < 3; k++)
         if (p->b[k] != q->b[k] || p->a[k] != q->a[k])
             return false;
-    return p->coupled == q->coupled && p->sigma == q->sigma && p->omega == q->omega && p->g1 == q->g1
-        && p->g2 == q->g2 && p->c1 == q->c1 && p->c2 == q->c2 && p->d == q->d;
+    return p->coupled == q->coupled && p->sigma == q->sigma && p->omega == q->omega
+        && p->g1 == q->g1 && p->g2 == q->g2 && p->c1 == q->c1 && p->c2 == q->c2 && p->d == q->d;
 }
 
 static bool recall(const pw_line *line, int count, pw_norm out[][PW_PLACES])

@@ -60,7 +60,8 @@ static void pair_nearest(const pw_units *u, const int start[], int poles, pw_arr
 }
 
 /* Integrators are last and take the zeros nearest to 1: what comes before them is then free of the
- * zero that makes their output jump. Returns how many pole units come before; counts what is left. */
+ * zero that makes their output jump. Returns how many pole units come before; counts what is
+ * left. */
 static int serve_integrators(pw_units *u, pw_arranged *order)
 {
     int before = 0;
@@ -97,8 +98,8 @@ static const char *arrange(const pw_units *u, int poles, bool as_listed,
         return "as listed; each pole has the nearest zeros";
     if (pw_arrange_order(u, poles, context, order))
         return "each pole has the nearest zeros; of all orders the one of least round-off noise";
-    return "each pole has the nearest zeros; the order comes from a local search that moves one section "
-           "at a time while round-off noise falls";
+    return "each pole has the nearest zeros; the order comes from a local search that moves one "
+           "section at a time while round-off noise falls";
 }
 
 void pw_order_sections(const pw_roots *z, bool as_listed, const pw_arrange_context *context,

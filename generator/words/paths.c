@@ -96,7 +96,8 @@ static pw_line direct_source(const pw_line *line, long double k1, long double k2
     return s;
 }
 
-pw_line pw_paths_source_line(const pw_paths *paths, const pw_words *w, int section, pw_source source)
+pw_line pw_paths_source_line(const pw_paths *paths, const pw_words *w, int section,
+                             pw_source source)
 {
     pw_line s = paths->line[section];
     if (source != PW_SOURCE_OUTPUT) {

@@ -12,8 +12,10 @@ typedef enum pw_source {
 } pw_source;
 
 typedef struct pw_route {
-    pw_norm (*norm)[PW_PLACES];  /* norm[k - from] for section k, from <= k < reach; null: not run */
-    int reach;                   /* one past the last section that it reaches before an integrator */
+    pw_norm (*norm)[PW_PLACES];  /* norm[k - from] for section k, from <= k < reach; null: not
+                                    run */
+    int reach;                   /* one past the last section that it reaches before an
+                                    integrator */
 } pw_route;
 
 typedef struct pw_paths {
@@ -30,11 +32,13 @@ typedef struct pw_paths {
 void pw_paths_make(const pw_realisation *r, pw_paths *out);
 void pw_paths_free(pw_paths *paths);
 const pw_route *pw_paths_input(pw_paths *paths, int from);
-const pw_route *pw_paths_source(pw_paths *paths, const pw_words *words, int section, pw_source source);
+const pw_route *pw_paths_source(pw_paths *paths, const pw_words *words, int section,
+                                pw_source source);
 const pw_route *pw_paths_shift(pw_paths *paths, int section);
 const pw_route *pw_paths_settle(pw_paths *paths, int section);
 /* The section as such a source sees it: what stands for it in the chain. */
-pw_line pw_paths_source_line(const pw_paths *paths, const pw_words *words, int section, pw_source source);
+pw_line pw_paths_source_line(const pw_paths *paths, const pw_words *words, int section,
+                             pw_source source);
 pw_line pw_paths_shift_line(const pw_paths *paths, int section);
 /* >= L1 from the alignment of b in section j to the output of section k, without a run. */
 long double pw_paths_shift_bound(const pw_paths *paths, int j, int k);

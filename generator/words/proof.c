@@ -23,8 +23,8 @@ static long double source_reach(const pw_format *format, const pw_norm *norm)
 }
 
 /* A filter that was settled starts up to half a step (truncating: one) from rest in y, or in both
- * words. Where rounding itself can keep it there this is nothing new; where the error is fed back, or
- * 1/A is less than one at rest, it is an impulse more. */
+ * words. Where rounding itself can keep it there this is nothing new; where the error is fed back,
+ * or 1/A is less than one at rest, it is an impulse more. */
 static long double settle_from(pw_proof *p, const pw_words *w, int j, int k, pw_place place)
 {
     long double off = p->format.lsb * (p->format.truncate ? 1 : 0.5L);
@@ -48,7 +48,8 @@ static long double settle_at(pw_proof *p, const pw_realisation *r, int from, int
     return sum;
 }
 
-static long double rounding_at(pw_proof *p, const pw_realisation *r, int from, int k, pw_place place)
+static long double rounding_at(pw_proof *p, const pw_realisation *r, int from, int k,
+                               pw_place place)
 {
     long double sum = 0;
     for (int j = from; j <= k; j++) {
@@ -58,10 +59,12 @@ static long double rounding_at(pw_proof *p, const pw_realisation *r, int from, i
             const pw_route *route = pw_paths_source(&p->paths, w, j, s);
             if (s == PW_SOURCE_OUTPUT && coupled && j == k && place != PW_PLACE_OUTPUT)
                 continue;        /* rounding of y does not enter the two words */
-            sum += route->reach > k ? source_reach(&p->format, &route->norm[k - j][place]) : INFINITY;
+            sum += route->reach > k ? source_reach(&p->format, &route->norm[k - j][place])
+                                    : INFINITY;
         }
         if (!coupled && w->b_fraction > w->a_fraction)
-            sum += ldexpl(p->format.lsb, -w->a_fraction - 1) * pw_paths_shift_bound(&p->paths, j, k);
+            sum += ldexpl(p->format.lsb, -w->a_fraction - 1)
+                 * pw_paths_shift_bound(&p->paths, j, k);
     }
     return sum;
 }
@@ -91,8 +94,8 @@ static section_bound bound_section(pw_proof *p, const pw_realisation *r, int fro
         bool finite = in->reach > k;
         s.gain[place] = finite ? in->norm[k - from][place].l1 : INFINITY;
         s.rounding[place] = !p->format.fixed ? 0
-                          : finite ? rounding_at(p, r, from, k, place) + settle_at(p, r, from, k, place)
-                          : INFINITY;
+                          : !finite ? INFINITY
+                          : rounding_at(p, r, from, k, place) + settle_at(p, r, from, k, place);
         s.bound[place] = peak * s.gain[place] + s.rounding[place];
         s.clips = s.clips || !(s.bound[place] <= p->format.largest);
     }
@@ -232,7 +235,8 @@ static double linear_walk(pw_proof *p, const pw_realisation *r)
         p->gain[k] = (double)s.gain[0], p->rounding[k] = (double)s.rounding[0];
         p->inner_gain[k] = (double)fmaxl(s.gain[1], s.gain[2]);
         p->inner_rounding[k] = (double)fmaxl(s.rounding[1], s.rounding[2]);
-        for (int i = 0; from == 0 && i < (r->section[k].structure == PW_COUPLED ? PW_PLACES : 1); i++)
+        int places = r->section[k].structure == PW_COUPLED ? PW_PLACES : 1;
+        for (int i = 0; from == 0 && i < places; i++)
             level = fmin(level, (double)((p->format.largest - s.rounding[i]) / s.gain[i]));
         if (p->paths.integrates[k])
             from = k + 1, level = 0;

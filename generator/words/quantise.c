@@ -5,7 +5,8 @@
 #include <math.h>
 #include <string.h>
 
-/* A zero this near to the circle was meant to be on it: bilinear leaves an error of an ulp or two. */
+/* A zero this near to the circle was meant to be on it: bilinear leaves an error of an ulp or
+ * two. */
 #define ON_CIRCLE 4e-15
 
 static bool exact_one(double complex zero)
@@ -205,7 +206,8 @@ void pw_quantise_float(const pw_format *format, const pw_section *section, long 
     memset(w->fb, 0, sizeof w->fb);
     for (int j = 0; j < basis.count; j++) {
         double own = (double)fabsl(basis.value[j]);
-        double word = on_grid(format, basis.value[j], tied && basis.count > 1 ? largest_of(b) : own);
+        bool shared = tied && basis.count > 1;
+        double word = on_grid(format, basis.value[j], shared ? largest_of(b) : own);
         for (int k = 0; k < 3; k++)
             w->fb[k] += basis.unit[j][k] * word;
     }

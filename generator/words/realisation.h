@@ -13,8 +13,8 @@
  * direct-1 (fixed point, and the same formula in floats where the user asks for it; 64-bit
  * accumulator; words are integers, b_k = word 2^-b_fraction, a_k = word 2^-a_fraction):
  *     p   = b0 x + b1 x1 + b2 x2                exact
- *     p   = p 2^(a_fraction - b_fraction)       left shift exact; a right shift by s rounds half up:
- *                                               (p + 2^(s-1)) >> s, arithmetic shift (floor)
+ *     p   = p 2^(a_fraction - b_fraction)       left shift exact; a right shift by s rounds half
+ *                                               up: (p + 2^(s-1)) >> s, arithmetic shift (floor)
  *     acc = p - a1 y1 - a2 y2                   exact
  *     v   = (acc + half) >> a_fraction          half = 2^(a_fraction-1) nearest, 0 truncate
  *     y   = v clamped to the word (saturate) or reduced modulo 2^16 / 2^32 (wrap); if v was outside
@@ -46,7 +46,8 @@ typedef struct pw_words {        /* one section, as computed */
     pw_structure structure;      /* never PW_STRUCTURE_AUTO */
     int order;                   /* 0 plain gain (direct-1 with a = 0), 1 or 2 */
     /* floats: */
-    double fb[3], fa[3];         /* the words as doubles (rounded to float for float32); fa[0] = 1 */
+    double fb[3], fa[3];         /* the words as doubles (rounded to float for float32); fa[0] =
+                                    1 */
     /* direct forms, fixed point: */
     int32_t b[3], a[3];          /* a[0] unused; within int16_t for 16-bit words */
     int b_fraction, a_fraction;  /* 0..62 and 0..31; b_fraction may exceed 31 for small words */
@@ -55,8 +56,8 @@ typedef struct pw_words {        /* one section, as computed */
     int32_t sigma, omega, g, c1, c2, d;
     int c_fraction;              /* a_fraction is that of sigma, omega, g */
     /* what was proved: */
-    bool cannot_clip;            /* every clamp of this section may be left out, for any input word (not
-                                    only within the peak) */
+    bool cannot_clip;            /* every clamp of this section may be left out, for any input word
+                                    (not only within the peak) */
     bool fits_32;                /* the accumulator may be kept modulo 2^32: its final value always
                                     fits int32_t (needs b_fraction == a_fraction, 16-bit words) */
     double realised_b[3], realised_a[3];   /* exactly what the words compute, sample to sample
@@ -66,9 +67,10 @@ typedef struct pw_words {        /* one section, as computed */
 typedef struct pw_node {
     char name[40];               /* "section 2 output", "section 2 accumulator", "section 3 u1" */
     int section;                 /* from 1 */
-    double bound;                /* of |node|, full scale 1.0; INFINITY for an integrator. From a state
-                                    that reset or settle made; behind a section that can clip, and in the
-                                    accumulator of one, for an input of full scale there */
+    double bound;                /* of |node|, full scale 1.0; INFINITY for an integrator. From a
+                                    state that reset or settle made; behind a section that can
+                                    clip, and in the accumulator of one, for an input of full scale
+                                    there */
     double headroom_db;          /* 20 log10(largest positive word / bound); -INFINITY */
     double peak_gain;            /* L1 from input to node, without round-off */
     bool can_clip, integrates;
@@ -82,8 +84,9 @@ typedef struct pw_noise {
     bool given;                  /* false for floats */
     double output_rms_lsb, output_offset_lsb, output_dbfs, snr_db, effective_bits;
     double input_quantisation_rms_lsb;    /* what the input's own rounding becomes at the output */
-    double growth_lsb2_per_sample;        /* integrators: variance per sample, INFINITY where that grows
-                                             itself; else 0. The rms above is then of the rest */
+    double growth_lsb2_per_sample;        /* integrators: variance per sample, INFINITY where that
+                                             grows itself; else 0. The rms above is then of the
+                                             rest */
     bool grows;
 } pw_noise;
 
@@ -121,16 +124,17 @@ typedef struct pw_realisation {
     int worst_node;              /* index of the node nearest to its clamp */
     const char *structure_why;   /* one sentence; "" where the user named it */
     int enough_bits;             /* coefficient word length that keeps word_magnitude_db within
-                                    limits.magnitude (0.5 dB where not given): coefficient_bits where
-                                    it does, else the shortest that would; 0: none up to 32 bits */
+                                    limits.magnitude (0.5 dB where not given): coefficient_bits
+                                    where it does, else the shortest that would; 0: none up to 32 */
     const char *order_why;       /* how the order was found */
     pw_error_peak word_magnitude_db, word_phase_deg;   /* realised against ideal over the band */
 } pw_realisation;
 
 /* Words, scales, order and every proof. Messages: a structure that does not fit the format or the
  * poles, words too short for stability (with the length that would do). */
-PW_CHECKED pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_digital *digital,
-                                const pw_target *target, pw_realisation *out, pw_messages *messages);
+PW_CHECKED pw_status pw_realise(const pw_stage *stage, const pw_roots *analog,
+                                const pw_digital *digital, const pw_target *target,
+                                pw_realisation *out, pw_messages *messages);
 
 /* Realised response from input sample to output sample at z. */
 double complex pw_realised_at(const pw_realisation *realisation, double complex z);

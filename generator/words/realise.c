@@ -19,9 +19,9 @@ static void insert_gain(pw_job *j, int at, long double gain)
     r->count++;
 }
 
-/* Fraction bits of a that this section cannot do without: where its poles come near to 1 or -1 or the
- * circle, a step of a should move them by 1e-5 of that distance at most. One bit below what the words
- * could hold is always let go, more than four never. */
+/* Fraction bits of a that this section cannot do without: where its poles come near to 1 or -1 or
+ * the circle, a step of a should move them by 1e-5 of that distance at most. One bit below what
+ * the words could hold is always let go, more than four never. */
 static int needed_fraction(const pw_format *format, const pw_section *s)
 {
     int full = pw_pole_fraction(format, s), least = full - 4 > 1 ? full - 4 : 1;
@@ -31,7 +31,8 @@ static int needed_fraction(const pw_format *format, const pw_section *s)
     return need < full - 1 ? need : full > 1 ? full - 1 : 1;
 }
 
-/* The gain of section k that lets its poles keep the fraction bits they need: int64_t holds no more. */
+/* The gain of section k that lets its poles keep the fraction bits they need: int64_t holds no
+ * more. */
 static long double gain_that_fits(const pw_job *j, int k)
 {
     const pw_section *s = &j->out->ideal[k];
@@ -79,7 +80,8 @@ static void ideal_gains(pw_job *j)
 static double input_code(const pw_port *input, const pw_format *format)
 {
     if (!format->fixed) return 0;
-    double code = input->bits ? ldexp(input->high - input->low, -input->bits) / input->full_scale : 0;
+    double code = input->bits ? ldexp(input->high - input->low, -input->bits) / input->full_scale
+        : 0;
     return fmax(code, format->lsb);
 }
 
@@ -115,7 +117,8 @@ pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_dig
         .shaped = j.format.fixed && stage->arithmetic.structure != PW_DIRECT_1,
         .factor = (double)fabsl(j.factor) * out->input_peak,
     };
-    pw_order_sections(&digital->z, stage->arithmetic.as_listed, &context, &sections, &out->order_why);
+    pw_order_sections(&digital->z, stage->arithmetic.as_listed, &context, &sections,
+                      &out->order_why);
     out->count = sections.count;
     memcpy(out->ideal, sections.list, sizeof sections.list);
     pw_scale_gains(&j.format, out, j.factor, j.gain);

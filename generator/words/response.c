@@ -101,7 +101,8 @@ void pw_band_make(const pw_stage *stage, const pw_roots *z, pw_band *out)
     const int steps = 64;
     out->count = 0;
     for (int k = 0; k <= steps; k++)
-        grid_add(stage, out, k == steps ? band[1] : band[0] * pow(band[1] / band[0], k / (double)steps));
+        grid_add(stage, out, k == steps ? band[1]
+                 : band[0] * pow(band[1] / band[0], k / (double)steps));
     for (int k = 0; k < z->poles; k++) {        /* the response turns fastest near a pole */
         double angle = fabs(carg(z->pole[k])), width = fabs(log(cabs(z->pole[k])));
         double hz = stage->rate_hz / (2 * M_PI);
@@ -131,7 +132,8 @@ double pw_section_bend(const pw_job *job, int k)
     double worst = 0;
     for (int i = 0; i < job->band.count; i++)
         if (job->band.judged[i])
-            worst = fmax(worst, job->band.level[i] * cabs(section_ratio(job, k, job->band.theta[i]) - 1));
+            worst = fmax(worst, job->band.level[i] * cabs(section_ratio(job, k,
+                                                                        job->band.theta[i]) - 1));
     return 20 / M_LN10 * worst;
 }
 

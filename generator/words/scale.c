@@ -35,7 +35,8 @@ static long double peak_on_circle(const pw_section *section, int from, int to)
         for (int p = 0; p < section[j].poles; p++) {
             double size = 1;
             for (int k = from; k <= to; k++)
-                size *= cabs(pw_ideal_response(&section[k], fabs(carg(section[j].pole[p])) + 1e-12));
+                size *= cabs(pw_ideal_response(&section[k],
+                                               fabs(carg(section[j].pole[p])) + 1e-12));
             peak = fmax(peak, size);
         }
     return peak;

@@ -1,11 +1,12 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Words near the rounded ones that follow the ideal section more closely.
  *
- * Method: for every pair of words of a within two steps of the rounded ones, b is scaled so that the
- * largest deviation over the band is the same up and down, rounded, and its neighbours are tried.
- * The rounded words are among the candidates, so the result is never worse than rounding. Where the
- * zeros are a pair on the unit circle, the two values of b are taken as the fraction that is nearest
- * to their ratio, within GAIN_GIVEN of gain: the notch then stands where it should. */
+ * Method: for every pair of words of a within two steps of the rounded ones, b is scaled so that
+ * the largest deviation over the band is the same up and down, rounded, and its neighbours are
+ * tried. The rounded words are among the candidates, so the result is never worse than rounding.
+ * Where the zeros are a pair on the unit circle, the two values of b are taken as the fraction
+ * that is nearest to their ratio, within GAIN_GIVEN of gain: the notch then stands where it
+ * should. */
 #include "words/search.h"
 
 #include <complex.h>
@@ -14,7 +15,8 @@
 
 #define REACH 2                  /* steps of a, each way */
 #define KEPT 4                   /* pairs of a whose b is searched */
-#define GAIN_GIVEN 5e-5          /* of gain that a notch may cost to stand where it should: 0.0004 dB */
+#define GAIN_GIVEN 5e-5          /* of gain that a notch may cost to stand where it should: 0.0004
+                                    dB */
 #define POINTS ((int)(sizeof ((pw_band *)0)->hz / sizeof(double)))
 
 typedef struct candidate {
@@ -32,7 +34,8 @@ typedef struct search {
     int count;                   /* points that are judged */
     double complex t[POINTS];    /* 1 - 1/z */
     double complex log_b[POINTS], log_a[POINTS];   /* of the ideal polynomials */
-    double complex now_a[POINTS];                  /* log ratio of the a at hand, ideal over words */
+    double complex now_a[POINTS];                  /* log ratio of the a at hand, ideal over
+                                                      words */
 } search;
 
 static double complex polynomial(double c0, double c1, double c2, double complex t)
@@ -112,7 +115,8 @@ static double judge(const search *s, const double b[3], double best)
 {
     double worst = 0;
     for (int i = 0; i < s->count && worst < best; i++) {
-        double complex ratio = s->now_a[i] + clog(polynomial(b[0], b[1], b[2], s->t[i])) - s->log_b[i];
+        double complex ratio = s->now_a[i] + clog(polynomial(b[0], b[1], b[2],
+                                                             s->t[i])) - s->log_b[i];
         worst = fmax(worst, fabs(creal(ratio)) + 0.1 * fabs(wrap(cimag(ratio))));
     }
     return worst;
@@ -157,8 +161,9 @@ static double round_to(double value, double step)
     return step > 0 ? rint(value / step) * step : value;
 }
 
-/* Values of b for a unit-circle pair whose ratio is nearly that of whole numbers: the first such pair on
- * either side of the rounded one. Near z = 1 the ratio is almost -2, and the way there is long. */
+/* Values of b for a unit-circle pair whose ratio is nearly that of whole numbers: the first such
+ * pair on either side of the rounded one. Near z = 1 the ratio is almost -2, and the way there is
+ * long. */
 static void fit_ratio(const search *s, double scale, double value[3])
 {
     double step = s->b_step[0], w0 = rint((double)s->basis.value[0] * scale / step);
@@ -176,7 +181,8 @@ static void fit_ratio(const search *s, double scale, double value[3])
     }
 }
 
-static void try_b(search *s, const candidate *c, double scale, double *best, double a[3], double value[3])
+static void try_b(search *s, const candidate *c, double scale, double *best, double a[3],
+                  double value[3])
 {
     double start[3] = {0}, v[3], b[3];
     int n = s->basis.count, all = n == 3 ? 27 : n == 2 ? 9 : 3;

@@ -56,7 +56,8 @@ static bool section_words(pw_job *job, int k)
     }
     if (job->structure[k] == PW_COUPLED) {
         int from = segment_start(job, k);
-        return pw_quantise_coupled(&job->format, &r->ideal[k], job->gain[k], &r->section[from], k - from,
+        return pw_quantise_coupled(&job->format, &r->ideal[k], job->gain[k], &r->section[from],
+                                   k - from,
                                    from ? 1 : r->input_peak, job->inner[k], w)
             && pw_words_stable(&r->ideal[k], w);
     }

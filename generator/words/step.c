@@ -2,7 +2,8 @@
 /* Precondition: pw_words_safe. Shifts of negative values are arithmetic in gcc and clang. */
 #include "words/step.h"
 
-static int64_t into_word(const pw_format *format, bool wrap, int64_t v, bool *outside, uint64_t *clips)
+static int64_t into_word(const pw_format *format, bool wrap, int64_t v, bool *outside,
+                         uint64_t *clips)
 {
     const int64_t span = INT64_C(1) << format->sample_bits, high = span / 2 - 1, low = -span / 2;
     *outside = v < low || v > high;
@@ -39,7 +40,8 @@ static int64_t step_coupled(const pw_format *format, bool wrap, const pw_words *
     return into_word(format, wrap, rounded(format, y, w->c_fraction), &outside, clips);
 }
 
-int64_t pw_step_section(const pw_format *format, bool wrap, const pw_words *w, int64_t s[6], int64_t x,
+int64_t pw_step_section(const pw_format *format, bool wrap, const pw_words *w, int64_t s[6],
+                        int64_t x,
                         uint64_t *clips)
 {
     bool outside;

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The arithmetic of realisation.h, one sample at a time, for samples of any width up to 32 bits: what
- * the search for limit cycles runs, and what small words are proved with exhaustively. */
+/* The arithmetic of realisation.h, one sample at a time, for samples of any width up to 32 bits:
+ * what the search for limit cycles runs, and what small words are proved with exhaustively. */
 #ifndef PW_WORDS_STEP_H
 #define PW_WORDS_STEP_H
 

@@ -1,11 +1,12 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Realises digital models given as JSON, one a line on standard input, and prints what was found,
  * one JSON object a line. Keys: poles, zeros ([re, im], conjugates both), factor, sample,
- * bits, structure, scaling, rate, peak, band, truncate, wrap, as-listed, in, out (volts), noise-limit,
- * magnitude-limit; and what to do beside: probe (a length: the overflow probe, and the largest value
- * that each node reaches under it), random (a length: the rms of the output against the same words in
- * long double, on random input), input (words: what the simulation gives back).
- * A line {"chain": [{"b": [..], "a": [..]}, ..]} gives the norms from its input to each section. */
+ * bits, structure, scaling, rate, peak, band, truncate, wrap, as-listed, in, out (volts),
+ * noise-limit, magnitude-limit; and what to do beside: probe (a length: the overflow probe, and
+ * the largest value that each node reaches under it), random (a length: the rms of the output
+ * against the same words in long double, on random input), input (words: what the simulation gives
+ * back). A line {"chain": [{"b": [..], "a": [..]}, ..]} gives the norms from its input to each
+ * section. */
 #include <jansson.h>
 #include <math.h>
 #include <stdio.h>
@@ -35,14 +36,16 @@ static int roots(json_t *list, double complex *to)
     size_t i;
     json_t *v;
     json_array_foreach(list, i, v)
-        to[i] = CMPLX(json_number_value(json_array_get(v, 0)), json_number_value(json_array_get(v, 1)));
+        to[i] = CMPLX(json_number_value(json_array_get(v, 0)),
+                      json_number_value(json_array_get(v, 1)));
     return (int)json_array_size(list);
 }
 
 static void read_stage(json_t *in, pw_stage *stage, pw_digital *digital)
 {
     static const char *const samples[] = {"float32", "float64", "q31", "q15"};
-    static const char *const structures[] = {"auto", "direct-1", "direct-1-shaped", "transposed-2", "coupled"};
+    static const char *const structures[] = {"auto", "direct-1", "direct-1-shaped", "transposed-2",
+                                             "coupled"};
     static const char *const scalings[] = {"l1", "linf", "l2", "none"};
     memset(stage, 0, sizeof *stage);
     memset(digital, 0, sizeof *digital);
@@ -88,7 +91,8 @@ static json_t *words_json(const pw_realisation *r, int k)
 {
     const pw_words *w = &r->section[k];
     const pw_section *s = &r->ideal[k];
-    return json_pack("{s:i,s:i,s:o,s:o,s:[i,i,i],s:[i,i],s:i,s:i,s:i,s:i,s:[i,i,i,i,i,i,i],s:b,s:b,s:o,s:o,s:o}",
+    return json_pack("{s:i,s:i,s:o,s:o,s:[i,i,i],s:[i,i],s:i,s:i,s:i,s:i,s:[i,i,i,i,i,i,i],s:b,s:b,"
+                     "s:o,s:o,s:o}",
         "structure", w->structure, "order", w->order,
         "b", list_of(w->realised_b, 3), "a", list_of(w->realised_a, 3),
         "bw", w->b[0], w->b[1], w->b[2], "aw", w->a[1], w->a[2],
@@ -167,7 +171,8 @@ static long double exact_step(const pw_words *w, long double s[4], long double x
     return y;
 }
 
-/* Mean and rms about it of the output error in LSB, after a quarter of the run; uniform random input. */
+/* Mean and rms about it of the output error in LSB, after a quarter of the run; uniform random
+ * input. */
 static json_t *random_json(const pw_realisation *r, int n, double level)
 {
     long double state[PW_MAX_SECTIONS][4] = {{0}};
@@ -187,7 +192,8 @@ static json_t *random_json(const pw_realisation *r, int n, double level)
             sum += e, square += e * e;
     }
     double m = n - n / 4, mean = sum / m;
-    return json_pack("{s:o,s:o,s:I}", "mean", real(mean), "rms", real(sqrt(square / m - mean * mean)),
+    return json_pack("{s:o,s:o,s:I}", "mean", real(mean), "rms",
+                     real(sqrt(square / m - mean * mean)),
                      "clipped", (json_int_t)sim.clipped);
 }
 
@@ -238,18 +244,23 @@ static json_t *result(const pw_realisation *r, json_t *in)
         json_array_append_new(sections, words_json(r, k));
     const pw_noise *n = &r->noise;
     const pw_limit_cycle *c = &r->limit_cycle;
-    o = json_pack("{s:o,s:o,s:o,s:i,s:s,s:s,s:o,s:o,s:o}", "sections", sections, "nodes", nodes_json(r),
+    o = json_pack("{s:o,s:o,s:o,s:i,s:s,s:s,s:o,s:o,s:o}", "sections", sections, "nodes",
+                  nodes_json(r),
         "first_clip_input", real(r->first_clip_input), "worst_node", r->worst_node,
         "structure_why", r->structure_why ? r->structure_why : "", "order_why", r->order_why,
-        "magnitude_db", real(r->word_magnitude_db.max), "magnitude_hz", real(r->word_magnitude_db.at_hz),
+        "magnitude_db", real(r->word_magnitude_db.max), "magnitude_hz",
+            real(r->word_magnitude_db.at_hz),
         "phase_deg", real(r->word_phase_deg.max));
     json_object_set_new(o, "noise", json_pack("{s:b,s:o,s:o,s:o,s:o,s:o,s:o,s:o,s:b}",
-        "given", n->given, "rms_lsb", real(n->output_rms_lsb), "offset_lsb", real(n->output_offset_lsb),
+        "given", n->given, "rms_lsb", real(n->output_rms_lsb), "offset_lsb",
+            real(n->output_offset_lsb),
         "dbfs", real(n->output_dbfs), "snr_db", real(n->snr_db), "bits", real(n->effective_bits),
-        "input_rms_lsb", real(n->input_quantisation_rms_lsb), "growth", real(n->growth_lsb2_per_sample),
+        "input_rms_lsb", real(n->input_quantisation_rms_lsb), "growth",
+            real(n->growth_lsb2_per_sample),
         "grows", n->grows));
     json_object_set_new(o, "cycle", json_pack("{s:b,s:o,s:o,s:o,s:i,s:b}", "given", c->given,
-        "bound_lsb", real(c->bound_lsb), "found_lsb", real(c->found_lsb), "found_constant_lsb", real(c->found_constant_lsb), "period", c->found_period,
+        "bound_lsb", real(c->bound_lsb), "found_lsb", real(c->found_lsb), "found_constant_lsb",
+            real(c->found_constant_lsb), "period", c->found_period,
         "has_state", c->has_state));
     json_object_set_new(o, "enough_bits", json_integer(r->enough_bits));
     if (probe > 0)

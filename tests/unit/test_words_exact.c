@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What must hold exactly for every choice of words: zeros and poles at 1 and -1, zeros on the circle,
- * and accumulators that stay within int64_t for any state and input. */
+/* What must hold exactly for every choice of words: zeros and poles at 1 and -1, zeros on the
+ * circle, and accumulators that stay within int64_t for any state and input. */
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stddef.h>
@@ -25,8 +25,8 @@ static pw_format format_of(pw_sample sample, int bits)
     return pw_format_of(&a);
 }
 
-/* A random section: kind 0 zeros at 1 1, 1 at -1 -1, 2 at 1 -1, 3 on the circle, 4 anywhere, 5 one at 1 and
- * one anywhere. */
+/* A random section: kind 0 zeros at 1 1, 1 at -1 -1, 2 at 1 -1, 3 on the circle, 4 anywhere, 5 one
+ * at 1 and one anywhere. */
 static pw_section random_section(int kind)
 {
     pw_section s = {.order = 2, .poles = 2, .zeros = 2, .gain = 1};
@@ -78,7 +78,8 @@ static void check_range(const pw_format *format, const pw_words *w)
         p += size_of(w->a[k]) * sample;
     p += (size_of(w->k1) + size_of(w->k2)) << (w->a_fraction - 1);
     assert_true(p + ((wide)1 << (w->a_fraction - 1)) < limit);
-    assert_true(w->a_fraction >= 1 && w->a_fraction <= 31 && w->b_fraction >= 0 && w->b_fraction <= 62);
+    assert_true(w->a_fraction >= 1 && w->a_fraction <= 31 && w->b_fraction >= 0
+                && w->b_fraction <= 62);
     int32_t most = format->word_bits == 16 ? 32767 : INT32_MAX;
     for (int k = 0; k < 3; k++)
         assert_true(w->b[k] >= -most && w->b[k] <= most && w->a[k] >= -most && w->a[k] <= most);
@@ -87,13 +88,15 @@ static void check_range(const pw_format *format, const pw_words *w)
 static void test_zeros_and_ranges(void **nothing)
 {
     (void)nothing;
-    static const struct { pw_sample sample; int bits; } formats[] = {{PW_Q15, 16}, {PW_Q15, 32}, {PW_Q31, 16}, {PW_Q31, 32}};
+    static const struct { pw_sample sample; int bits; } formats[] = {{PW_Q15, 16}, {PW_Q15, 32},
+                                                                     {PW_Q31, 16}, {PW_Q31, 32}};
     int worded = 0;
     for (int i = 0; i < 4000; i++) {
         pw_format format = format_of(formats[i % 4].sample, formats[i % 4].bits);
         int kind = i / 4 % 6;
         pw_section section = random_section(kind);
-        pw_words w = {.structure = i % 3 ? PW_DIRECT_1_SHAPED : PW_DIRECT_1, .k1 = i % 3 ? 2 : 0, .k2 = i % 3 ? -1 : 0};
+        pw_words w = {.structure = i % 3 ? PW_DIRECT_1_SHAPED : PW_DIRECT_1, .k1 = i % 3 ? 2 : 0,
+                      .k2 = i % 3 ? -1 : 0};
         if (!pw_quantise_direct(&format, &section, pow(10, uniform(-8, 3)), &w))
             continue;
         worded++;

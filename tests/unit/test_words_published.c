@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Dead bands and round-off figures from textbooks, on the station's own arithmetic. Values as collected
- * in tests/outside/published/scaling-noise-deadband.json: Proakis & Manolakis (example 7.7.1), Salivahanan
- * et al. (examples 10.3 to 10.5); the classical second-order dead band, Jackson 1969, is from memory. */
+/* Dead bands and round-off figures from textbooks, on the station's own arithmetic. Values as
+ * collected in tests/outside/published/scaling-noise-deadband.json: Proakis & Manolakis (example
+ * 7.7.1), Salivahanan et al. (examples 10.3 to 10.5); the classical second-order dead band,
+ * Jackson 1969, is from memory. */
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stddef.h>
@@ -14,12 +15,14 @@
 #include "words/step.h"
 
 static const pw_format q15 = {
-    .sample = PW_Q15, .fixed = true, .sample_bits = 16, .word_bits = 16, .lsb = 0x1p-15, .largest = 32767 / 32768.0,
+    .sample = PW_Q15, .fixed = true, .sample_bits = 16, .word_bits = 16, .lsb = 0x1p-15,
+        .largest = 32767 / 32768.0,
 };
 
 static pw_words section(double b0, double a1, double a2)
 {
-    pw_words w = {.structure = PW_DIRECT_1, .order = a2 != 0 ? 2 : 1, .b_fraction = 14, .a_fraction = 14};
+    pw_words w = {.structure = PW_DIRECT_1, .order = a2 != 0 ? 2 : 1, .b_fraction = 14,
+                  .a_fraction = 14};
     w.b[0] = (int32_t)lrint(ldexp(b0, 14));
     w.a[1] = (int32_t)lrint(ldexp(a1, 14));
     w.a[2] = (int32_t)lrint(ldexp(a2, 14));
@@ -41,7 +44,8 @@ static void find(pw_realisation *r, pw_proof *proof)
     pw_cycles_find(proof, r);
 }
 
-/* y(n) = 0.9 y(n-1), y(-1) = 12: 12 11 10 9 8 7 6 5 5 5 ..; in doubles 0.5/(1-0.9) would make it 6. */
+/* y(n) = 0.9 y(n-1), y(-1) = 12: 12 11 10 9 8 7 6 5 5 5 ..; in doubles 0.5/(1-0.9) would make it
+ * 6. */
 static void test_sequences(void **nothing)
 {
     (void)nothing;
@@ -58,7 +62,8 @@ static void test_sequences(void **nothing)
     }
 }
 
-/* First order: 0.5 / (1 - |a|), rounded down: 1 for 1/2, 2 for 3/4, 5 for 0.9 (here 0.90002 in words). */
+/* First order: 0.5 / (1 - |a|), rounded down: 1 for 1/2, 2 for 3/4, 5 for 0.9 (here 0.90002 in
+ * words). */
 static void test_first_order_dead_bands(void **nothing)
 {
     (void)nothing;
@@ -95,9 +100,9 @@ static int64_t every_cycle(const pw_words *w, int reach)
     return most;
 }
 
-/* Second order: what is found is what trying every start finds or little less, never above the bound,
- * about the classical 0.5 / (1 - a2) for the kinder angles, and the state that is kept goes round in the
- * period that is said. */
+/* Second order: what is found is what trying every start finds or little less, never above the
+ * bound, about the classical 0.5 / (1 - a2) for the kinder angles, and the state that is kept goes
+ * round in the period that is said. */
 static void test_second_order_dead_bands(void **nothing)
 {
     (void)nothing;
@@ -128,8 +133,8 @@ static void test_second_order_dead_bands(void **nothing)
     assert_true(near_classical >= 5);
 }
 
-/* Noise gains 1/(1-a^2): 1/(1 - 0.5/z) 1.3333, 1/(1 - 0.25/z) 1.0667 (Proakis); 1/((1-0.9/z)(1-0.8/z))
- * 89.80787, 1/(1 - 0.8/z) 2.77778 (Salivahanan). */
+/* Noise gains 1/(1-a^2): 1/(1 - 0.5/z) 1.3333, 1/(1 - 0.25/z) 1.0667 (Proakis);
+ * 1/((1-0.9/z)(1-0.8/z)) 89.80787, 1/(1 - 0.8/z) 2.77778 (Salivahanan). */
 static void test_noise_gains(void **nothing)
 {
     (void)nothing;
@@ -146,7 +151,8 @@ static void test_noise_gains(void **nothing)
     assert_float_equal(pw_feedback_power(integrator, 1, 0), 1, 0);
 }
 
-/* H1 = 1/(1-z/2), H2 = 1/(1-z/4) in this order: 2.895 steps^2/12 of variance, 3.162 the other way. */
+/* H1 = 1/(1-z/2), H2 = 1/(1-z/4) in this order: 2.895 steps^2/12 of variance, 3.162 the other
+ * way. */
 static void test_order_of_two(void **nothing)
 {
     (void)nothing;

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Proof of range by exhaustion: the arithmetic with samples and words of 8 bits, where every state that
- * any input can reach is visited with every input. */
+/* Proof of range by exhaustion: the arithmetic with samples and words of 8 bits, where every state
+ * that any input can reach is visited with every input. */
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stddef.h>
@@ -14,7 +14,8 @@
 #include "words/step.h"
 
 static const pw_format small = {
-    .sample = PW_Q15, .fixed = true, .sample_bits = 8, .word_bits = 8, .lsb = 0x1p-7, .largest = 127 / 128.0,
+    .sample = PW_Q15, .fixed = true, .sample_bits = 8, .word_bits = 8, .lsb = 0x1p-7,
+        .largest = 127 / 128.0,
 };
 
 typedef struct filter { double b0, b1, pole; int k1; } filter;
@@ -59,11 +60,14 @@ static void state_at(const states *s, long i, int64_t state[6])
     state[2] = i % 256 - 128, state[0] = i / 256 - 128;
 }
 
-/* Visits all reachable states with all inputs up to the peak; returns the largest |y|, counts clips. */
-static int64_t exhaust(const pw_format *format, const pw_realisation *r, int stride, uint64_t *clips)
+/* Visits all reachable states with all inputs up to the peak; returns the largest |y|, counts
+ * clips. */
+static int64_t exhaust(const pw_format *format, const pw_realisation *r, int stride,
+                       uint64_t *clips)
 {
     const pw_words *w = &r->section[0];
-    int limit = (int)floor(r->input_peak * 128 + 1e-9), low = -limit, high = limit < 127 ? limit : 127;
+    int limit = (int)floor(r->input_peak * 128 + 1e-9), low = -limit, high = limit < 127 ? limit
+        : 127;
     states s = {.errors = w->k1 ? 2 << w->a_fraction : 1};
     s.seen = calloc((size_t)65536 * (size_t)s.errors, 1);
     s.queue = malloc(sizeof *s.queue * 65536 * (size_t)s.errors);
@@ -88,7 +92,8 @@ static int64_t exhaust(const pw_format *format, const pw_realisation *r, int str
     return most;
 }
 
-static void run_one(const pw_format *format, const filter *f, double peak, int stride, int *proved, int *tight)
+static void run_one(const pw_format *format, const filter *f, double peak, int stride, int *proved,
+                    int *tight)
 {
     static pw_realisation r;
     pw_proof proof;
@@ -115,7 +120,8 @@ static void run_one(const pw_format *format, const filter *f, double peak, int s
 /* One state word: every pair of state and input takes no time. */
 static const filter plain[] = {
     {0.4, 0, 0.5, 0}, {0.45, 0, 0.55, 0}, {0.85, 0, 0.1, 0}, {0.39, 0, -0.6, 0}, {0.09, 0, 0.9, 0},
-    {0.6, 0, 0.3, 0}, {0.12, 0, 0.875, 0}, {0.79, 0, -0.2, 0}, {0.24, 0, -0.75, 0}, {0.7, 0, 0.4, 0},
+    {0.6, 0, 0.3, 0}, {0.12, 0, 0.875, 0}, {0.79, 0, -0.2, 0}, {0.24, 0, -0.75, 0},
+        {0.7, 0, 0.4, 0},
 };
 
 /* Two state words: sixteen million pairs each. */
