@@ -1,6 +1,7 @@
 # SPDX-License-Identifier: GPL-3.0-or-later
 """Hard cases of the trade in fixed point, each with the figure it must reach. Corner frequencies and
 levels are our own; scipy gives the roots."""
+import itertools
 import time
 
 import numpy as np
@@ -198,6 +199,38 @@ def every_order():
     check(found <= min(others) * 1.005, "the order found is the quietest of all six", f"{found:.3f}, {sorted(others)}")
 
 
-for case in (low_pass_10_hz, notch, elliptic, ac_coupling, integrator, two_integrators, sixty_decibels, ten_sections, every_order):
+def reference_noise(pairs, factor):
+    """Output noise in LSB of direct-1 sections (poles, zeros) in this order, each but the last scaled by
+    the L1 norm up to it: 1/12 from each section through 1/A and what follows."""
+    n, chain = 4000, [(np.real(np.poly(z)), np.real(np.poly(p))) for p, z in pairs]
+    into, size = np.eye(1, n)[0], []
+    for b, a in chain:
+        into = signal.lfilter(b, a, into)
+        size.append(np.sum(np.abs(into)))
+    total = 0
+    for j, (_, a) in enumerate(chain):
+        way = signal.lfilter([1], a, np.eye(1, n)[0])
+        for b2, a2 in chain[j + 1:]:
+            way = signal.lfilter(b2, a2, way)
+        gain = size[j] * factor if j + 1 < len(chain) else 1
+        total += np.sum(way ** 2) * gain ** 2 / 12
+    return np.sqrt(total)
+
+
+def every_pairing():
+    """All 36 pairings and orders of a band-pass and a low-pass of three sections, worked out in Python."""
+    for name, (z, p, k) in (("band-pass", signal.ellip(3, 0.5, 50, [1500, 3500], "band", fs=48000, output="zpk")),
+                            ("low-pass", signal.ellip(6, 0.5, 50, 3000, fs=48000, output="zpk"))):
+        poles = [[x, x.conjugate()] for x in p if x.imag > 1e-9]
+        zeros = [[x, x.conjugate()] for x in z if x.imag > 1e-9]
+        zeros += [[1.0, -1.0]] * (3 - len(zeros))
+        found = wp.one(z, p, k, sample="q31", structure="direct-1")["noise"]["rms_lsb"]
+        all_of_them = [reference_noise(list(zip([poles[i] for i in po], [zeros[i] for i in zo])), abs(k))
+                       for po in itertools.permutations(range(3)) for zo in itertools.permutations(range(3))]
+        check(found <= 1.02 * min(all_of_them), f"{name}: no pairing or order of 36 is quieter",
+              f"{found:.3f}; {min(all_of_them):.3f} to {max(all_of_them):.3f}")
+
+
+for case in (low_pass_10_hz, notch, elliptic, ac_coupling, integrator, two_integrators, sixty_decibels, ten_sections, every_order, every_pairing):
     case()
 done()
