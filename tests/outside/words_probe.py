@@ -27,20 +27,20 @@ def ask(questions):
     return answers
 
 
-def tidy(roots):
-    """Roots of a real filter as exact conjugate pairs and exact reals; -1, 0 and 1 made exact."""
+def tidy(roots, snap=0):
+    """Roots of a real filter as exact conjugate pairs and exact reals; near 1 and -1 made exact."""
     out = []
     for r in sorted(map(complex, roots), key=lambda v: (v.real, abs(v.imag), v.imag)):
         if abs(r.imag) < 1e-9:
             near = round(r.real)
-            out.append(complex(near if abs(r.real - near) < 1e-5 and abs(near) == 1 else r.real, 0))
+            out.append(complex(near if abs(r.real - near) < snap and abs(near) == 1 else r.real, 0))
         elif r.imag > 0:
             out += [r, r.conjugate()]
     return [[r.real, r.imag] for r in out]
 
 
 def question(zeros, poles, factor, **more):
-    q = {"zeros": tidy(zeros), "poles": tidy(poles), "factor": float(np.real(factor))}
+    q = {"zeros": tidy(zeros, 1e-5), "poles": tidy(poles), "factor": float(np.real(factor))}
     q.update({k.replace("_", "-"): v for k, v in more.items()})
     return q
 
