@@ -7,15 +7,28 @@
 #include <string.h>
 #include <sys/stat.h>
 
+#include "stagefile/tree.h"
+
+/* What a file holds may be anything: a terminal gets plain UTF-8. */
+static void make_printable(char *text)
+{
+    pw_where at;
+    bool whole = !pw_utf8_fault(text, strlen(text), &at);
+    for (char *p = text; *p; p++)
+        if ((unsigned char)*p < ' ' || *p == 127 || (!whole && (*p & 0x80))) *p = '?';
+}
+
 pw_status pw_record_wrong(const char *path, int64_t line, const char *format, ...)
 {
+    char text[1024];
     va_list args;
+    va_start(args, format);
+    vsnprintf(text, sizeof text, format, args);
+    va_end(args);
+    make_printable(text);
     if (line > 0) fprintf(stderr, "%s:%lld: ", path, (long long)line);
     else fprintf(stderr, "%s: ", path);
-    va_start(args, format);
-    vfprintf(stderr, format, args);
-    va_end(args);
-    fputc('\n', stderr);
+    fprintf(stderr, "%s\n", text);
     return PW_WRONG;
 }
 

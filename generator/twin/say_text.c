@@ -106,7 +106,6 @@ static void put_points(const pw_points *points, bool verbose, pw_text *out)
     static const char *const head[] = {"frequency", "measured dB", "95 %", "twin dB", "analog dB", "allowed dB", ""};
     pw_table table = {.align = "lrrrrrl"};
     int every = verbose || points->count <= SHOWN_POINTS ? 1 : (points->count + SHOWN_POINTS - 1) / SHOWN_POINTS;
-    pw_text_add(out, "\n");
     for (int i = 0; i < 7; i++) pw_table_cell(&table, "%s", head[i]);
     for (int i = 0; i < points->count; i++)
         if (i % every == 0 || i == points->worst || i == points->count - 1) put_point(points, &points->list[i], &table);
@@ -171,14 +170,46 @@ static void put_fitted(const pw_fitted *f, pw_table *table)
     else pw_table_cell(table, "%s", f->at_bound ? "at the end of its tolerance" : "");
 }
 
+/* Directions as relative changes of the values, brought to echelon form (Gauss and Jordan): the held ones
+ * span a space, and whatever basis a decomposition gives of it, these rows are the same. */
+static int held_rows(const pw_fit *fit, double row[][PW_MOST_FITTED])
+{
+    int n = fit->count, held = n - fit->found, done = 0;
+    for (int k = 0; k < held; k++)
+        for (int i = 0; i < n; i++) {
+            double tolerance = fit->parameter[i].tolerance;
+            row[k][i] = fit->direction[fit->found + k][i] * (tolerance > 0 ? tolerance : 0.1);
+        }
+    for (int i = 0; i < n && done < held; i++) {
+        int best = done;
+        double size = 0;
+        for (int k = 0; k < held; k++)
+            for (int j = 0; j < n; j++) size = fmax(size, fabs(row[k][j]));
+        for (int k = done; k < held; k++)
+            if (fabs(row[k][i]) > fabs(row[best][i])) best = k;
+        if (fabs(row[best][i]) < 1e-4 * size) continue;
+        for (int j = n - 1; j >= 0; j--) {
+            double swap = row[best][j];
+            row[best][j] = row[done][j];
+            row[done][j] = swap;
+        }
+        for (int j = n - 1; j >= i; j--) row[done][j] /= row[done][i];
+        for (int k = 0; k < held; k++)
+            for (int j = n - 1; j >= i && k != done; j--) row[k][j] -= row[k][i] * row[done][j];
+        done++;
+    }
+    return done;
+}
+
 static void put_held(const pw_fit *fit, pw_text *out)
 {
-    for (int k = fit->found; k < fit->count; k++) {
-        pw_text_print(out, "  held (singular value %.1e of the largest):", fit->singular[k]);
+    static double row[PW_MOST_FITTED][PW_MOST_FITTED];
+    int rows = held_rows(fit, row);
+    for (int k = 0; k < rows; k++) {
+        pw_text_add(out, "  held, for the data do not show it:");
         for (int i = 0; i < fit->count; i++)
-            if (fabs(fit->direction[k][i]) > 0.05)
-                pw_text_print(out, " %+.2f %s", fit->direction[k][i], fit->parameter[i].name);
-        pw_text_add(out, "\n");
+            if (fabs(row[k][i]) > 5e-4) pw_text_print(out, " %s %+.3g %%", fit->parameter[i].name, row[k][i]);
+        pw_text_add(out, " together\n");
     }
 }
 
@@ -211,7 +242,11 @@ void pw_twin_text(const pw_twin_found *found, bool verbose, pw_text *out)
                   pw_sample_word(r->realisation.sample));
     if (found->comparison) put_record(r, found->comparison, out);
     if (found->comparison) put_reference(found->comparison, r->stage->rate_hz, out);
-    if (found->points && found->points->count) put_points(found->points, verbose, out), put_worst(found->points, out);
+    if (found->comparison) pw_text_add(out, "\n");
+    if (found->points && found->points->count) {
+        put_points(found->points, verbose, out);
+        put_worst(found->points, out);
+    }
     if (found->points) put_verdict(found->points, out);
     if (found->fit) put_fit(found, out);
 }

@@ -150,7 +150,7 @@ def test_coverage_roots(folder):
     text = open(f"{folder}/roots.yaml").read()
     again = twin(f"{folder}/roots.yaml", "--response", f"{folder}/r.csv", "--set", "limits.band=[30 Hz, 19 kHz]")
     rms = np.sqrt(np.mean([(q["db"] - q["analog_db"]) ** 2 for q in again["points"]]))
-    tap.check(rms < 0.03 and "# three kinds" in text, "roots of every kind are written back", f"{rms:.4f} dB\n{text}")
+    tap.check(rms < 0.03 and "# three kinds" in text, "roots of every kind are written back", f"{rms:.4f} dB")
 
 
 def skeleton(text):
@@ -163,13 +163,13 @@ def test_text(folder, hz, h):
         path = stage_file(folder, stage)
         write_response(f"{folder}/r.csv", HZ if stage is CHAIN else hz, data)
         ran = tap.polewright("twin", path, "--response", f"{folder}/r.csv", "--calibrate", "--quiet")
-        tap.check(ran.returncode in (0, 1), "the fitted file goes beside the stage file", ran.stderr)
+        tap.check(ran.returncode in (0, 1), "the fitted file goes beside the stage file", ran.stderr.strip())
         old, new = stage.splitlines(), open(f"{folder}/stage.fitted.yaml").read().splitlines()
         changed = [i for i in range(len(old)) if old[i] != new[i]]
         names = [re.match(r"\s*(\w+):", old[i]).group(1) for i in changed]
         tap.check(len(old) == len(new) and sorted(names) == ["C1", "C2", "R1", "R2"], "only the lines of the parts change", str(names))
         same = all(old[i].split("tolerance")[1] == new[i].split("tolerance")[1] and old[i].split(":")[0] == new[i].split(":")[0] for i in changed)
-        tap.check(same, "comments and layout on those lines stay", "\n".join(new))
+        tap.check(same, "comments and layout on those lines stay", "\n".join(new) * (not same))
 
 
 def test_refusals(folder):
@@ -177,17 +177,17 @@ def test_refusals(folder):
     write_response(f"{folder}/r.csv", HZ, chain_response(NOMINAL, HZ))
     response = ["--response", f"{folder}/r.csv", "--calibrate"]
     ran = tap.polewright("twin", path, *response, "--set", "analog.cell.R1=10k")
-    tap.check(ran.returncode == 2 and "put what --set changes" in ran.stderr, "--set on the analog side is refused", ran.stderr)
+    tap.check(ran.returncode == 2 and "put what --set changes" in ran.stderr, "--set on the analog side is refused", ran.stderr.strip())
     bare = stage_file(folder, re.sub(r"\{value: +([^,]+), tolerance: 1 %\}", r"\1", CHAIN), "bare.yaml")
     ran = tap.polewright("twin", bare, *response)
-    tap.check(ran.returncode == 2 and "nothing may move" in ran.stderr, "parts without tolerance cannot be fitted", ran.stderr)
+    tap.check(ran.returncode == 2 and "nothing may move" in ran.stderr, "parts without tolerance cannot be fitted", ran.stderr.strip())
     ran = tap.polewright("twin", "-", *response, "-o", f"{folder}/x.yaml", stdin=CHAIN)
-    tap.check(ran.returncode == 2 and "by name" in ran.stderr, "standard input cannot be edited", ran.stderr)
+    tap.check(ran.returncode == 2 and "by name" in ran.stderr, "standard input cannot be edited", ran.stderr.strip())
     write_response(f"{folder}/few.csv", HZ[:1], chain_response(NOMINAL, HZ[:1]))
     ran = tap.polewright("twin", path, "--response", f"{folder}/few.csv", "--calibrate")
-    tap.check(ran.returncode == 2 and "fewer than two" in ran.stderr, "one point is too few", ran.stderr)
+    tap.check(ran.returncode == 2 and "fewer than two" in ran.stderr, "one point is too few", ran.stderr.strip())
     ran = tap.polewright("twin", path, *response, "-o", f"{folder}/none/x.yaml")
-    tap.check(ran.returncode == 3 and "cannot write" in ran.stderr, "a place that is not there", ran.stderr)
+    tap.check(ran.returncode == 3 and "cannot write" in ran.stderr, "a place that is not there", ran.stderr.strip())
 
 
 with tempfile.TemporaryDirectory() as scratch:

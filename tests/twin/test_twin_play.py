@@ -33,7 +33,7 @@ def test_vectors(folder, sample):
     """The emitted vectors come from another path through the program, and the emitted C meets them."""
     out = f"{folder}/{sample}"
     ran = tap.polewright("build", STAGE, "-o", out, "--quiet", "--no-plots", "--set", f"arithmetic.sample={sample}")
-    tap.check(ran.returncode in (0, 1), f"{sample}: a stage is built", ran.stderr)
+    tap.check(ran.returncode in (0, 1), f"{sample}: a stage is built", ran.stderr.strip())
     for name in ("noise", "full-scale-square", "overflow-probe", "impulse"):
         vector = f"{out}/vectors/{name}.csv"
         tap.polewright("twin", STAGE, "--set", f"arithmetic.sample={sample}", "--samples", "--play", vector, "-o", f"{out}/played.csv")
@@ -53,7 +53,7 @@ def test_wav(folder, sample):
     wavfile.write(f"{folder}/in.wav", 8000, x)
     sets = ["--set", f"arithmetic.sample={sample}", "--set", "rate=8 kHz"]
     ran = tap.polewright("twin", STAGE, *sets, "--play", f"{folder}/in.wav", "-o", f"{folder}/out.wav")
-    tap.check(ran.returncode == 0, f"{sample}: a WAV file plays", ran.stderr)
+    tap.check(ran.returncode == 0, f"{sample}: a WAV file plays", ran.stderr.strip())
     rate, y = wavfile.read(f"{folder}/out.wav")
     tap.check(rate == 8000 and y.dtype == kind and y.shape == x.shape, f"{sample}: WAV of the same form comes out", str(y.dtype))
     for channel in range(2):
@@ -84,7 +84,7 @@ def test_volts(folder):
     with open(f"{folder}/v.csv", "w") as f:
         f.write("# volts\ntime;input left;input right\n0;0.1;-2.6\n5e-05;0.1;2.6\n")
     ran = tap.polewright("twin", path, "--play", f"{folder}/v.csv", "-o", f"{folder}/vo.csv")
-    tap.check(ran.returncode == 0 and "2 inputs lay beyond full scale" in ran.stdout, "inputs beyond full scale are counted", ran.stdout + ran.stderr)
+    tap.check(ran.returncode == 0 and "2 inputs lay beyond full scale" in ran.stdout, "inputs beyond full scale are counted", (ran.stdout + ran.stderr).strip())
     head = [line for line in open(f"{folder}/vo.csv") if line[0] != "#"][0].strip()
     tap.check(head == "input left,input right,output left,output right", "each input gets its output", head)
     left, = columns(f"{folder}/vo.csv", ["output left"])
