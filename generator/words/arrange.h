@@ -13,6 +13,7 @@ typedef struct pw_arrange_context {
     bool shaped;                 /* error feedback where a section is loud */
     double factor;               /* magnitude of the whole, sample to sample, times the input's
                                     peak */
+    double step;                 /* of the words of poles in a second-order section; 0 for floats */
 } pw_arrange_context;
 
 /* Every pairing and every order of the first `poles` pole units with the zero groups: exact for the

@@ -107,7 +107,7 @@ void pw_order_sections(const pw_roots *z, bool as_listed, const pw_arrange_conte
 {
     pw_units u;
     pw_arranged order[PW_MAX_SECTIONS];
-    pw_units_make(z, as_listed, &u);
+    pw_units_make(z, as_listed, context->step, &u);
     out->count = u.poles;
     if (u.poles == 0) {
         out->count = 1;

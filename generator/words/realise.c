@@ -115,6 +115,7 @@ pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_dig
     pw_sections sections;
     pw_arrange_context context = {
         .shaped = j.format.fixed && stage->arithmetic.structure != PW_DIRECT_1,
+        .step = j.format.fixed ? ldexp(1, 2 - j.format.word_bits) : 0,
         .factor = (double)fabsl(j.factor) * out->input_peak,
     };
     pw_order_sections(&digital->z, stage->arithmetic.as_listed, &context, &sections,

@@ -5,6 +5,8 @@
 #include <stdlib.h>
 #include <string.h>
 
+#define NEAR 64                  /* steps of a word: DC gain to 0.1 dB before the words are refined */
+
 static void add_pole(pw_units *u, double complex p, double complex q, int size)
 {
     u->pole[u->poles++] = (pw_pole_unit){size, {p, q}, p == 1 || (size == 2 && q == 1)};
@@ -38,10 +40,23 @@ static int cancelled(const pw_roots *z)
     return poles < zeros ? poles : zeros;
 }
 
-static void take_poles(const pw_roots *z, bool as_listed, int cancel, pw_units *u)
+/* Two real poles: one section, or two where they stand so near to 1 that the words of one, which sum to
+ * (1 - p)(1 - q), could not tell them from it; a first-order section holds 1 - p itself. */
+static void add_reals(pw_units *u, double p, double q, double step, int *room)
+{
+    if (*room > 0 && p > 0 && q > 0 && (1 - p) * (1 - q) < NEAR * step) {
+        add_pole(u, p, 0, 1);
+        add_pole(u, q, 0, 1);
+        --*room;
+    } else {
+        add_pole(u, p, q, 2);
+    }
+}
+
+static void take_poles(const pw_roots *z, bool as_listed, double step, int cancel, pw_units *u)
 {
     double real[PW_MAX_ROOTS];
-    int reals = 0, ones = 0;
+    int reals = 0, ones = 0, room = PW_MAX_SECTIONS - 2 - (z->poles + 1) / 2;
     for (int k = 0; k < z->poles; k++) {
         if (cimag(z->pole[k]) > 0)
             add_pole(u, z->pole[k], conj(z->pole[k]), 2);
@@ -50,13 +65,13 @@ static void take_poles(const pw_roots *z, bool as_listed, int cancel, pw_units *
         else if (cimag(z->pole[k]) == 0)
             real[reals++] = creal(z->pole[k]);
         if (as_listed && reals == 2) {
-            add_pole(u, real[0], real[1], 2);
+            add_reals(u, real[0], real[1], step, &room);
             reals = 0;
         }
     }
     qsort(real, (size_t)reals, sizeof *real, falling);
     for (int k = 0; k + 1 < reals; k += 2)
-        add_pole(u, real[k], real[k + 1], 2);
+        add_reals(u, real[k], real[k + 1], step, &room);
     if (reals % 2)
         add_pole(u, real[reals - 1], 0, 1);
     for (ones -= cancel; ones > 0; ones--)
@@ -100,11 +115,11 @@ static void join_singles(pw_units *u)
     }
 }
 
-void pw_units_make(const pw_roots *z, bool as_listed, pw_units *out)
+void pw_units_make(const pw_roots *z, bool as_listed, double step, pw_units *out)
 {
     memset(out, 0, sizeof *out);
     int cancel = cancelled(z);
-    take_poles(z, as_listed, cancel, out);
+    take_poles(z, as_listed, step, cancel, out);
     take_zeros(z, cancel, out);
     join_singles(out);
 }

@@ -27,8 +27,8 @@ typedef struct pw_units {
 } pw_units;
 
 /* as_listed keeps the order of the poles and pairs real ones as they come. A pole and a zero at
- * exactly 1 cancel. */
-void pw_units_make(const pw_roots *z, bool as_listed, pw_units *out);
+ * exactly 1 cancel. step: of the words of a second-order section's poles; 0 for floats. */
+void pw_units_make(const pw_roots *z, bool as_listed, double step, pw_units *out);
 
 /* A monic section of a pole unit with the zeros of one or two groups (-1: none). */
 pw_section pw_units_section(const pw_units *units, int pole, int zero0, int zero1);

@@ -343,6 +343,15 @@ def mended():
     node = tap.report(low_pass(sample="q31", structure="coupled"))["nodes"][0]
     check(node["peak_gain"] <= node["bound"] <= 1.01 * node["peak_gain"],
           "a rotation of which only the output clips keeps its linear bound", f"{node['bound']} {node['peak_gain']}")
+    slow = [real(0.05), real(0.05)]
+    for bits in ("16 bits", "32 bits"):
+        twice = tap.polewright("check", "-", "--json", stdin=tap.json.dumps({
+            "stage": "twice", "rate": "48 kHz" if bits[0] == "3" else "100 Hz", "analog": roots(["0", "0"], slow, "20 Hz", 0),
+            "arithmetic": {"sample": "q31", "coefficient": bits}}))
+        made = tap.json.loads(twice.stdout)["sections"] if twice.stdout else []
+        made = [s for s in made if s["realised"]["a"][1] != 0]               # a gain may stand apart
+        check(len(made) == 2 and all(s["realised"]["a"][2] == 0 and s["realised"]["b"][0] == -s["realised"]["b"][1] for s in made),
+              f"two couplings of 0.05 Hz in a row are held by two sections of first order, {bits}", twice.stderr)
     wrapping = roots([], [{"frequency": "70.7333792 Hz", "q": 3.2071}], "0 Hz", -52.329)
     cycle = tap.report({"stage": "wrapping", "rate": "44100 Hz", "analog": wrapping, "signal": {"input": {
         "low": "-1 V", "high": "1 V", "peak": "0.205948 V"}}, "arithmetic": {"sample": "q15", "structure": "direct-1",
