@@ -28,6 +28,16 @@ double complex pw_roots_at(const pw_roots *roots, double complex x)
     return (double complex)(roots->factor * pw_roots_product_at(roots, x));
 }
 
+/* arg(re + j im) that goes on along the imaginary axis: beside a root to the right it would jump by a turn
+ * where x passes the root's height. */
+static long double angle_beside(double complex root, long double re, long double im)
+{
+    long double angle = atan2l(im, re);
+    if (re >= 0 || cimag(root) == 0) return angle;
+    if (cimag(root) > 0 && im >= 0) return angle - TWO_PI;
+    return cimag(root) < 0 && im <= 0 ? angle + TWO_PI : angle;
+}
+
 void pw_roots_log_at(const pw_roots *roots, double complex x, double *log_magnitude, double *phase)
 {
     long double size = logl(fabsl(roots->factor)), turn = roots->factor < 0 ? TWO_PI / 2 : 0;
@@ -36,7 +46,7 @@ void pw_roots_log_at(const pw_roots *roots, double complex x, double *log_magnit
         double complex root = zero ? roots->zero[i] : roots->pole[i - roots->zeros];
         long double re = (long double)creal(x) - creal(root);
         long double im = (long double)cimag(x) - cimag(root);
-        long double log_size = logl(hypotl(re, im)), angle = atan2l(im, re);
+        long double log_size = logl(hypotl(re, im)), angle = angle_beside(root, re, im);
         size += zero ? log_size : -log_size;
         turn += zero ? angle : -angle;
     }

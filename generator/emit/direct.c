@@ -88,6 +88,15 @@ static void settle_constants(const pw_emission *e, const pw_words *w, pw_code *i
     pw_fixed_constant(e, in, "rest", rest_of(w), 0, "2^shift + a1 + a2, for a constant output");
 }
 
+/* Beside a sum modulo 2^32 it has the sum's type: gcc warns of a short constant that is cast there. */
+static void half_constant(const pw_emission *e, const pw_words *w, pw_code *in)
+{
+    int64_t half = INT64_C(1) << (w->a_fraction - 1);
+    const char *note = "half a step of the output";
+    if (pw_direct_accumulator(e, w) != PW_ACC_MODULO) pw_fixed_constant(e, in, "half", half, 0, note);
+    else pw_constant(in, "static const uint32_t $_half_#", pw_word(half), note);
+}
+
 void pw_direct_constants(const pw_emission *e, const pw_words *w, pw_code *in)
 {
     static const char *const b_name[] = {"b0", "b1", "b2"}, *const a_name[] = {"", "a1", "a2"};
@@ -107,8 +116,7 @@ void pw_direct_constants(const pw_emission *e, const pw_words *w, pw_code *in)
     if (align < 0)
         pw_fixed_constant(e, in, "align", INT64_C(1) << -align, 0,
                           "2^(fraction bits that b has fewer)");
-    if (!e->r->truncate && shift > 0)
-        pw_fixed_constant(e, in, "half", INT64_C(1) << (shift - 1), 0, "half a step of the output");
+    if (!e->r->truncate && shift > 0) half_constant(e, w, in);
     settle_constants(e, w, in);
 }
 
@@ -147,9 +155,7 @@ static void accumulate(const pw_emission *e, const pw_words *w, pw_accumulator a
 static void round_off(const pw_emission *e, const pw_words *w, pw_accumulator acc, pw_code *body)
 {
     const char *wide = acc == PW_ACC_64 ? "int64_t" : "int32_t";
-    const char *sum = e->r->truncate || w->a_fraction == 0 ? "acc"
-                      : acc == PW_ACC_MODULO               ? "(acc + (uint32_t)$_half_#)"
-                                                           : "(acc + $_half_#)";
+    const char *sum = e->r->truncate || w->a_fraction == 0 ? "acc" : "(acc + $_half_#)";
     const char *cast = acc == PW_ACC_MODULO ? "(int32_t)" : "";
     const char *by = w->a_fraction > 0 ? " >> $_shift_#" : "";
     pw_put(body, pw_arena_print(e->arena, "const %s v = %s%s%s;", wide, cast, sum, by));

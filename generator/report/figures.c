@@ -18,7 +18,7 @@ static int one_of(const char *unit, const char *const *list)
 char *pw_figure(char *buffer, double value, const char *unit)
 {
     static const char *const prefixed[] = {"Hz", "s", "V", "rad/s", NULL};
-    static const char *const whole[] = {"bytes", "samples", "cycles", "nodes", NULL};
+    static const char *const whole[] = {"bytes", "samples", "cycles", "instructions", "nodes", NULL};
     if (isnan(value)) return strcpy(buffer, "not known");
     if (isinf(value)) return strcpy(buffer, value > 0 ? "unbounded" : "none");
     if (!strcmp(unit, "s") && value != 0 && fabs(value) < 1e-12)
@@ -50,6 +50,6 @@ char *pw_samples(char *buffer, double samples, double rate_hz)
     if (seconds >= 48 * HOUR) snprintf(time, sizeof time, "%.3g days", seconds / (24 * HOUR));
     else if (seconds >= 2 * HOUR) snprintf(time, sizeof time, "%.3g hours", seconds / HOUR);
     else pw_figure(time, seconds, "s");
-    snprintf(buffer, PW_FIGURE_ROOM, "%.12g samples (%.30s)", ceil(samples), time);
+    snprintf(buffer, PW_FIGURE_ROOM, "%.12g %s (%.30s)", ceil(samples), ceil(samples) == 1 ? "sample" : "samples", time);
     return buffer;
 }

@@ -135,10 +135,12 @@ void pw_html_cost(const pw_results *results, pw_text *out)
     pw_text_add(out, "<dl class=\"facts\">\n");
     pw_html_fact("target", results->target.name ? results->target.name : "host", out);
     if (isfinite(c->cycles_per_sample))
-        pw_html_fact("cycles a sample", pw_figure(figure, c->cycles_per_sample, "cycles"), out);
+        pw_html_fact("cycles a sample, about",
+                     pw_figure(figure, c->cycles_per_sample, pw_cost_unit(results)), out);
     snprintf(figure, sizeof figure, "%d", c->multiplies_per_sample);
     pw_html_fact("multiplies a sample", figure, out);
-    pw_html_fact("flash", pw_figure(figure, (double)c->flash_bytes, "bytes"), out);
+    if (c->flash_bytes >= 0)
+        pw_html_fact("flash", pw_figure(figure, (double)c->flash_bytes, "bytes"), out);
     pw_html_fact("RAM a channel", pw_figure(figure, (double)c->ram_bytes, "bytes"), out);
     if (c->stack_bytes)
         pw_html_fact("stack", pw_figure(figure, (double)c->stack_bytes, "bytes"), out);

@@ -203,9 +203,10 @@ static json_t *cost(const pw_results *results)
     pw_json_put(o, "sections", json_integer(c->sections));
     pw_json_put(o, "multiplies_per_sample", json_integer(c->multiplies_per_sample));
     pw_json_put(o, "cycles_per_sample", pw_json_number(c->cycles_per_sample));
-    pw_json_put(o, "flash_bytes", json_integer(c->flash_bytes));
+    pw_json_put(o, "counted", pw_json_text(pw_cost_unit(results)));
+    pw_json_put(o, "flash_bytes", c->flash_bytes < 0 ? json_null() : json_integer(c->flash_bytes));
     pw_json_put(o, "ram_bytes", json_integer(c->ram_bytes));
-    pw_json_put(o, "stack_bytes", json_integer(c->stack_bytes));
+    pw_json_put(o, "stack_bytes", c->flash_bytes < 0 ? json_null() : json_integer(c->stack_bytes));
     return o;
 }
 

@@ -48,6 +48,7 @@ void pw_judge(pw_results *results)
         add(results, "overflow", 0, n, "nodes", n == 0);
     }
     at_most(results, "cycles", &limits->cycles, results->cost.cycles_per_sample, "cycles");
-    at_most(results, "flash", &limits->flash_bytes, (double)results->cost.flash_bytes, "bytes");
+    long flash = results->cost.flash_bytes;
+    at_most(results, "flash", &limits->flash_bytes, flash < 0 ? (double)NAN : (double)flash, "bytes");
     at_most(results, "ram", &limits->ram_bytes, (double)results->cost.ram_bytes, "bytes");
 }

@@ -182,6 +182,9 @@ void pw_phrase_limit(const pw_results *results, const pw_limit_row *row, pw_text
                       row->value > 0 ? pw_count(figure, lrint(row->value), "node") : "no node");
     else if (!strcmp(row->name, "noise") && !results->realisation.noise.given)
         pw_text_add(found, "floats, which have no figure");
+    else if (isnan(row->value)) pw_text_add(found, "no figure, for this target has no model");
+    else if (!strcmp(row->name, "cycles"))
+        pw_text_print(found, "about %s", pw_figure(figure, row->value, pw_cost_unit(results)));
     else pw_text_add(found, pw_figure(figure, row->value, row->unit));
 }
 
@@ -308,13 +311,22 @@ void pw_phrase_limit_cycle(const pw_results *results, pw_text *out)
                        l->found_period);
 }
 
+const char *pw_cost_unit(const pw_results *results)
+{
+    return results->target.counts_cycles ? "cycles" : "instructions";
+}
+
 void pw_phrase_cost(const pw_results *results, pw_text *out)
 {
     const pw_cost *c = &results->cost;
     pw_text_print(out, "%s: ", results->target.name ? results->target.name : "host");
     if (isfinite(c->cycles_per_sample))
-        pw_text_print(out, "%.4g cycles and ", c->cycles_per_sample);
-    pw_text_print(out, "%d multiplies a sample, %ld bytes of flash, %ld bytes of RAM a channel",
-                  c->multiplies_per_sample, c->flash_bytes, c->ram_bytes);
-    if (c->stack_bytes) pw_text_print(out, ", %ld of stack", c->stack_bytes);
+        pw_text_print(out, "about %.*g %s and ", c->cycles_per_sample < 1000 ? 3 : 9,
+                      c->cycles_per_sample < 1000 ? c->cycles_per_sample : round(c->cycles_per_sample), pw_cost_unit(results));
+    pw_text_print(out, "%d %s a sample", c->multiplies_per_sample,
+                  c->multiplies_per_sample == 1 ? "multiply" : "multiplies");
+    if (c->flash_bytes >= 0) pw_text_print(out, ", %ld bytes of flash", c->flash_bytes);
+    pw_text_print(out, ", %ld bytes of RAM a channel", c->ram_bytes);
+    if (c->flash_bytes < 0) pw_text_add(out, "; this target has no model of cycles and flash");
+    else if (c->stack_bytes) pw_text_print(out, ", %ld of stack", c->stack_bytes);
 }

@@ -41,6 +41,7 @@ void pw_phrase_integrator(const pw_results *results, const pw_node *node, pw_tex
 void pw_phrase_noise(const pw_results *results, pw_text *out);
 void pw_phrase_limit_cycle(const pw_results *results, pw_text *out);
 void pw_phrase_cost(const pw_results *results, pw_text *out);
+const char *pw_cost_unit(const pw_results *results);   /* what its model counts: "instructions" or "cycles" */
 
 /* What a reader must know before a machine relies on this; ended by a null. */
 extern const char *const pw_cautions[];

@@ -23,7 +23,8 @@ typedef struct pw_response {
 typedef struct pw_cost {
     int sections, multiplies_per_sample;
     double cycles_per_sample;    /* NAN where the target has no model */
-    long flash_bytes, ram_bytes, stack_bytes;   /* state per channel and constants + code */
+    long flash_bytes;            /* code and constants; -1 where the target has no model */
+    long ram_bytes, stack_bytes; /* the state of one channel; 0 of stack where there is no model */
 } pw_cost;
 
 typedef struct pw_limit_row {

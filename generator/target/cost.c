@@ -113,7 +113,7 @@ void pw_cost_estimate(const pw_stage *stage, const pw_realisation *realisation, 
 {
     const pw_realisation *r = realisation;
     int words = 0;
-    *out = (pw_cost){.sections = r->count, .cycles_per_sample = NAN};
+    *out = (pw_cost){.sections = r->count, .cycles_per_sample = NAN, .flash_bytes = -1};
     for (int i = 0; i < r->count; i++) {
         out->multiplies_per_sample += multiplies(&r->section[i], is_fixed(r));
         words += state_words(&r->section[i]);
@@ -121,7 +121,5 @@ void pw_cost_estimate(const pw_stage *stage, const pw_realisation *realisation, 
     out->ram_bytes = (long)words * sample_bytes(r) + (is_fixed(r) ? 4 : 0);
     for (int i = 0; i < r->count; i++)
         if (r->section[i].structure == PW_DIRECT_1_SHAPED) out->ram_bytes += 8;      /* two errors, 32 bits each */
-    out->flash_bytes = 400 + (long)r->count * 60;                                    /* a host has no model */
-    out->stack_bytes = 64;
     if (target->cost) from_model(stage, r, target->cost, out);
 }

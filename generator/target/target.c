@@ -140,11 +140,21 @@ static void take_core(pw_settings *settings, pw_target *out, pw_messages *messag
         pw_error(messages, s ? s->at : (pw_where){0, 0}, "'word' is the register in bits; expected 8, 16, 32 or 64");
 }
 
+/* What the emulator counts, and so what the cost model is in. */
+static void take_counts(pw_settings *settings, pw_target *out, pw_messages *messages)
+{
+    const pw_setting *s = pw_setting_find(settings, "counts");
+    if (!s) return;
+    out->counts_cycles = !strcmp(s->text, "cycles");
+    if (!out->counts_cycles && strcmp(s->text, "instructions") != 0)
+        pw_error(messages, s->at, "'%s' is nothing that an emulator counts; expected cycles or instructions", s->text);
+}
+
 static void complain_of_unused(const pw_settings *settings, pw_messages *messages)
 {
     static const char *const known[] = {"about", "instructions", "word", "has", "flash", "ram", "compiler",
                                         "flags", "emulator", "cost", "package", "build", "libraries",
-                                        "sources", "emulator-package", "tick"};
+                                        "sources", "emulator-package", "tick", "counts"};
     for (int i = 0; i < settings->rows; i++) {
         const pw_setting *s = &settings->row[i];
         if (s->used) continue;
@@ -164,6 +174,7 @@ static void take_settings(pw_settings *settings, pw_target *out, pw_messages *me
     out->ram_bytes = bytes_of(settings, "ram", messages);
     take_core(settings, out, messages);
     take_abilities(settings, out, messages);
+    take_counts(settings, out, messages);
     pw_cost_model_read(settings, &out->arena, &out->cost, messages);
     for (size_t i = 0; i < sizeof harness_keys / sizeof harness_keys[0]; i++)
         (void)pw_setting_find(settings, harness_keys[i]);

@@ -26,6 +26,7 @@ typedef struct pw_target {
     bool has_long_multiply;      /* 32 x 32 -> 64 */
     bool has_saturate;           /* one-instruction saturation */
     bool has_vector;             /* M-profile vector unit */
+    bool counts_cycles;          /* the cost model's unit: cycles; otherwise instructions */
     long flash_bytes, ram_bytes; /* of the part; 0 unknown */
     struct pw_cost_model *cost;  /* null: none (host); see target/cost.h */
     pw_arena arena;

@@ -17,7 +17,7 @@ static pw_status run(const pw_call *call)
 
 const pw_verb pw_verb_schema = {
     .name = "schema",
-    .summary = "prints the JSON Schema of the stage file, for editors",
+    .summary = "print the JSON Schema of the stage file, for editors",
     .run = run,
     .examples = "  polewright schema > stage.schema.json\n",
 };

@@ -53,7 +53,7 @@ static void print_target(const pw_target *t)
     printf("; in hardware:");
     for (int i = 0; i < ABILITIES; i++)
         if (list[i].has) printf(" %s", list[i].word);
-    printf("\n%13s%s %s%s\n", "", t->compiler, t->flags, t->cost ? "" : "\n             no cost model");
+    printf("\n%13s%s%s%s%s\n", "", t->compiler, *t->flags ? " " : "", t->flags, t->cost ? "" : "\n             no cost model");
 }
 
 static pw_status run(const pw_call *call)
@@ -83,7 +83,7 @@ static pw_status run(const pw_call *call)
 
 const pw_verb pw_verb_targets = {
     .name = "targets",
-    .summary = "lists the targets and what each can do",
+    .summary = "list the targets and what each can do",
     .run = run,
     .examples = "  polewright targets\n  polewright targets --json\n",
 };

@@ -44,6 +44,31 @@ def same_bytes(top):
         tap.check(copied == expected, f"{code}: the runtime files are {expected}", str(copied))
 
 
+def strict_sums_modulo(top):
+    """Sums modulo 2^32 with error feedback, where a short constant once made gcc warn."""
+    stage = {
+        "stage": "bandstop",
+        "rate": "16 kHz",
+        "analog": {
+            "family": {
+                "approximation": "butterworth",
+                "shape": "bandstop",
+                "order": 3,
+                "corners": ["380 Hz", "420 Hz"],
+            }
+        },
+        "arithmetic": {"sample": "q15", "code": "standalone", "structure": "direct-1-shaped"},
+    }
+    built = build(stage, f"{top}/bandstop")
+    for compiler in ("gcc", "clang"):
+        message = compile_strictly(built, compiler)
+        tap.check(
+            "modulo 2^32" in text_of(f"{built['dir']}/bandstop.c") and not message,
+            f"{compiler}: sums modulo 2^32 compile without a warning",
+            message[:500],
+        )
+
+
 TWO = """
 #include <stdio.h>
 #include "left_selftest.h"
@@ -193,6 +218,7 @@ with tempfile.TemporaryDirectory() as folder:
     same_bytes(folder)
     together(folder)
     header(folder)
+    strict_sums_modulo(folder)
     remedies(folder)
     breaking_out(folder)
 tap.done()

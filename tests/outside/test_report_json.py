@@ -38,7 +38,7 @@ CONTRACT = {
                "integrates": B, "samples_to_clip": (int, float, None)}],
     "noise": {"output_rms_lsb": FIXED, "output_offset_lsb": FIXED, "output_dbfs": FIXED, "snr_db": FIXED, "grows": B},
     "limit_cycle": {"bound_lsb": FIXED, "found_lsb": FIXED},
-    "cost": {"target": S, "sections": I, "multiplies_per_sample": I, "cycles_per_sample": FIXED, "flash_bytes": I,
+    "cost": {"target": S, "sections": I, "multiplies_per_sample": I, "cycles_per_sample": FIXED, "flash_bytes": (int, None),
              "ram_bytes": I},
     "limits": [{"name": S, "limit": N, "value": FIXED, "unit": S, "met": B}], "verdict": S,
 }

@@ -328,6 +328,27 @@ static void delay_of_an_all_pass(void **state)
     assert_true(fabs(pw_analog_group_delay(&pass, 5) * (40 * 40 + w * w) / 80 - 1) < 1e-15);
 }
 
+/* A pair of zeros to the right: the phase falls by a turn on the way up, and never jumps. Each step of it is
+ * -delay dw, by the trapezoid rule. */
+static void phase_goes_on(void **state)
+{
+    (void)state;
+    pw_roots pass = {.poles = 2, .zeros = 2, .pole = {CMPLX(-20, 300), CMPLX(-20, -300)},
+                     .zero = {CMPLX(20, 300), CMPLX(20, -300)}, .factor = 1};
+    double size, before, after, step = 0.01;
+    pw_roots_log_at(&pass, 0, &size, &before);
+    assert_true(fabs(before) < 1e-15);
+    for (double hz = step; hz < 1000; hz += step) {
+        pw_roots_log_at(&pass, CMPLX(0, 2 * M_PI * hz), &size, &after);
+        double delay = (pw_analog_group_delay(&pass, hz) + pw_analog_group_delay(&pass, hz - step)) / 2;
+        assert_true(fabs(before - after - delay * 2 * M_PI * step) < 1e-6);
+        before = after;
+    }
+    assert_true(fabs(before + 2 * M_PI) < 0.02);
+    pw_roots_log_at(&pass, CMPLX(0, -2 * M_PI * 1000), &size, &before);
+    assert_true(fabs(before + after) < 1e-12);
+}
+
 static void on_a_root(void **state)
 {
     (void)state;
@@ -360,7 +381,7 @@ int main(void)
         cmocka_unit_test(critical_damping_and_linkwitz_riley_repeat_exactly),
         cmocka_unit_test(logarithm_and_delay_of_a_first_order_pole),
         cmocka_unit_test(delay_of_an_all_pass),
-        cmocka_unit_test(on_a_root),
+        cmocka_unit_test(phase_goes_on), cmocka_unit_test(on_a_root),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

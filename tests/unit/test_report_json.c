@@ -186,11 +186,14 @@ static void what_does_not_exist_is_null(void **state)
     assert_missing(it, "nodes.3.headroom_db");
     assert_missing(it, "transform.candidates.1.magnitude_error_db");
     it->results.cost.cycles_per_sample = NAN;
+    it->results.cost.flash_bytes = -1;
     it->results.response.row[0].analog_db = -INFINITY;
     it->results.realisation.limit_cycle.bound_lsb = INFINITY;
     it->results.digital.prewarp = PW_PREWARP_NONE;
     write_report(it);
     assert_missing(it, "cost.cycles_per_sample");
+    assert_missing(it, "cost.flash_bytes");
+    assert_missing(it, "cost.stack_bytes");
     assert_missing(it, "response.table.0.analog_db");
     assert_missing(it, "limit_cycle.bound_lsb");
     assert_missing(it, "transform.prewarp_hz");
