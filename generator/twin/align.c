@@ -11,6 +11,7 @@
 #define SIZE (2 * PW_LAG_MOST)   /* of a transform: a piece and as many zeros */
 #define PIECES 64
 #define NEAR_PEAK 0.98
+#define MIDDLE (PW_ALIGN_TAPS / 2 - 1)
 
 /* ---- Whole samples ---- */
 
@@ -96,7 +97,7 @@ double pw_align_phase(const pw_welch *w, bool inverted)
 
 static void make_taps(double part, double *tap)
 {
-    const double beta = 10, middle = PW_ALIGN_TAPS / 2 - 1 + part;
+    const double beta = 10, middle = MIDDLE + part;
     double sum = 0;
     for (int i = 0; i < PW_ALIGN_TAPS; i++) {
         double t = i - middle, x = 2 * t / PW_ALIGN_TAPS;
@@ -111,7 +112,8 @@ static void make_taps(double part, double *tap)
 void pw_aligned_begin(double delay, pw_aligned *out)
 {
     int whole = (int)floor(delay);
-    *out = (pw_aligned){.whole_r = whole > 0 ? whole : 0, .whole_y = (whole < 0 ? -whole : 0) + PW_ALIGN_TAPS / 2 - 1};
+    *out = (pw_aligned){.whole_r = whole > 0 ? whole : 0, .whole_y = (whole < 0 ? -whole : 0) + MIDDLE,
+                        .plain = delay == whole};
     make_taps(delay - whole, out->tap);
     out->room = out->whole_r + out->whole_y + PW_ALIGN_TAPS + 1;
     out->r = pw_arena_take(&out->arena, (size_t)out->room * sizeof(double));
@@ -120,10 +122,12 @@ void pw_aligned_begin(double delay, pw_aligned *out)
 
 bool pw_aligned_add(pw_aligned *a, double r, double y, double *late, double *y_out)
 {
+    int k = (a->at - a->whole_r + a->room) % a->room;
     a->r[a->at] = r;
     a->y[a->at] = y;
     *late = 0;
-    for (int i = 0, k = (a->at - a->whole_r + a->room) % a->room; i < PW_ALIGN_TAPS; i++, k = k ? k - 1 : a->room - 1)
+    if (a->plain) *late = a->r[(k - MIDDLE + a->room) % a->room];
+    for (int i = 0; i < PW_ALIGN_TAPS && !a->plain; i++, k = k ? k - 1 : a->room - 1)
         *late += a->tap[i] * a->r[k];
     *y_out = a->y[(a->at - a->whole_y + a->room) % a->room];
     a->at = (a->at + 1) % a->room;

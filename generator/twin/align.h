@@ -33,6 +33,7 @@ double pw_align_phase(const pw_welch *welch, bool inverted);
 typedef struct pw_aligned {
     int whole_r, whole_y, room, at;
     long seen;
+    bool plain;                  /* whole samples only: no taps */
     double tap[PW_ALIGN_TAPS];
     double *r, *y;
     pw_arena arena;

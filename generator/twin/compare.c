@@ -236,10 +236,11 @@ static void to_welch(void *to, const pw_frame *f, int64_t at)
     if (pw_aligned_add(&s->aligned, f->twin, f->output, &r, &y)) pw_welch_add(&s->welch, f->input, y, r);
 }
 
-/* welch has no segments where the record is too short. */
-static pw_status spectra(pw_flow *flow, int whole, pw_comparison *out, pw_welch *welch)
+/* out->spectra stays null where the record is too short. */
+static pw_status spectra(pw_flow *flow, int whole, pw_arena *arena, pw_comparison *out)
 {
     spectral s = {{0}, {0}};
+    out->whole_delay = whole;
     int64_t left = out->used - 2 * PW_ALIGN_TAPS - (whole < 0 ? -(int64_t)whole : whole);
     out->segment = pw_spectrum_segment(left);
     if (!out->segment) return PW_OK;
@@ -247,28 +248,37 @@ static pw_status spectra(pw_flow *flow, int whole, pw_comparison *out, pw_welch 
     pw_aligned_begin(whole, &s.aligned);
     pw_status status = pass(flow, out->skipped, to_welch, &s);
     pw_aligned_end(&s.aligned);
-    *welch = s.welch;
-    out->averages = pw_welch_averages(welch);
+    out->averages = pw_welch_averages(&s.welch);
+    out->spectra = pw_arena_take(arena, sizeof *out->spectra);
+    pw_welch_keep(&s.welch, arena, out->spectra);
+    pw_welch_end(&s.welch);
     return status;
+}
+
+void pw_compare_again(const pw_results *results, const pw_roots *like, pw_arena *arena,
+                      pw_comparison *comparison)
+{
+    if (comparison->spectra)
+        pw_spectrum_points(results, like, comparison->spectra,
+                           comparison->delay_samples - comparison->whole_delay, arena,
+                           &comparison->points);
 }
 
 pw_status pw_compare_record(pw_flow *flow, pw_hold hold, pw_arena *arena, pw_comparison *out, pw_messages *messages)
 {
     int whole = 0;
     bool inverted = false;
-    pw_welch welch = {0};
     *out = (pw_comparison){.points = {.worst = -1}};
     pw_status status = first_pass(flow, out, &whole, &inverted);
     if (status) return status;
-    status = spectra(flow, whole, out, &welch);
-    double delay = whole + (welch.segments ? pw_align_phase(&welch, inverted) : 0);
+    status = spectra(flow, whole, arena, out);
+    double delay = whole + (out->spectra ? pw_align_phase(out->spectra, inverted) : 0);
     out->delay_samples = usable_delay(delay, out->used);
     if (!status) status = residuals(flow, out);
-    if (!status && welch.segments) {
-        pw_spectrum_points(flow->results, &welch, out->delay_samples - whole, arena, &out->points);
+    if (!status && out->spectra) {
+        pw_compare_again(flow->results, &flow->results->analog, arena, out);
         status = pw_points_judge(flow->results, flow->quiet, PW_EVEN_SHARE, &out->points, messages);
     }
-    pw_welch_end(&welch);
     if (!status && hold != PW_HOLD_NONE) status = refer_all(flow, hold, out);
     return status;
 }

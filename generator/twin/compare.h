@@ -61,6 +61,8 @@ typedef struct pw_comparison {
     double averages;
     pw_points points;
     pw_reference_figures reference;
+    struct pw_welch *spectra;    /* in the arena; null where segment is 0 */
+    int whole_delay;             /* samples that were taken out before them */
 } pw_comparison;
 
 typedef enum pw_hold { PW_HOLD_NONE, PW_HOLD_ZERO, PW_HOLD_LINEAR } pw_hold;
@@ -68,6 +70,10 @@ typedef enum pw_hold { PW_HOLD_NONE, PW_HOLD_ZERO, PW_HOLD_LINEAR } pw_hold;
 /* Memory from the arena. hold: with the exact analog stage beside it. */
 PW_CHECKED pw_status pw_compare_record(pw_flow *flow, pw_hold hold, pw_arena *arena, pw_comparison *out,
                                        pw_messages *messages);
+
+/* The points anew, with like in place of the analog model (see spectrum.h); not judged. */
+void pw_compare_again(const pw_results *results, const pw_roots *like, pw_arena *arena,
+                      pw_comparison *comparison);
 
 /* A response file: "hz,db[,deg]". */
 PW_CHECKED pw_status pw_compare_response(const pw_results *results, const char *path, bool quiet, pw_arena *arena,

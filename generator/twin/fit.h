@@ -55,6 +55,9 @@ typedef struct pw_fit {
 PW_CHECKED pw_status pw_fit_run(const pw_results *results, const pw_points *points, bool delay, pw_arena *arena,
                                 pw_fit *out, pw_messages *messages);
 
+/* The analog model of a stage file's text, such as pw_fit_edit gives. */
+PW_CHECKED pw_status pw_fit_model(const char *stage_path, const pw_text *text, pw_roots *out);
+
 /* The text of the stage file with the fitted values in it: only the scalars change. */
 PW_CHECKED pw_status pw_fit_edit(const char *stage_path, const pw_fit *fit, pw_text *out);
 

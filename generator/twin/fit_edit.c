@@ -179,12 +179,12 @@ static pw_status edit_all(editing *e, const pw_tree *root, const pw_fit *fit)
     return status;
 }
 
-/* What was written must read as a stage. */
-static pw_status read_back(const char *path, const pw_text *text)
+pw_status pw_fit_model(const char *stage_path, const pw_text *text, pw_roots *out)
 {
-    pw_messages messages = {.file = path};
+    pw_messages messages = {.file = stage_path};
     pw_stage stage;
     pw_status status = pw_stage_read(text, NULL, 0, &stage, &messages);
+    if (!status) status = pw_analog_build(&stage.analog, out, &messages);
     if (status) {
         pw_messages_print(&messages, stderr, true);
         fprintf(stderr, "polewright: --calibrate: the fitted values do not make a stage file\n");
@@ -206,7 +206,6 @@ pw_status pw_fit_edit(const char *stage_path, const pw_fit *fit, pw_text *out)
     if (!status) status = pw_tree_parse(pw_text_string(&text), text.size, (pw_where){0, 0}, &e->arena, &root, &messages);
     if (!status) status = edit_all(e, root, fit);
     if (!status) apply(e, out);
-    if (!status) status = read_back(stage_path, out);
     pw_messages_free(&messages);
     pw_arena_free(&e->arena);
     pw_text_free(&text);

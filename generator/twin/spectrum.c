@@ -20,26 +20,26 @@ int pw_spectrum_segment(int64_t samples)
 
 typedef struct sums { double xx, r, yy, rr, hz; double complex ry; int bins; } sums;
 
-/* Adds a bin with the twin's output made that of the analog stage: both responses are known. */
-static void add_bin(const pw_results *results, const pw_welch *w, double delay, int k, sums *s)
+/* Adds a bin with the twin's output made that of like: both responses are known. */
+static void add_bin(const pw_results *results, const pw_roots *like, const pw_welch *w, double delay, int k, sums *s)
 {
     double rate = results->stage->rate_hz, hz = rate * k / w->n;
     double complex twin = pw_realised_response(&results->realisation, rate, hz);
-    double complex to_analog = pw_analog_at(&results->analog, hz) / twin;
-    double rr = w->rr[k] * creal(to_analog * conj(to_analog));
+    double complex to_like = pw_analog_at(like, hz) / twin;
+    double rr = w->rr[k] * creal(to_like * conj(to_like));
     s->xx += w->xx[k];
     s->r += w->rr[k];
     if (twin == 0 || !isfinite(rr)) return;
     s->yy += w->yy[k];
     s->rr += rr;
-    s->ry += conj(to_analog) * w->ry[k] * cexp(CMPLX(0, 2 * M_PI * k / w->n * delay));
+    s->ry += conj(to_like) * w->ry[k] * cexp(CMPLX(0, 2 * M_PI * k / w->n * delay));
     s->hz += hz * rr;
 }
 
-static sums gather(const pw_results *results, const pw_welch *w, double delay, int from, int to)
+static sums gather(const pw_results *results, const pw_roots *like, const pw_welch *w, double delay, int from, int to)
 {
     sums s = {.bins = to - from};
-    for (int k = from; k < to; k++) add_bin(results, w, delay, k, &s);
+    for (int k = from; k < to; k++) add_bin(results, like, w, delay, k, &s);
     s.hz = s.rr > 0 ? s.hz / s.rr : results->stage->rate_hz * (from + to - 1) / 2 / w->n;
     return s;
 }
@@ -52,9 +52,9 @@ static bool is_excited(const pw_welch *w, const sums *s, int middle, double aver
            && averages > 1 && p->coherence > by_chance && p->band_db < WIDEST_BAND;
 }
 
-static pw_point make_point(const pw_results *results, const pw_welch *w, double delay, int from, int to)
+static pw_point make_point(const pw_results *results, const pw_roots *like, const pw_welch *w, double delay, int from, int to)
 {
-    sums s = gather(results, w, delay, from, to);
+    sums s = gather(results, like, w, delay, from, to);
     pw_point p = {.hz = s.hz, .db = NAN, .deg = NAN, .band_db = INFINITY, .band_deg = INFINITY};
     pw_point_models(results, &p);
     if (!(s.rr > 0) || !(s.yy > 0)) return p;
@@ -64,13 +64,15 @@ static pw_point make_point(const pw_results *results, const pw_welch *w, double 
     double relative = sqrt((1 - p.coherence) / (2 * averages * p.coherence));
     p.band_db = SIGMAS * relative * 20 / M_LN10;
     p.band_deg = SIGMAS * relative * 180 / M_PI;
-    p.db = p.analog_db + 20 * log10(cabs(ratio));
-    p.deg = p.analog_deg + carg(ratio) * 180 / M_PI;
+    double complex h = ratio * pw_analog_at(like, s.hz);
+    p.db = 20 * log10(cabs(h));
+    p.deg = carg(h) * 180 / M_PI;
+    p.deg -= 360 * round((p.deg - p.analog_deg) / 360);
     p.excited = is_excited(w, &s, (from + to) / 2, averages, &p);
     return p;
 }
 
-void pw_spectrum_points(const pw_results *results, const pw_welch *welch, double delay, pw_arena *arena, pw_points *out)
+void pw_spectrum_points(const pw_results *results, const pw_roots *like, const pw_welch *welch, double delay, pw_arena *arena, pw_points *out)
 {
     const double *band = results->stage->limits.band_hz;
     double step = results->stage->rate_hz / welch->n;
@@ -83,7 +85,7 @@ void pw_spectrum_points(const pw_results *results, const pw_welch *welch, double
         int to = (int)ceil((first - 0.5) * pow(ratio, (i + 1.0) / PW_POINTS));
         if (to > last + 1 || i == PW_POINTS - 1) to = last + 1;
         if (to <= from) continue;
-        out->list[out->count++] = make_point(results, welch, delay, from, to);
+        out->list[out->count++] = make_point(results, like, welch, delay, from, to);
         from = to;
     }
 }

@@ -76,6 +76,22 @@ void pw_welch_add(pw_welch *welch, double x, double y, double r)
 
 void pw_welch_end(pw_welch *welch) { pw_arena_free(&welch->arena); }
 
+static void *copied(const void *from, size_t bytes, pw_arena *arena)
+{
+    return memcpy(pw_arena_take(arena, bytes), from, bytes);
+}
+
+void pw_welch_keep(const pw_welch *welch, pw_arena *arena, pw_welch *out)
+{
+    size_t bins = (size_t)welch->bins;
+    *out = (pw_welch){.n = welch->n, .bins = welch->bins, .segments = welch->segments};
+    out->xx = copied(welch->xx, bins * sizeof *out->xx, arena);
+    out->yy = copied(welch->yy, bins * sizeof *out->yy, arena);
+    out->rr = copied(welch->rr, bins * sizeof *out->rr, arena);
+    out->xy = copied(welch->xy, bins * sizeof *out->xy, arena);
+    out->ry = copied(welch->ry, bins * sizeof *out->ry, arena);
+}
+
 double pw_welch_averages(const pw_welch *welch)
 {
     double k = (double)welch->segments;

@@ -26,6 +26,8 @@ typedef struct pw_welch {
 void pw_welch_begin(int n, pw_welch *out);
 void pw_welch_add(pw_welch *welch, double x, double y, double r);
 void pw_welch_end(pw_welch *welch);
+/* The sums alone, copied into the arena; nothing can be added to them, and they need no end. */
+void pw_welch_keep(const pw_welch *welch, pw_arena *arena, pw_welch *out);
 
 /* The number of independent averages that the half-overlapped segments are worth, for a Hann window:
  * its correlation at half overlap is 1/6 (Welch 1967). */

@@ -102,12 +102,43 @@ static const char *fitted_path(const pw_call *call, pw_arena *arena)
     return call->directory ? call->directory : pw_arena_print(arena, "%.*s.fitted.yaml", (int)n, call->stage);
 }
 
-static pw_status calibrate(const pw_call *call, pw_analysis *analysis, pw_arena *arena, pw_twin_found *found, pw_fit *fit)
+/* One fit; *model: of the stage file as it leaves it in *edited. */
+static pw_status fit_once(const pw_call *call, pw_analysis *analysis, const pw_twin_found *found,
+                          pw_arena *arena, pw_fit *fit, pw_text *edited, pw_roots *model)
+{
+    bool delay = found->comparison != NULL;
+    pw_text_free(edited);
+    pw_status status = pw_fit_run(&analysis->results, found->points, delay, arena, fit, &analysis->messages);
+    if (!status) status = pw_fit_edit(call->stage, fit, edited);
+    return status ? status : pw_fit_model(call->stage, edited, model);
+}
+
+/* A record's response is estimated again with the fitted model for the board's, then fitted again: what
+ * the window smears cancels the better the nearer the model is. */
+static pw_status fit_all(const pw_call *call, pw_analysis *analysis, pw_twin_found *found, pw_arena *arena,
+                         pw_fit *fit, pw_text *edited, pw_comparison *comparison)
+{
+    pw_roots model;
+    pw_points first = *found->points;
+    pw_status status = fit_once(call, analysis, found, arena, fit, edited, &model);
+    double before = fit->before_db;
+    for (int round = 0; round < 2 && found->comparison && !status; round++) {
+        pw_compare_again(&analysis->results, &model, arena, comparison);
+        status = fit_once(call, analysis, found, arena, fit, edited, &model);
+    }
+    fit->before_db = before;
+    if (found->comparison) {
+        fit->delay_s += comparison->delay_samples / analysis->stage.rate_hz;
+        comparison->points = first;
+    }
+    return status;
+}
+
+static pw_status calibrate(const pw_call *call, pw_analysis *analysis, pw_arena *arena, pw_twin_found *found,
+                           pw_fit *fit, pw_comparison *comparison)
 {
     pw_text edited = {0};
-    pw_status status = pw_fit_run(&analysis->results, found->points, found->comparison != NULL, arena, fit, &analysis->messages);
-    if (found->comparison) fit->delay_s += found->comparison->delay_samples / analysis->stage.rate_hz;
-    if (!status) status = pw_fit_edit(call->stage, fit, &edited);
+    pw_status status = fit_all(call, analysis, found, arena, fit, &edited, comparison);
     found->fit = fit;
     found->written = fitted_path(call, arena);
     if (!status) status = pw_file_write(found->written, pw_text_string(&edited), edited.size);
@@ -140,7 +171,7 @@ static pw_status compare(const pw_call *call, pw_analysis *analysis, pw_hold hol
     pw_text out = {0};
     pw_twin_found found = {.results = &analysis->results};
     pw_status status = measure(call, analysis, hold, &arena, &found, &comparison, &points);
-    if (!status && call->extra[CALIBRATE]) status = calibrate(call, analysis, &arena, &found, &fit);
+    if (!status && call->extra[CALIBRATE]) status = calibrate(call, analysis, &arena, &found, &fit, &comparison);
     status = pw_analysis_tell(call, analysis, status);
     if (!status) {
         if (call->json) pw_twin_json(&found, &out);
