@@ -28,9 +28,11 @@ void pw_lag_begin(pw_lag *out)
 static void add_piece(pw_lag *lag)
 {
     double mean[2] = {0, 0}, *z = lag->work;
-    for (int i = 0; i < lag->filled; i++) mean[0] += lag->r[i] / lag->filled, mean[1] += lag->y[i] / lag->filled;
+    for (int i = 0; i < lag->filled; i++)
+        mean[0] += lag->r[i] / lag->filled, mean[1] += lag->y[i] / lag->filled;
     memset(z, 0, 2 * SIZE * sizeof *z);
-    for (int i = 0; i < lag->filled; i++) z[2 * i] = lag->r[i] - mean[0], z[2 * i + 1] = lag->y[i] - mean[1];
+    for (int i = 0; i < lag->filled; i++)
+        z[2 * i] = lag->r[i] - mean[0], z[2 * i + 1] = lag->y[i] - mean[1];
     gsl_fft_complex_radix2_forward(z, 1, SIZE);
     for (int k = 0; k < SIZE; k++) {
         int m = (SIZE - k) % SIZE;
@@ -51,7 +53,10 @@ void pw_lag_add(pw_lag *lag, double r, double y)
     if (++lag->filled == PW_LAG_MOST) add_piece(lag);
 }
 
-static double correlation(const pw_lag *lag, int at) { return lag->spectrum[2 * ((at + SIZE) % SIZE)]; }
+static double correlation(const pw_lag *lag, int at)
+{
+    return lag->spectrum[2 * ((at + SIZE) % SIZE)];
+}
 
 int pw_lag_find(pw_lag *lag, bool *inverted)
 {
@@ -64,8 +69,9 @@ int pw_lag_find(pw_lag *lag, bool *inverted)
     for (int at = 0; at < abs(best); at++)
         for (int sign = -1; sign <= 1; sign += 2) {
             double c = fabs(correlation(lag, sign * at));
-            if (c >= enough && c >= fabs(correlation(lag, sign * at - 1)) && c >= fabs(correlation(lag, sign * at + 1))
-                && abs(best) > at) best = sign * at;
+            if (c >= enough && c >= fabs(correlation(lag, sign * at - 1))
+                && c >= fabs(correlation(lag, sign * at + 1)) && abs(best) > at)
+                best = sign * at;
         }
     *inverted = correlation(lag, best) < 0;
     return best;
@@ -101,7 +107,8 @@ static void make_taps(double part, double *tap)
     double sum = 0;
     for (int i = 0; i < PW_ALIGN_TAPS; i++) {
         double t = i - middle, x = 2 * t / PW_ALIGN_TAPS;
-        double window = fabs(x) >= 1 ? 0 : gsl_sf_bessel_I0(beta * sqrt(1 - x * x)) / gsl_sf_bessel_I0(beta);
+        double window =
+            fabs(x) >= 1 ? 0 : gsl_sf_bessel_I0(beta * sqrt(1 - x * x)) / gsl_sf_bessel_I0(beta);
         tap[i] = window * (fabs(t) < 1e-12 ? 1 : sin(M_PI * t) / (M_PI * t));
         sum += tap[i];
     }
@@ -112,7 +119,8 @@ static void make_taps(double part, double *tap)
 void pw_aligned_begin(double delay, pw_aligned *out)
 {
     int whole = (int)floor(delay);
-    *out = (pw_aligned){.whole_r = whole > 0 ? whole : 0, .whole_y = (whole < 0 ? -whole : 0) + MIDDLE,
+    *out = (pw_aligned){.whole_r = whole > 0 ? whole : 0,
+                        .whole_y = (whole < 0 ? -whole : 0) + MIDDLE,
                         .plain = delay == whole};
     make_taps(delay - whole, out->tap);
     out->room = out->whole_r + out->whole_y + PW_ALIGN_TAPS + 1;

@@ -18,13 +18,14 @@ typedef struct pw_lag {
 
 void pw_lag_begin(pw_lag *out);
 void pw_lag_add(pw_lag *lag, double r, double y);
-/* By how many samples y is behind r, to the nearest, and whether it is upside down. Among peaks of at
- * least 0.98 of the largest the one nearest to 0 is taken: a tone repeats itself. */
+/* By how many samples y is behind r, to the nearest, and whether it is upside down. Among peaks of
+ * at least 0.98 of the largest the one nearest to 0 is taken: a tone repeats itself. */
 int pw_lag_find(pw_lag *lag, bool *inverted);
 void pw_lag_end(pw_lag *lag);
 
-/* The delay in samples of y behind r, which is below 2 of them: slope of the phase of ry, bins weighted by their power and
- * by coherence / (1 - coherence). Accuracy: without noise, and with y a delayed r, 1e-6 samples. */
+/* The delay in samples of y behind r, which is below 2 of them: slope of the phase of ry, bins
+ * weighted by their power and by coherence / (1 - coherence). Accuracy: without noise, and with y a
+ * delayed r, 1e-6 samples. */
 double pw_align_phase(const pw_welch *welch, bool inverted);
 
 /* y and r brought to one time: r is delayed by delay samples (fewer than 0: y instead), by a

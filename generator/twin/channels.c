@@ -3,8 +3,8 @@
 
 #include <stdlib.h>
 
-void pw_channels_make(const pw_realisation *realisation, const pw_stage *stage, int count, pw_values values,
-                      pw_channels *out)
+void pw_channels_make(const pw_realisation *realisation, const pw_stage *stage, int count,
+                      pw_values values, pw_channels *out)
 {
     *out = (pw_channels){.realisation = realisation, .count = count};
     out->sim = pw_take((size_t)count * sizeof *out->sim);
@@ -37,11 +37,13 @@ CHANNEL(words, int32_t)
 CHANNEL(float32, float)
 CHANNEL(float64, double)
 
-void pw_channels_run(pw_channels *channels, const double *in, int in_columns, double *out, size_t frames)
+void pw_channels_run(pw_channels *channels, const double *in, int in_columns, double *out,
+                     size_t frames)
 {
     for (int i = 0; i < channels->count; i++) {
         if (channels->in.fixed) channel_words(channels, i, in + i, in_columns, out + i, frames);
-        else if (channels->in.single) channel_float32(channels, i, in + i, in_columns, out + i, frames);
+        else if (channels->in.single)
+            channel_float32(channels, i, in + i, in_columns, out + i, frames);
         else channel_float64(channels, i, in + i, in_columns, out + i, frames);
     }
 }

@@ -1,5 +1,5 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The emitted arithmetic on values of a record, one channel or many, each with a state of its own. */
+/* The emitted arithmetic on values of a record, one channel or many, each with its own state. */
 #ifndef PW_TWIN_CHANNELS_H
 #define PW_TWIN_CHANNELS_H
 
@@ -18,12 +18,13 @@ typedef struct pw_channels {
 } pw_channels;
 
 /* Reset, all of them. */
-void pw_channels_make(const pw_realisation *realisation, const pw_stage *stage, int count, pw_values values,
-                      pw_channels *out);
+void pw_channels_make(const pw_realisation *realisation, const pw_stage *stage, int count,
+                      pw_values values, pw_channels *out);
 void pw_channels_free(pw_channels *channels);
 
 /* frames <= PW_FRAMES; in[frame * in_columns + channel] gives out[frame * count + channel]. */
-void pw_channels_run(pw_channels *channels, const double *in, int in_columns, double *out, size_t frames);
+void pw_channels_run(pw_channels *channels, const double *in, int in_columns, double *out,
+                     size_t frames);
 /* As if the value had been at the input of the channel for ever. */
 void pw_channels_settle(pw_channels *channels, int channel, double value);
 /* Clips of all channels. */

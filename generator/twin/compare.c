@@ -97,7 +97,8 @@ static pw_status first_pass(pw_flow *flow, pw_comparison *out, int *whole, bool 
         for (size_t i = 0; i < got && !status; i++) to_lag(&lag, &frames[i], 0);
     } while (!status && got);
     if (!status && flow->frames < LEAST_FRAMES)
-        status = pw_record_wrong(flow->path, 0, "holds %" PRId64 " sample%s; expected at least %d to compare",
+        status = pw_record_wrong(flow->path, 0,
+                                 "holds %" PRId64 " sample%s; expected at least %d to compare",
                                  flow->frames, flow->frames == 1 ? "" : "s", LEAST_FRAMES);
     if (!status) *whole = pw_lag_find(&lag, inverted);
     pw_lag_end(&lag);
@@ -131,7 +132,9 @@ static void leave(void *to, const pw_frame *f, int64_t at)
     double r = f->twin, y = f->output;
     if (!l->known) tally_add(&l->raw, y - r, at), line_add(&l->plain, r, y);
     if (l->shifts && !pw_aligned_add(&l->aligned, f->twin, f->output, &r, &y)) return;
-    if (l->known) tally_add(&l->left, y - l->offset - (isnan(l->gain) ? 0 : l->gain * r), at - (l->shifts ? l->aligned.whole_y : 0));
+    if (l->known)
+        tally_add(&l->left, y - l->offset - (isnan(l->gain) ? 0 : l->gain * r),
+                  at - (l->shifts ? l->aligned.whole_y : 0));
     else line_add(&l->line, r, y);
 }
 
@@ -140,7 +143,9 @@ static double lsb_of(const pw_results *results)
     const pw_port *port = &results->stage->output;
     if (port->bits) return (port->high - port->low) / ldexp(1, port->bits);
     pw_sample sample = results->realisation.sample;
-    return sample == PW_Q15 ? ldexp(port->full_scale, -15) : sample == PW_Q31 ? ldexp(port->full_scale, -31) : NAN;
+    return sample == PW_Q15   ? ldexp(port->full_scale, -15)
+           : sample == PW_Q31 ? ldexp(port->full_scale, -31)
+                              : NAN;
 }
 
 static pw_status residuals(pw_flow *flow, pw_comparison *out)
@@ -207,7 +212,9 @@ static pw_status refer_all(pw_flow *flow, pw_hold hold, pw_comparison *out)
     pw_reference_figures *f = &out->reference;
     bool linear = hold == PW_HOLD_LINEAR;
     double x = M_PI * stage->limits.band_hz[1] / stage->rate_hz;
-    *f = (pw_reference_figures){.given = true, .linear = linear, .edge_hz = stage->limits.band_hz[1],
+    *f = (pw_reference_figures){.given = true,
+                                .linear = linear,
+                                .edge_hz = stage->limits.band_hz[1],
                                 .hold_delay_samples = linear ? 0 : 0.5,
                                 .edge_droop_db = 20 * log10(sin(x) / x) * (linear ? 2 : 1)};
     referring r = {.results = results, .skipped = out->skipped};
@@ -233,7 +240,8 @@ static void to_welch(void *to, const pw_frame *f, int64_t at)
     spectral *s = to;
     double r, y;
     (void)at;
-    if (pw_aligned_add(&s->aligned, f->twin, f->output, &r, &y)) pw_welch_add(&s->welch, f->input, y, r);
+    if (pw_aligned_add(&s->aligned, f->twin, f->output, &r, &y))
+        pw_welch_add(&s->welch, f->input, y, r);
 }
 
 /* out->spectra stays null where the record is too short. */
@@ -264,7 +272,8 @@ void pw_compare_again(const pw_results *results, const pw_roots *like, pw_arena 
                            &comparison->points);
 }
 
-pw_status pw_compare_record(pw_flow *flow, pw_hold hold, pw_arena *arena, pw_comparison *out, pw_messages *messages)
+pw_status pw_compare_record(pw_flow *flow, pw_hold hold, pw_arena *arena, pw_comparison *out,
+                            pw_messages *messages)
 {
     int whole = 0;
     bool inverted = false;

@@ -6,12 +6,12 @@
 #include "twin/flow.h"
 
 #define PW_POINTS 72             /* of the estimated response: log-spaced over the band */
-#define PW_EVEN_SHARE 0.95       /* of the points of a record must lie inside: 95 % bands let some out */
+#define PW_EVEN_SHARE 0.95       /* of a record's points must lie inside: 95 % bands let some out */
 
 /* One frequency of a measured response beside the model's. */
 typedef struct pw_point {
     double hz;
-    double db, deg;              /* measured; deg NAN where not known; a record's is without its delay */
+    double db, deg; /* measured; deg NAN where not known; a record's is without its delay */
     double band_db, band_deg;    /* half the width of the 95 % band; 0 where not known */
     double twin_db, twin_deg;    /* of the realised filter; NAN from half the rate on */
     double analog_db, analog_deg;
@@ -28,7 +28,7 @@ typedef struct pw_points {
     pw_point *list;
     int count, judged, inside;   /* judged: excited, and something is allowed */
     bool phases;                 /* phases are judged too (a response that has them) */
-    int worst;                   /* index of the largest |db - twin or analog db| among the excited; -1 */
+    int worst; /* index of the largest |db - twin or analog db| among the excited; -1 */
     pw_allowed allowed;
     int64_t draws;
     uint64_t seed;
@@ -68,22 +68,22 @@ typedef struct pw_comparison {
 typedef enum pw_hold { PW_HOLD_NONE, PW_HOLD_ZERO, PW_HOLD_LINEAR } pw_hold;
 
 /* Memory from the arena. hold: with the exact analog stage beside it. */
-PW_CHECKED pw_status pw_compare_record(pw_flow *flow, pw_hold hold, pw_arena *arena, pw_comparison *out,
-                                       pw_messages *messages);
+PW_CHECKED pw_status pw_compare_record(pw_flow *flow, pw_hold hold, pw_arena *arena,
+                                       pw_comparison *out, pw_messages *messages);
 
 /* The points anew, with like in place of the analog model (see spectrum.h); not judged. */
 void pw_compare_again(const pw_results *results, const pw_roots *like, pw_arena *arena,
                       pw_comparison *comparison);
 
 /* A response file: "hz,db[,deg]". */
-PW_CHECKED pw_status pw_compare_response(const pw_results *results, const char *path, bool quiet, pw_arena *arena,
-                                         pw_points *out, pw_messages *messages);
+PW_CHECKED pw_status pw_compare_response(const pw_results *results, const char *path, bool quiet,
+                                         pw_arena *arena, pw_points *out, pw_messages *messages);
 
 /* Fills twin and analog of a point of this frequency. */
 void pw_point_models(const pw_results *results, pw_point *point);
-/* Fills low .. inside of all points, from the tolerances, or from limits where there are none. share: of
- * the judged points that must be inside. */
-PW_CHECKED pw_status pw_points_judge(const pw_results *results, bool quiet, double share, pw_points *points,
-                                     pw_messages *messages);
+/* Fills low .. inside of all points, from the tolerances, or from limits where there are none.
+ * share: of the judged points that must be inside. */
+PW_CHECKED pw_status pw_points_judge(const pw_results *results, bool quiet, double share,
+                                     pw_points *points, pw_messages *messages);
 
 #endif

@@ -62,8 +62,9 @@ static void divide(double *u, double *v, int n, double *x)
 
 void pw_matrix_exponential(double *a, int n, double *out)
 {
-    static const double b[] = {64764752532480000, 32382376266240000, 7771770303897600, 1187353796428800, 129060195264000,
-                               10559470521600, 670442572800, 33522128640, 1323241920, 40840800, 960960, 16380, 182, 1};
+    static const double b[] = {
+        64764752532480000, 32382376266240000, 7771770303897600, 1187353796428800, 129060195264000,
+        10559470521600, 670442572800, 33522128640, 1323241920, 40840800, 960960, 16380, 182, 1};
     const double reach = 5.371920351148152;      /* theta 13 of Higham's table 2.3 */
     pw_arena arena = {0};
     size_t bytes = (size_t)(n * n) * sizeof(double);
@@ -136,7 +137,8 @@ static void monic(const double complex *root, int n, double *c1, double *c0)
 /* The whole's state space so far; its output is c x + d u. */
 typedef struct space { int n, room; double *a, *b, *c, d; } space;
 
-/* Puts a part behind it. Each part's time is scaled by its fastest pole, so that its states are alike in size. */
+/* Puts a part behind it. Each part's time is scaled by its fastest pole, so that its states are
+ * alike in size. */
 static void append(space *s, const part *q, double gain)
 {
     double w = 0, d1, d0, n1, n0;
@@ -208,7 +210,9 @@ void pw_exact_begin(const pw_roots *analog, double rate_hz, bool linear, pw_exac
     *out = (pw_exact){.linear = linear, .u = NAN};
     size_t row = MOST_STATES * sizeof(double);
     pw_arena *a = &out->arena;
-    space s = {.room = PW_MAX_ROOTS, .a = pw_arena_take(a, PW_MAX_ROOTS * row), .b = pw_arena_take(a, row),
+    space s = {.room = PW_MAX_ROOTS,
+               .a = pw_arena_take(a, PW_MAX_ROOTS * row),
+               .b = pw_arena_take(a, row),
                .c = pw_arena_take(a, row)};
     make_space(analog, rate_hz, &s);
     out->n = s.n;
@@ -234,10 +238,12 @@ void pw_exact_settle(pw_exact *exact, double u)
     gsl_matrix *a = gsl_matrix_alloc((size_t)n, (size_t)n);
     gsl_permutation *p = gsl_permutation_alloc((size_t)n);
     for (int i = 0; i < n; i++) {
-        for (int j = 0; j < n; j++) gsl_matrix_set(a, (size_t)i, (size_t)j, exact->a[i * PW_MAX_ROOTS + j]);
+        for (int j = 0; j < n; j++)
+            gsl_matrix_set(a, (size_t)i, (size_t)j, exact->a[i * PW_MAX_ROOTS + j]);
         exact->next[i] = -exact->b[i] * u;
     }
-    gsl_vector_view b = gsl_vector_view_array(exact->next, (size_t)n), x = gsl_vector_view_array(exact->x, (size_t)n);
+    gsl_vector_view b = gsl_vector_view_array(exact->next, (size_t)n),
+                    x = gsl_vector_view_array(exact->x, (size_t)n);
     gsl_linalg_LU_decomp(a, p, &sign);
     gsl_linalg_LU_solve(a, p, &b.vector, &x.vector);
     gsl_permutation_free(p);

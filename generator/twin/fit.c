@@ -13,7 +13,7 @@
 
 #define STEP 1e-4                /* of u, for derivatives */
 #define NO_DIFFERENCE 1e-6       /* singular values below this of the largest are rounding */
-#define SAYS_NOTHING 1.0         /* a combination whose error in u is larger: the tolerance says more */
+#define SAYS_NOTHING 1.0 /* a combination whose error in u is larger: the tolerance says more */
 #define FINEST 1e-5              /* smallest standard error of a point, nepers or radians */
 #define MOST_ITERATIONS 200
 
@@ -41,8 +41,9 @@ static bool residuals_at(fitting *f, const double *u, double delay, double *out)
         const pw_point *p = f->point[i];
         out[i] = (f->log_size[i] - p->db * M_LN10 / 20) / f->sigma[0][i];
         if (f->phases)
-            out[f->rows + i] = wrapped(f->phase[i] - 2 * M_PI * p->hz / f->rate * delay - p->deg * M_PI / 180)
-                               / f->sigma[1][i];
+            out[f->rows + i] =
+                wrapped(f->phase[i] - 2 * M_PI * p->hz / f->rate * delay - p->deg * M_PI / 180)
+                / f->sigma[1][i];
     }
     return true;
 }
@@ -53,7 +54,8 @@ static void place(const fitting *f, const gsl_vector *z, double *u, double *dela
     const pw_fit *fit = f->fit;
     for (int i = 0; i < fit->count; i++) {
         u[i] = 0;
-        for (int k = 0; k < fit->found; k++) u[i] += fit->direction[k][i] * gsl_vector_get(z, (size_t)k);
+        for (int k = 0; k < fit->found; k++)
+            u[i] += fit->direction[k][i] * gsl_vector_get(z, (size_t)k);
     }
     *delay = f->delay ? gsl_vector_get(z, (size_t)fit->found) : 0;
 }
@@ -69,7 +71,8 @@ static int solve_f(const gsl_vector *z, void *of, gsl_vector *out)
 static int solve_df(const gsl_vector *z, void *of, gsl_matrix *out)
 {
     fitting *f = of;
-    gsl_vector *at = gsl_vector_alloc(z->size), *above = gsl_vector_alloc(out->size1), *below = gsl_vector_alloc(out->size1);
+    gsl_vector *at = gsl_vector_alloc(z->size), *above = gsl_vector_alloc(out->size1),
+               *below = gsl_vector_alloc(out->size1);
     int status = GSL_SUCCESS;
     for (size_t k = 0; k < z->size && !status; k++) {
         gsl_vector_memcpy(at, z);
@@ -78,7 +81,8 @@ static int solve_df(const gsl_vector *z, void *of, gsl_matrix *out)
         gsl_vector_set(at, k, gsl_vector_get(z, k) - STEP);
         if (!status) status = solve_f(at, f, below);
         for (size_t i = 0; i < out->size1 && !status; i++)
-            gsl_matrix_set(out, i, k, (gsl_vector_get(above, i) - gsl_vector_get(below, i)) / (2 * STEP));
+            gsl_matrix_set(out, i, k,
+                           (gsl_vector_get(above, i) - gsl_vector_get(below, i)) / (2 * STEP));
     }
     gsl_vector_free(at);
     gsl_vector_free(above);
@@ -96,7 +100,8 @@ static void project_out(const fitting *f, gsl_matrix *j)
     for (int i = 0; i < f->rows; i++) {
         double d = f->point[i]->hz / f->sigma[1][i];
         size += d * d;
-        for (int k = 0; k < f->fit->count; k++) dot[k] += d * gsl_matrix_get(j, (size_t)(f->rows + i), (size_t)k);
+        for (int k = 0; k < f->fit->count; k++)
+            dot[k] += d * gsl_matrix_get(j, (size_t)(f->rows + i), (size_t)k);
     }
     for (int i = 0; i < f->rows; i++)
         for (int k = 0; k < f->fit->count; k++) {
@@ -108,7 +113,8 @@ static void project_out(const fitting *f, gsl_matrix *j)
 static bool sensitivities(fitting *f, gsl_matrix *j)
 {
     double u[PW_MOST_FITTED] = {0};
-    double *above = pw_arena_take(f->trial.arena, 2 * (size_t)f->residuals * sizeof *above), *below = above + f->residuals;
+    double *above = pw_arena_take(f->trial.arena, 2 * (size_t)f->residuals * sizeof *above),
+           *below = above + f->residuals;
     gsl_matrix_set_zero(j);
     for (int k = 0; k < f->fit->count; k++) {
         u[k] = STEP;
@@ -131,7 +137,8 @@ static bool sensitivities(fitting *f, gsl_matrix *j)
 static bool decompose(fitting *f, double *singular)
 {
     int n = f->fit->count, m = f->residuals < n ? n : f->residuals;
-    gsl_matrix *j = gsl_matrix_alloc((size_t)m, (size_t)n), *v = gsl_matrix_alloc((size_t)n, (size_t)n);
+    gsl_matrix *j = gsl_matrix_alloc((size_t)m, (size_t)n),
+               *v = gsl_matrix_alloc((size_t)n, (size_t)n);
     gsl_vector *s = gsl_vector_alloc((size_t)n), *work = gsl_vector_alloc((size_t)n);
     bool good = sensitivities(f, j);
     if (good) {
@@ -139,7 +146,8 @@ static bool decompose(fitting *f, double *singular)
         for (int k = 0; k < n; k++) {
             singular[k] = gsl_vector_get(s, (size_t)k);
             f->fit->singular[k] = singular[0] > 0 ? singular[k] / singular[0] : 0;
-            for (int i = 0; i < n; i++) f->fit->direction[k][i] = gsl_matrix_get(v, (size_t)i, (size_t)k);
+            for (int i = 0; i < n; i++)
+                f->fit->direction[k][i] = gsl_matrix_get(v, (size_t)i, (size_t)k);
         }
     }
     gsl_matrix_free(j);
@@ -161,21 +169,27 @@ static void take_errors(fitting *f, const gsl_matrix *covariance, const double *
             c[i][j] = 0;
             for (int k = 0; k < fit->found; k++)
                 for (int l = 0; l < fit->found; l++)
-                    c[i][j] += fit->direction[k][i] * fit->direction[l][j] * gsl_matrix_get(covariance, (size_t)k, (size_t)l);
+                    c[i][j] += fit->direction[k][i] * fit->direction[l][j]
+                               * gsl_matrix_get(covariance, (size_t)k, (size_t)l);
         }
     fit->correlation_most = 0;
     for (int i = 0; i < fit->count; i++) {
         pw_fitted *p = &fit->parameter[i];
         p->error = sqrt(fmax(0, c[i][i])) * fabs(pw_trial_slope(p, u[i]));
         p->held = 0;
-        for (int k = fit->found; k < fit->count; k++) p->held += fit->direction[k][i] * fit->direction[k][i];
+        for (int k = fit->found; k < fit->count; k++)
+            p->held += fit->direction[k][i] * fit->direction[k][i];
         double open = p->nominal * p->tolerance / (p->normal ? 4.5 : sqrt(3));
         if (p->held < 1e-9) p->whole_error = p->error;
-        else p->whole_error = p->kind == PW_FITTED_PART ? sqrt(p->error * p->error + p->held * open * open) : NAN;
-        p->at_bound = p->kind == PW_FITTED_PART && fabs(p->value / p->nominal - 1) > 0.98 * p->tolerance;
+        else
+            p->whole_error =
+                p->kind == PW_FITTED_PART ? sqrt(p->error * p->error + p->held * open * open) : NAN;
+        p->at_bound =
+            p->kind == PW_FITTED_PART && fabs(p->value / p->nominal - 1) > 0.98 * p->tolerance;
         for (int j = 0; j < i; j++) {
             double r = c[i][i] > 0 && c[j][j] > 0 ? c[i][j] / sqrt(c[i][i] * c[j][j]) : 0;
-            if (p->held > 0.01 || fit->parameter[j].held > 0.01 || fabs(r) <= fit->correlation_most) continue;
+            if (p->held > 0.01 || fit->parameter[j].held > 0.01 || fabs(r) <= fit->correlation_most)
+                continue;
             fit->correlation_most = fabs(r);
             fit->correlated[0] = j, fit->correlated[1] = i;
         }
@@ -201,7 +215,8 @@ static pw_status solve(fitting *f, double *scatter)
     size_t p = (size_t)(fit->found + f->delay), n = (size_t)f->residuals;
     gsl_multifit_nlinear_parameters options = gsl_multifit_nlinear_default_parameters();
     gsl_multifit_nlinear_fdf problem = {.f = solve_f, .df = solve_df, .n = n, .p = p, .params = f};
-    gsl_multifit_nlinear_workspace *w = gsl_multifit_nlinear_alloc(gsl_multifit_nlinear_trust, &options, n, p);
+    gsl_multifit_nlinear_workspace *w =
+        gsl_multifit_nlinear_alloc(gsl_multifit_nlinear_trust, &options, n, p);
     gsl_vector *z = gsl_vector_calloc(p);
     gsl_matrix *covariance = gsl_matrix_alloc(p, p);
     double u[PW_MOST_FITTED], delay, size;
@@ -237,7 +252,8 @@ static pw_status solve_all(fitting *f, const double *singular)
     do {
         int before = fit->found;
         status = solve(f, &fit->scatter);
-        while (!status && fit->found > 1 && fit->scatter > SAYS_NOTHING * singular[fit->found - 1]) fit->found--;
+        while (!status && fit->found > 1 && fit->scatter > SAYS_NOTHING * singular[fit->found - 1])
+            fit->found--;
         if (fit->found == before) break;
     } while (!status);
     return status;
@@ -267,7 +283,8 @@ static void take_data(const pw_points *points, pw_arena *arena, fitting *f, doub
     }
 }
 
-static pw_status fit_data(fitting *f, pw_messages *messages, const double *hz, const pw_results *results, pw_arena *arena)
+static pw_status fit_data(fitting *f, pw_messages *messages, const double *hz,
+                          const pw_results *results, pw_arena *arena)
 {
     pw_fit *fit = f->fit;
     double singular[PW_MOST_FITTED], u[PW_MOST_FITTED] = {0};
@@ -277,24 +294,28 @@ static pw_status fit_data(fitting *f, pw_messages *messages, const double *hz, c
     if (!decompose(f, singular) || !residuals_at(f, u, 0, residual)) return PW_FAILED;
     take_fit_errors(f, residual);
     fit->before_db = fit->after_db;
-    while (fit->found < fit->count && singular[fit->found] > NO_DIFFERENCE * singular[0]) fit->found++;
+    while (fit->found < fit->count && singular[fit->found] > NO_DIFFERENCE * singular[0])
+        fit->found++;
     if (!fit->found || f->residuals <= fit->found + f->delay) {
-        fprintf(stderr, "polewright: --calibrate: %d points are too few to find %d values; expected more of them\n", f->rows,
-                fit->found);
+        fprintf(stderr,
+                "polewright: --calibrate: %d points are too few to find %d values; expected more "
+                "of them\n",
+                f->rows, fit->found);
         return PW_WRONG;
     }
     return solve_all(f, singular);
 }
 
-pw_status pw_fit_run(const pw_results *results, const pw_points *points, bool delay, pw_arena *arena, pw_fit *out,
-                     pw_messages *messages)
+pw_status pw_fit_run(const pw_results *results, const pw_points *points, bool delay,
+                     pw_arena *arena, pw_fit *out, pw_messages *messages)
 {
     fitting f = {.fit = out, .delay = delay, .rate = results->stage->rate_hz};
     memset(out, 0, sizeof *out);
     double *hz = pw_arena_take(arena, (size_t)(points->count + 1) * sizeof *hz);
     take_data(points, arena, &f, hz);
     if (f.rows < 2) {
-        fputs("polewright: --calibrate: fewer than two frequencies say anything; expected more\n", stderr);
+        fputs("polewright: --calibrate: fewer than two frequencies say anything; expected more\n",
+              stderr);
         return PW_WRONG;
     }
     f.delay = delay && f.phases;

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The fitted values into the text of the stage file: each scalar is replaced where it stands; every other
- * byte, comments and layout too, stays. */
+/* The fitted values into the text of the stage file: each scalar is replaced where it stands; every
+ * other byte, comments and layout too, stays. */
 #include <ctype.h>
 #include <math.h>
 #include <stdio.h>
@@ -34,7 +34,8 @@ static size_t byte_of(const pw_text *text, pw_where at)
     return (size_t)(p - pw_text_string(text));
 }
 
-/* The bytes that the scalar takes in the text; 0 where it is not plainly there (a block, an alias). */
+/* The bytes that the scalar takes in the text; 0 where it is not plainly there (a block, an
+ * alias). */
 static size_t length_of(const pw_text *text, size_t at, const pw_tree *node)
 {
     const char *p = pw_text_string(text) + at;
@@ -48,8 +49,11 @@ static pw_status replace(editing *e, const pw_tree *node, const char *with, cons
 {
     size_t at = byte_of(e->text, node->at), length = length_of(e->text, at, node);
     if (!length) {
-        fprintf(stderr, "polewright: --calibrate: the value of %s at line %d is not written out in one place; expected a plain "
-                        "value there\n", name, node->at.line);
+        fprintf(stderr,
+                "polewright: --calibrate: the value of %s at line %d is not written out in one "
+                "place; expected a plain "
+                "value there\n",
+                name, node->at.line);
         return PW_WRONG;
     }
     e->list[e->count++] = (change){at, length, with};
@@ -98,7 +102,8 @@ static const char *scaled_code(editing *e, const char *text, const char *letter,
 /* The quantity times ratio, in the unit that it has; in dB as many more. */
 static const char *scaled(editing *e, const char *text, double ratio)
 {
-    const char *letter = code_letter(text), *begin = pw_skip_blanks(text), *end = pw_decimal_end(begin);
+    const char *letter = code_letter(text), *begin = pw_skip_blanks(text),
+               *end = pw_decimal_end(begin);
     if (letter) return scaled_code(e, text, letter, ratio);
     double value = strtod(begin, NULL);
     if (strstr(end, "dB")) value += 20 * log10(ratio);
@@ -109,14 +114,17 @@ static const char *scaled(editing *e, const char *text, double ratio)
 static pw_status scale_node(editing *e, const pw_tree *node, double ratio, const char *name)
 {
     if (node && node->kind == PW_TREE_MAP) node = pw_tree_find(node, "value");
-    if (node && node->kind == PW_TREE_SCALAR) return replace(e, node, scaled(e, node->text, ratio), name);
-    fprintf(stderr, "polewright: --calibrate: the value of %s is not found in the stage file\n", name);
+    if (node && node->kind == PW_TREE_SCALAR)
+        return replace(e, node, scaled(e, node->text, ratio), name);
+    fprintf(stderr, "polewright: --calibrate: the value of %s is not found in the stage file\n",
+            name);
     return PW_FAILED;
 }
 
 /* ---- Roots ---- */
 
-static pw_status put_number(editing *e, const pw_tree *map, const char *key, double value, const char *name)
+static pw_status put_number(editing *e, const pw_tree *map, const char *key, double value,
+                            const char *name)
 {
     const pw_tree *node = pw_tree_find(map, key);
     return node ? replace(e, node, pw_arena_print(&e->arena, "%.9g", value), name) : PW_OK;
@@ -129,7 +137,8 @@ static pw_status edit_root(editing *e, const pw_tree *node, const pw_fitted *p)
     bool q = p->kind == PW_FITTED_Q;
     if (node && node->kind == PW_TREE_MAP && pw_tree_find(node, "frequency")) {
         const char *key = !q ? "frequency" : pw_tree_find(node, "q") ? "q" : "damping";
-        return scale_node(e, pw_tree_find(node, key), q && key[0] == 'd' ? 1 / ratio : ratio, p->name);
+        return scale_node(e, pw_tree_find(node, key), q && key[0] == 'd' ? 1 / ratio : ratio,
+                          p->name);
     }
     if (q) return PW_OK;         /* written with its frequency */
     if (node && node->kind == PW_TREE_MAP) {
@@ -137,9 +146,13 @@ static pw_status edit_root(editing *e, const pw_tree *node, const pw_fitted *p)
         return status ? status : put_number(e, node, "imag", cimag(r->s), p->name);
     }
     if (node && !r->double_real && cimag(r->s) != 0)
-        return replace(e, node, pw_arena_print(&e->arena, "%.9g \u00b1 %.9gj", creal(r->s), cimag(r->s)), p->name);
+        return replace(e, node,
+                       pw_arena_print(&e->arena, "%.9g \u00b1 %.9gj", creal(r->s), cimag(r->s)),
+                       p->name);
     if (r->double_real) {
-        fprintf(stderr, "polewright: --calibrate: %s: the pair has become two real roots; expected it as {frequency: .., q: ..}\n",
+        fprintf(stderr,
+                "polewright: --calibrate: %s: the pair has become two real roots; expected it as "
+                "{frequency: .., q: ..}\n",
                 p->name);
         return PW_WRONG;
     }
@@ -174,7 +187,8 @@ static pw_status edit_all(editing *e, const pw_tree *root, const pw_fit *fit)
         const pw_fitted *p = &fit->parameter[i];
         const pw_tree *node = walk(root, p->path);
         if (p->held > 0.999999) continue;
-        status = p->root ? edit_root(e, node, p) : scale_node(e, node, p->value / p->nominal, p->name);
+        status =
+            p->root ? edit_root(e, node, p) : scale_node(e, node, p->value / p->nominal, p->name);
     }
     return status;
 }
@@ -203,7 +217,9 @@ pw_status pw_fit_edit(const char *stage_path, const pw_fit *fit, pw_text *out)
     editing *e = pw_take(sizeof *e);
     *e = (editing){.text = &text};
     pw_status status = pw_file_read(stage_path, PW_TREE_MOST_BYTES, &text);
-    if (!status) status = pw_tree_parse(pw_text_string(&text), text.size, (pw_where){0, 0}, &e->arena, &root, &messages);
+    if (!status)
+        status = pw_tree_parse(pw_text_string(&text), text.size, (pw_where){0, 0}, &e->arena, &root,
+                               &messages);
     if (!status) status = edit_all(e, root, fit);
     if (!status) apply(e, out);
     pw_messages_free(&messages);

@@ -49,7 +49,9 @@ static pw_flat watch_result(const struct pw_flat_watch *w)
 
 static pw_values values_of(const pw_flow *flow)
 {
-    return flow->record.wav ? PW_VALUES_FULL_SCALE : flow->samples ? PW_VALUES_SAMPLES : PW_VALUES_VOLTS;
+    return flow->record.wav ? PW_VALUES_FULL_SCALE
+           : flow->samples  ? PW_VALUES_SAMPLES
+                            : PW_VALUES_VOLTS;
 }
 
 static pw_status begin_pass(pw_flow *flow)
@@ -78,9 +80,11 @@ static void end_pass(pw_flow *flow)
     flow->open = false;
 }
 
-pw_status pw_flow_open(const pw_results *results, const char *path, bool samples, bool quiet, pw_flow *out)
+pw_status pw_flow_open(const pw_results *results, const char *path, bool samples, bool quiet,
+                       pw_flow *out)
 {
-    *out = (pw_flow){.results = results, .path = path, .samples = samples, .quiet = quiet, .kept = true};
+    *out = (pw_flow){
+        .results = results, .path = path, .samples = samples, .quiet = quiet, .kept = true};
     out->raw = pw_take(2 * PW_FRAMES * sizeof *out->raw);
     out->played = pw_take(PW_FRAMES * sizeof *out->played);
     out->block = pw_take(PW_FRAMES * sizeof *out->block);
@@ -90,7 +94,8 @@ pw_status pw_flow_open(const pw_results *results, const char *path, bool samples
         watch_begin(&out->watch[i]);
     }
     pw_status status = begin_pass(out);
-    pw_progress_begin(out->progress, "replaying", out->record.size, out->record.wav ? "samples" : "B", quiet);
+    pw_progress_begin(out->progress, "replaying", out->record.size,
+                      out->record.wav ? "samples" : "B", quiet);
     return status;
 }
 
@@ -99,7 +104,8 @@ pw_status pw_flow_rewind(pw_flow *flow)
     flow->at = 0;
     if (flow->open) end_pass(flow);
     if (flow->kept) return PW_OK;
-    pw_progress_begin(flow->progress, "comparing", flow->record.size, flow->record.wav ? "samples" : "B", flow->quiet);
+    pw_progress_begin(flow->progress, "comparing", flow->record.size,
+                      flow->record.wav ? "samples" : "B", flow->quiet);
     return begin_pass(flow);
 }
 
@@ -138,7 +144,8 @@ static void fill(pw_flow *flow, size_t got)
         }
         f->input = to_volts(flow->raw[2 * i], &flow->channels.in, &stage->input);
         f->output = to_volts(flow->raw[2 * i + 1], &flow->channels.out, &stage->output);
-        f->twin = within_rails(flow, to_volts(flow->played[i], &flow->channels.out, &stage->output));
+        f->twin =
+            within_rails(flow, to_volts(flow->played[i], &flow->channels.out, &stage->output));
     }
 }
 

@@ -27,15 +27,17 @@ typedef struct pw_flow {
     int64_t at;                  /* frames of this pass so far */
     /* known after the first pass: */
     int64_t frames;
-    bool at_rest;                /* the first eight inputs are alike: both sides are taken to be settled */
+    bool at_rest; /* the first eight inputs are alike: both sides are taken to be settled */
     pw_flat flat_input, flat_output;
-    uint64_t clipped, outside, railed;   /* twin: nodes that clipped, inputs clamped, outputs at a rail */
+    uint64_t clipped, outside,
+        railed; /* twin: nodes that clipped, inputs clamped, outputs at a rail */
     struct pw_flat_watch *watch;
     struct pw_progress *progress;
 } pw_flow;
 
 /* results and path are borrowed. PW_WRONG with a line on standard error. */
-PW_CHECKED pw_status pw_flow_open(const pw_results *results, const char *path, bool samples, bool quiet, pw_flow *out);
+PW_CHECKED pw_status pw_flow_open(const pw_results *results, const char *path, bool samples,
+                                  bool quiet, pw_flow *out);
 /* From the beginning again. */
 PW_CHECKED pw_status pw_flow_rewind(pw_flow *flow);
 /* The next frames; *got 0 at the end. *frames belongs to the flow until the next call. */

@@ -33,8 +33,10 @@ static bool ends_in_wav(const char *path)
 
 static void put_names(const playing *p, const pw_results *results)
 {
-    fprintf(p->sink.file, "# %s by polewright twin --play, at %.17g Hz\n", results->stage->name, results->stage->rate_hz);
-    for (int i = 0; i < p->record.columns; i++) fprintf(p->sink.file, "%s%s", i ? "," : "", p->record.name[i]);
+    fprintf(p->sink.file, "# %s by polewright twin --play, at %.17g Hz\n", results->stage->name,
+            results->stage->rate_hz);
+    for (int i = 0; i < p->record.columns; i++)
+        fprintf(p->sink.file, "%s%s", i ? "," : "", p->record.name[i]);
     for (int i = 0; i < p->record.columns; i++) {
         const char *rest = p->record.name[i] + strlen("input");
         fprintf(p->sink.file, ",output%s", rest);
@@ -74,7 +76,8 @@ static int sound_format(pw_sample sample)
 /* RF64 becomes plain WAV when the file closes below 4 GiB. */
 static pw_status open_sound(playing *p, const pw_results *results)
 {
-    SF_INFO info = {.samplerate = (int)lrint(results->stage->rate_hz), .channels = p->record.columns,
+    SF_INFO info = {.samplerate = (int)lrint(results->stage->rate_hz),
+                    .channels = p->record.columns,
                     .format = sound_format(results->realisation.sample)};
     p->sound = sf_open(p->sink.beside, SFM_WRITE, &info);
     if (!p->sound) {
@@ -116,9 +119,12 @@ static pw_status check_samples(const playing *p, size_t frames)
     if (!s->fixed || s->unit != 1) return PW_OK;
     for (size_t i = 0; i < frames * (size_t)p->record.columns; i++)
         if (p->in[i] != floor(p->in[i]))
-            return pw_record_wrong(p->record.path, 0, "holds %.9g (frame %" PRId64 "); with --samples the format asks for "
-                                   "whole numbers from %.0f to %.0f", p->in[i],
-                                   p->record.frames - (int64_t)frames + (int64_t)i / p->record.columns, s->low, s->high);
+            return pw_record_wrong(
+                p->record.path, 0,
+                "holds %.9g (frame %" PRId64 "); with --samples the format asks for "
+                "whole numbers from %.0f to %.0f",
+                p->in[i], p->record.frames - (int64_t)frames + (int64_t)i / p->record.columns,
+                s->low, s->high);
     return PW_OK;
 }
 
@@ -127,7 +133,8 @@ static pw_status all_frames(playing *p, const pw_results *results, pw_play *play
     pw_progress progress;
     pw_status status;
     size_t got;
-    pw_progress_begin(&progress, "replaying", p->record.size, p->record.wav ? "samples" : "B", play->quiet);
+    pw_progress_begin(&progress, "replaying", p->record.size, p->record.wav ? "samples" : "B",
+                      play->quiet);
     for (;;) {
         status = pw_record_read(&p->record, p->in, PW_FRAMES, &got);
         if (!status && got) status = check_samples(p, got);
@@ -148,7 +155,8 @@ static pw_status write_all(playing *p, const pw_results *results, pw_play *play)
     bool wav = ends_in_wav(play->out);
     pw_values values = p->record.wav || wav ? PW_VALUES_FULL_SCALE
                      : play->samples ? PW_VALUES_SAMPLES : PW_VALUES_VOLTS;
-    pw_channels_make(&results->realisation, results->stage, p->record.columns, values, &p->channels);
+    pw_channels_make(&results->realisation, results->stage, p->record.columns, values,
+                     &p->channels);
     /* From CSV to WAV the inputs are volts or samples; only the outputs are of full scale. */
     if (!p->record.wav)
         p->channels.in = pw_scale_of(results->realisation.sample, &results->stage->input,
@@ -176,7 +184,8 @@ static pw_status write_all(playing *p, const pw_results *results, pw_play *play)
 pw_status pw_play_run(const pw_results *results, pw_play *play)
 {
     playing p = {0};
-    pw_status status = pw_record_open(play->in, PW_RECORD_INPUTS, results->stage->rate_hz, &p.record);
+    pw_status status =
+        pw_record_open(play->in, PW_RECORD_INPUTS, results->stage->rate_hz, &p.record);
     if (!status) status = write_all(&p, results, play);
     free(p.in);
     free(p.out);
@@ -206,8 +215,12 @@ void pw_play_say(const pw_results *results, const pw_play *play, bool json, pw_t
         say_json(results, play, out);
         return;
     }
-    pw_text_print(out, "%s of %s through %s, bit for bit: %s\n", pw_samples(frames, (double)play->frames, results->stage->rate_hz),
-                  pw_count(channels, play->channels, "channel"), pw_sample_word(results->realisation.sample), play->out);
+    pw_text_print(out, "%s of %s through %s, bit for bit: %s\n",
+                  pw_samples(frames, (double)play->frames, results->stage->rate_hz),
+                  pw_count(channels, play->channels, "channel"),
+                  pw_sample_word(results->realisation.sample), play->out);
     if (play->clipped) pw_text_print(out, "nodes clipped %" PRIu64 " times\n", play->clipped);
-    if (play->outside) pw_text_print(out, "%" PRIu64 " inputs lay beyond full scale and were clamped\n", play->outside);
+    if (play->outside)
+        pw_text_print(out, "%" PRIu64 " inputs lay beyond full scale and were clamped\n",
+                      play->outside);
 }

@@ -68,12 +68,14 @@ static void judge_point(pw_points *points, pw_point *p)
     p->inside = within(p->db, p->low_db, p->high_db, p->band_db);
     if (points->phases && !isnan(p->deg)) {
         double middle = (isfinite(p->low_deg) ? p->low_deg + p->high_deg : 2 * p->analog_deg) / 2;
-        p->inside = p->inside && within(turned_to(p->deg, middle), p->low_deg, p->high_deg, p->band_deg);
+        p->inside =
+            p->inside && within(turned_to(p->deg, middle), p->low_deg, p->high_deg, p->band_deg);
     }
     points->inside += p->inside;
 }
 
-pw_status pw_points_judge(const pw_results *results, bool quiet, double share, pw_points *points, pw_messages *messages)
+pw_status pw_points_judge(const pw_results *results, bool quiet, double share, pw_points *points,
+                          pw_messages *messages)
 {
     pw_spread *spread = NULL;
     const pw_spread_options options = {.quiet = quiet};
@@ -83,7 +85,8 @@ pw_status pw_points_judge(const pw_results *results, bool quiet, double share, p
         hz[i] = p->hz;
         p->low_db = p->high_db = p->low_deg = p->high_deg = NAN;
     }
-    pw_status status = pw_spread_compute_at(results->stage, &results->analog, hz, points->count, &options, &spread, messages);
+    pw_status status = pw_spread_compute_at(results->stage, &results->analog, hz, points->count,
+                                            &options, &spread, messages);
     free(hz);
     if (status) return status;
     if (spread) allow_spread(spread, points);
@@ -109,16 +112,22 @@ static int by_hz(const void *left, const void *right)
     return l->hz < r->hz ? -1 : l->hz > r->hz;
 }
 
-static pw_status take_point(const pw_record *record, const double *v, int64_t n, pw_points *out, size_t *room)
+static pw_status take_point(const pw_record *record, const double *v, int64_t n, pw_points *out,
+                            size_t *room)
 {
     if (!(v[0] > 0))
-        return pw_record_wrong(record->path, 0, "point %lld is at %.9g Hz; expected frequencies above 0", (long long)n + 1, v[0]);
+        return pw_record_wrong(record->path, 0,
+                               "point %lld is at %.9g Hz; expected frequencies above 0",
+                               (long long)n + 1, v[0]);
     if (n == 1000000) return pw_record_wrong(record->path, 0, "has more than a million points");
     if ((size_t)n == *room) {
         *room = *room ? 2 * *room : 256;
         out->list = pw_retake(out->list, *room * sizeof *out->list);
     }
-    out->list[n] = (pw_point){.hz = v[0], .db = v[1], .deg = record->columns > 2 ? v[2] : NAN, .coherence = NAN,
+    out->list[n] = (pw_point){.hz = v[0],
+                              .db = v[1],
+                              .deg = record->columns > 2 ? v[2] : NAN,
+                              .coherence = NAN,
                               .excited = true};
     out->count++;
     return PW_OK;
@@ -132,15 +141,16 @@ static pw_status read_points(pw_record *record, pw_points *out)
     do {
         status = pw_record_read(record, values, 64, &got);
         for (size_t i = 0; i < got && !status; i++)
-            status = take_point(record, values + i * (size_t)record->columns, out->count, out, &room);
+            status =
+                take_point(record, values + i * (size_t)record->columns, out->count, out, &room);
     } while (got && !status);
     if (!status && !out->count)
         status = pw_record_wrong(record->path, 0, "holds no points; expected lines of hz,db[,deg]");
     return status;
 }
 
-pw_status pw_compare_response(const pw_results *results, const char *path, bool quiet, pw_arena *arena, pw_points *out,
-                              pw_messages *messages)
+pw_status pw_compare_response(const pw_results *results, const char *path, bool quiet,
+                              pw_arena *arena, pw_points *out, pw_messages *messages)
 {
     pw_record record;
     pw_points points = {.worst = -1};

@@ -47,7 +47,8 @@ static bool is_wav(const char *path, double *size, pw_status *status)
     }
     *size = (double)info.st_size;
     bool wav = S_ISREG(info.st_mode) && fread(head, 1, sizeof head, f) == sizeof head
-               && (!memcmp(head, "RIFF", 4) || !memcmp(head, "RF64", 4)) && !memcmp(head + 8, "WAVE", 4);
+               && (!memcmp(head, "RIFF", 4) || !memcmp(head, "RF64", 4))
+               && !memcmp(head + 8, "WAVE", 4);
     fclose(f);
     return wav;
 }
@@ -66,7 +67,8 @@ pw_status pw_record_open(const char *path, pw_record_kind kind, double rate_hz, 
 pw_status pw_record_read(pw_record *record, double *values, size_t most, size_t *got)
 {
     *got = 0;
-    return record->wav ? pw_wav_read(record, values, most, got) : pw_csv_read(record, values, most, got);
+    return record->wav ? pw_wav_read(record, values, most, got)
+                       : pw_csv_read(record, values, most, got);
 }
 
 void pw_record_close(pw_record *record)

@@ -18,9 +18,9 @@
 #define PW_RECORD_LINE (1 << 16) /* bytes of the longest line of text */
 
 typedef enum pw_record_kind {
-    PW_RECORD_INPUTS,            /* every column whose name begins with "input" (WAV: every channel) */
-    PW_RECORD_PAIR,              /* "input", "output" (WAV: two channels in this order) */
-    PW_RECORD_RESPONSE           /* "hz", "db" and, where it is there, "deg"; no WAV */
+    PW_RECORD_INPUTS, /* every column whose name begins with "input" (WAV: every channel) */
+    PW_RECORD_PAIR, /* "input", "output" (WAV: two channels in this order) */
+    PW_RECORD_RESPONSE /* "hz", "db" and, where it is there, "deg"; no WAV */
 } pw_record_kind;
 
 typedef struct pw_record {
@@ -38,7 +38,8 @@ typedef struct pw_record {
 } pw_record;
 
 /* PW_WRONG with a line on standard error, FILE[:LINE]: what is wrong; what was expected. */
-PW_CHECKED pw_status pw_record_open(const char *path, pw_record_kind kind, double rate_hz, pw_record *out);
+PW_CHECKED pw_status pw_record_open(const char *path, pw_record_kind kind, double rate_hz,
+                                    pw_record *out);
 
 /* Up to most frames into values[frame * columns + column]; *got 0 at the end. */
 PW_CHECKED pw_status pw_record_read(pw_record *record, double *values, size_t most, size_t *got);
@@ -46,7 +47,8 @@ PW_CHECKED pw_status pw_record_read(pw_record *record, double *values, size_t mo
 void pw_record_close(pw_record *record);
 
 /* "PATH: text" or "PATH:LINE: text" on standard error; PW_WRONG. */
-PW_CHECKED pw_status pw_record_wrong(const char *path, int64_t line, const char *format, ...) PW_PRINTF(3, 4);
+PW_CHECKED pw_status pw_record_wrong(const char *path, int64_t line, const char *format, ...)
+    PW_PRINTF(3, 4);
 
 /* The decimal number at *at (blanks before it allowed), exact as strtod in the C locale; *at moves
  * behind it, or stays where there is none. */

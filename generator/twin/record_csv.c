@@ -26,15 +26,17 @@ struct pw_csv {
 
 /* ---- Lines ---- */
 
-/* One line without its end into csv->text; its length, or -1 at the end of the file; *what where it is
- * no line of text. */
+/* One line without its end into csv->text; its length, or -1 at the end of the file; *what where it
+ * is no line of text. */
 static long take_line(struct pw_csv *csv, const char **what)
 {
     long n = 0;
     int c;
     while ((c = getc_unlocked(csv->file)) != EOF && c != '\n') {
-        if (c == 0) *what = "holds bytes that are no text; expected lines of numbers (or a WAV file)";
-        if (n == PW_RECORD_LINE) *what = "is longer than 65536 bytes; expected lines of numbers (or a WAV file)";
+        if (c == 0)
+            *what = "holds bytes that are no text; expected lines of numbers (or a WAV file)";
+        if (n == PW_RECORD_LINE)
+            *what = "is longer than 65536 bytes; expected lines of numbers (or a WAV file)";
         if (*what) return n;
         csv->text[n++] = (char)c;
     }
@@ -74,7 +76,8 @@ static char *next_line(pw_record *record, pw_status *status)
 static char *trimmed(char *text)
 {
     while (*text == ' ' || *text == '"') text++;
-    for (size_t n = strlen(text); n && (text[n - 1] == ' ' || text[n - 1] == '"'); n--) text[n - 1] = 0;
+    for (size_t n = strlen(text); n && (text[n - 1] == ' ' || text[n - 1] == '"'); n--)
+        text[n - 1] = 0;
     for (char *p = text; *p; p++) *p = (char)tolower((unsigned char)*p);
     return text;
 }
@@ -86,7 +89,8 @@ static pw_status name_fields(pw_record *record, char *line)
     const char ends[] = {csv->delimiter, 0};
     for (char *name; (name = strsep(&line, ends));) {
         if (csv->fields == PW_MAX_COLUMNS)
-            return pw_record_wrong(record->path, csv->line, "names more than %d columns", PW_MAX_COLUMNS);
+            return pw_record_wrong(record->path, csv->line, "names more than %d columns",
+                                   PW_MAX_COLUMNS);
         csv->field[csv->fields++] = pw_arena_copy(&record->arena, trimmed(name));
     }
     return PW_OK;
@@ -105,12 +109,15 @@ static pw_status missing(const pw_record *record, const char *name)
     const char *near = pw_nearest(name, csv->field, csv->fields), *first = csv->field[0], *end;
     strtod(first, (char **)&end);
     if (*first && !*end)
-        return pw_record_wrong(record->path, csv->line, "the first line holds numbers; expected the names of the "
-                               "columns, one of them '%s'", name);
-    return pw_record_wrong(record->path, csv->line, "no column is named '%s'%s%s%s; expected %s", name,
-                           near ? " ('" : "", near ? near : "", near ? "' is near)" : "",
+        return pw_record_wrong(record->path, csv->line,
+                               "the first line holds numbers; expected the names of the "
+                               "columns, one of them '%s'",
+                               name);
+    return pw_record_wrong(record->path, csv->line, "no column is named '%s'%s%s%s; expected %s",
+                           name, near ? " ('" : "", near ? near : "", near ? "' is near)" : "",
                            record->kind == PW_RECORD_RESPONSE ? "hz,db[,deg]"
-                           : record->kind == PW_RECORD_PAIR ? "input,output" : "input, or several that begin so");
+                           : record->kind == PW_RECORD_PAIR   ? "input,output"
+                                                              : "input, or several that begin so");
 }
 
 static void deliver(pw_record *record, int field)
@@ -137,7 +144,8 @@ static pw_status choose(pw_record *record)
         csv->target[i] = IGNORED;
         for (int k = 0; k < i; k++)
             if (!strcmp(csv->field[i], csv->field[k]))
-                return pw_record_wrong(record->path, csv->line, "two columns are named '%s'; expected each once",
+                return pw_record_wrong(record->path, csv->line,
+                                       "two columns are named '%s'; expected each once",
                                        csv->field[i]);
     }
     int time = find_field(csv, "time");
@@ -163,7 +171,9 @@ pw_status pw_csv_open(pw_record *record)
     }
     char *line = next_line(record, &status);
     if (status) return status;
-    if (!line) return pw_record_wrong(record->path, 0, "is empty; expected a line that names the columns, then numbers");
+    if (!line)
+        return pw_record_wrong(record->path, 0,
+                               "is empty; expected a line that names the columns, then numbers");
     status = name_fields(record, line);
     return status ? status : choose(record);
 }
@@ -172,7 +182,8 @@ pw_status pw_csv_open(pw_record *record)
 
 double pw_decimal(const char **at)
 {
-    static const double power[] = {1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15,
+    static const double power[] = {1e0,  1e1,  1e2,  1e3,  1e4,  1e5,  1e6,  1e7,
+                                   1e8,  1e9,  1e10, 1e11, 1e12, 1e13, 1e14, 1e15,
                                    1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22};
     const char *p = *at;
     while (*p == ' ' || *p == '\t') p++;
@@ -187,7 +198,8 @@ double pw_decimal(const char **at)
         for (p++; isdigit((unsigned char)*p); p++, places++, scale--)
             if (digits || *p != '0') digits = digits * 10 + (uint64_t)(*p - '0'), count++;
     /* Clinger, "How to read floating point numbers accurately" (1990): both exact, one rounding. */
-    if (places && count <= 15 && scale >= -22 && *p != 'e' && *p != 'E' && !isalpha((unsigned char)*p)) {
+    if (places && count <= 15 && scale >= -22 && *p != 'e' && *p != 'E'
+        && !isalpha((unsigned char)*p)) {
         *at = p;
         double value = (double)digits / power[-scale];
         return minus ? -value : value;
@@ -204,9 +216,12 @@ static pw_status not_a_number(const pw_record *record, int field, const char *te
     int n = (int)strcspn(text, (const char[]){csv->delimiter, 0});
     const char *comma = csv->delimiter == ',' ? NULL : memchr(text, ',', (size_t)n);
     while (n && *text == ' ') text++, n--;
-    if (!n) return pw_record_wrong(record->path, csv->line, "the %s is missing; expected a number", csv->field[field]);
-    return pw_record_wrong(record->path, csv->line, "the %s '%.*s' %s; expected %s", csv->field[field], n > 40 ? 40 : n,
-                           text, comma ? "has a decimal comma" : "is no finite number",
+    if (!n)
+        return pw_record_wrong(record->path, csv->line, "the %s is missing; expected a number",
+                               csv->field[field]);
+    return pw_record_wrong(record->path, csv->line, "the %s '%.*s' %s; expected %s",
+                           csv->field[field], n > 40 ? 40 : n, text,
+                           comma ? "has a decimal comma" : "is no finite number",
                            comma ? "a decimal point" : "a number such as 0.125");
 }
 
@@ -214,8 +229,10 @@ static pw_status ragged(const pw_record *record, int fields, bool more)
 {
     const struct pw_csv *csv = record->csv;
     bool commas = more && csv->delimiter == ',';
-    return pw_record_wrong(record->path, csv->line, "has %s%d field%s where %d columns are named; expected one number "
-                           "for each%s", more ? "more than " : "", fields, fields == 1 ? "" : "s", csv->fields,
+    return pw_record_wrong(record->path, csv->line,
+                           "has %s%d field%s where %d columns are named; expected one number "
+                           "for each%s",
+                           more ? "more than " : "", fields, fields == 1 ? "" : "s", csv->fields,
                            commas ? " (with a decimal point: a comma divides columns)" : "");
 }
 
@@ -225,12 +242,15 @@ static pw_status check_time(pw_record *record, double time)
     double step = 1 / record->rate_hz;
     if (csv->times++ == 0) csv->first_time = time;
     else {
-        double expected = csv->first_time + (double)(csv->times - 1) * step, seen = time - csv->last_time;
-        /* Printed times are rounded: to 1 % of a step between neighbours, to half a step over all. */
+        double expected = csv->first_time + (double)(csv->times - 1) * step,
+               seen = time - csv->last_time;
+        /* Printed times are rounded: to a quarter of a step, and half of one over the whole. */
         if (fabs(seen - step) > 0.25 * step || fabs(time - expected) > 0.5 * step)
-            return pw_record_wrong(record->path, csv->line, "the time steps by %.6g s (by %.9g s on average), the stage's "
-                                   "rate of %.9g Hz by %.9g s; expected a record at the stage's rate, evenly spaced", seen,
-                                   (time - csv->first_time) / (double)(csv->times - 1), record->rate_hz, step);
+            return pw_record_wrong(
+                record->path, csv->line,
+                "the time steps by %.6g s (by %.9g s on average), the stage's "
+                "rate of %.9g Hz by %.9g s; expected a record at the stage's rate, evenly spaced",
+                seen, (time - csv->first_time) / (double)(csv->times - 1), record->rate_hz, step);
     }
     csv->last_time = time;
     return PW_OK;
@@ -246,7 +266,8 @@ static pw_status read_frame(pw_record *record, const char *at, double *values)
         } else {
             double value = pw_decimal(&at);
             while (*at == ' ') at++;
-            if (at == text || (*at && *at != csv->delimiter) || !isfinite(value)) return not_a_number(record, i, text);
+            if (at == text || (*at && *at != csv->delimiter) || !isfinite(value))
+                return not_a_number(record, i, text);
             if (csv->target[i] >= 0) values[csv->target[i]] = value;
             else {
                 pw_status status = check_time(record, value);

@@ -16,7 +16,8 @@ pw_reach pw_replay_reach(void)
     reach = PW_REACH_SSE2;
     if (__builtin_cpu_supports("avx2")) reach = PW_REACH_AVX2;
     if (__builtin_cpu_supports("avx512f") && __builtin_cpu_supports("avx512vl")
-        && __builtin_cpu_supports("avx512dq") && __builtin_cpu_supports("avx512bw")) reach = PW_REACH_AVX512;
+        && __builtin_cpu_supports("avx512dq") && __builtin_cpu_supports("avx512bw"))
+        reach = PW_REACH_AVX512;
 #endif
     return reach < limit ? reach : limit;
 }
@@ -36,7 +37,8 @@ static int run_length(const pw_realisation *r, int k, bool fixed)
     int m = 0;
     for (; k + m < r->count && m < PW_LANES; m++) {
         const pw_words *w = &r->section[k + m];
-        if (fixed ? w->structure == PW_COUPLED : w->structure == PW_DIRECT_1 || w->order == 0) break;   /* a plain gain has no s1 + */
+        if (fixed ? w->structure == PW_COUPLED : w->structure == PW_DIRECT_1 || w->order == 0)
+            break; /* a plain gain has no s1 + */
     }
     return m;
 }
@@ -55,7 +57,8 @@ void pw_replay_words(pw_simulation *sim, const int32_t *in, int32_t *out, size_t
             if (m > 1) pw_lanes_words(sim, k, m, io, size);
             else {
                 for (size_t i = 0; i < size; i++)
-                    io[i] = pw_fixed_step(&r->section[k], &rules, sim->state[k], io[i], &sim->clipped, NULL);
+                    io[i] = pw_fixed_step(&r->section[k], &rules, sim->state[k], io[i],
+                                          &sim->clipped, NULL);
                 m = 1;
             }
         }

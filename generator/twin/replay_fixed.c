@@ -14,8 +14,14 @@
 
 INLINE WIDE __m512i all512(int64_t v) { return _mm512_set1_epi64(v); }
 INLINE WIDE __m512i down512(__m512i v) { return _mm512_alignr_epi64(v, v, 1); }
-INLINE WIDE __m512i pick512(__m512i mask, __m512i a, __m512i b) { return _mm512_ternarylogic_epi64(mask, a, b, 0xCA); }
-INLINE WIDE __m512i same512(__m512i a, __m512i b) { return _mm512_movm_epi64(_mm512_cmpeq_epi64_mask(a, b)); }
+INLINE WIDE __m512i pick512(__m512i mask, __m512i a, __m512i b)
+{
+    return _mm512_ternarylogic_epi64(mask, a, b, 0xCA);
+}
+INLINE WIDE __m512i same512(__m512i a, __m512i b)
+{
+    return _mm512_movm_epi64(_mm512_cmpeq_epi64_mask(a, b));
+}
 INLINE WIDE __m512i extend512(__m512i v, int spare)
 {
     __m128i by = _mm_cvtsi32_si128(spare);
@@ -75,11 +81,18 @@ typedef struct pair { __m256i a, b; } pair;
 INLINE NARROW __m256i right256(__m256i v, __m256i by)
 {
     const __m256i sign = _mm256_set1_epi64x(INT64_MIN);
-    return _mm256_sub_epi64(_mm256_srlv_epi64(_mm256_xor_si256(v, sign), by), _mm256_srlv_epi64(sign, by));
+    return _mm256_sub_epi64(_mm256_srlv_epi64(_mm256_xor_si256(v, sign), by),
+                            _mm256_srlv_epi64(sign, by));
 }
 
-INLINE NARROW __m256i least256(__m256i v, __m256i w) { return _mm256_blendv_epi8(v, w, _mm256_cmpgt_epi64(v, w)); }
-INLINE NARROW __m256i most256(__m256i v, __m256i w) { return _mm256_blendv_epi8(w, v, _mm256_cmpgt_epi64(v, w)); }
+INLINE NARROW __m256i least256(__m256i v, __m256i w)
+{
+    return _mm256_blendv_epi8(v, w, _mm256_cmpgt_epi64(v, w));
+}
+INLINE NARROW __m256i most256(__m256i v, __m256i w)
+{
+    return _mm256_blendv_epi8(w, v, _mm256_cmpgt_epi64(v, w));
+}
 
 EACH(add2, _mm256_add_epi64)
 EACH(sub2, _mm256_sub_epi64)
@@ -94,7 +107,8 @@ EACH(same2, _mm256_cmpeq_epi64)
 INLINE NARROW pair all2(int64_t v) { return (pair){_mm256_set1_epi64x(v), _mm256_set1_epi64x(v)}; }
 INLINE NARROW pair get2(const int64_t *p)
 {
-    return (pair){_mm256_loadu_si256((const __m256i *)p), _mm256_loadu_si256((const __m256i *)(p + 4))};
+    return (pair){_mm256_loadu_si256((const __m256i *)p),
+                  _mm256_loadu_si256((const __m256i *)(p + 4))};
 }
 INLINE NARROW void put2(int64_t *p, pair v)
 {

@@ -9,8 +9,8 @@ typedef enum pw_reach { PW_REACH_PLAIN, PW_REACH_SSE2, PW_REACH_AVX2, PW_REACH_A
 
 pw_reach pw_replay_reach(void);
 
-/* m sections from first on, m <= PW_LANES, over one block in place. All are transposed-2 (floats) or
- * direct forms (fixed). */
+/* m sections from first on, m <= PW_LANES, over one block in place. All are transposed-2 (floats)
+ * or direct forms (fixed). */
 void pw_lanes_float32(pw_simulation *sim, int first, int m, float *io, size_t n);
 void pw_lanes_float64(pw_simulation *sim, int first, int m, double *io, size_t n);
 void pw_lanes_words(pw_simulation *sim, int first, int m, int32_t *io, size_t n);

@@ -1,13 +1,13 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Eight transposed-2 sections in lanes; included once for each format and instruction set, with
- * REAL (float, double), WHOLE (the integer of its size), SIGN (its sign bit), WIDTH (lanes of a vector of
- * the processor), NAME and TARGET set.
+ * REAL (float, double), WHOLE (the integer of its size), SIGN (its sign bit), WIDTH (lanes of a
+ * vector of the processor), NAME and TARGET set.
  *
  * Lane m-1-k holds section k, so that the last section stands in lane 0, from where a sample is
  * taken at no cost; moving every lane down by one carries outputs to the next section. At step t
- * lane m-1-k computes its sample t - 2 k: two samples behind the one before it, so that the way to the
- * next section is not the longest. First-order sections have b2 = a2 = 0; their s2 is held at
- * -0, since -0 + v = v for every v, signed zeros included.
+ * lane m-1-k computes its sample t - 2 k: two samples behind the one before it, so that the
+ * way to the next section is not the longest. First-order sections have b2 = a2 = 0; their s2 is
+ * held at -0, since -0 + v = v for every v, signed zeros included.
  * No include guard: it is a template. */
 
 #define PARTS (PW_LANES / WIDTH)
@@ -26,7 +26,8 @@ typedef struct NAME(row) { NAME(vector) part[PARTS]; } NAME(row);
 typedef struct NAME(bits) { NAME(mask) part[PARTS]; } NAME(bits);
 
 typedef struct NAME(lanes) {
-    REAL b0[PW_LANES], b1[PW_LANES], b2[PW_LANES], a1[PW_LANES], a2[PW_LANES], s1[PW_LANES], s2[PW_LANES];
+    REAL b0[PW_LANES], b1[PW_LANES], b2[PW_LANES], a1[PW_LANES], a2[PW_LANES];
+    REAL s1[PW_LANES], s2[PW_LANES];
     WHOLE keep[PW_LANES], sign[PW_LANES];        /* s2 = (s2 & keep) | sign */
     WHOLE entry[PW_LANES];                       /* all bits in the lane of the first section */
     bool full;                                   /* eight sections, all of second order */
@@ -82,17 +83,19 @@ static inline __attribute__((always_inline)) TARGET void NAME(get)(void *to, con
         next1.part[p] = (s2.part[p] + b1.part[p] * x_.part[p]) - a1.part[p] * y.part[p];           \
         next2.part[p] = b2.part[p] * x_.part[p] - a2.part[p] * y.part[p];                          \
         if (HOLD)                                                                                  \
-            next2.part[p] = (NAME(vector))(((NAME(mask))next2.part[p] & keep.part[p]) | sign.part[p]); \
+            next2.part[p] =                                                                        \
+                (NAME(vector))(((NAME(mask))next2.part[p] & keep.part[p]) | sign.part[p]);         \
     }
 
-/* One step of all lanes: y from x, and the states that follow. down takes lane i + 1 into lane i. */
+/* One step of all lanes: y from x, and the states that follow. down takes lane i + 1 to lane i. */
 #define LANE_STEP(INPUT)                                                                           \
     do {                                                                                           \
         REAL value_ = (INPUT);                                                                     \
         NAME(row) x_;                                                                              \
         EACH_PART {                                                                                \
             NAME(vector) in_ = value_ - (NAME(vector)){0};                                         \
-            NAME(vector) moved_ = __builtin_shuffle(older.part[p], older.part[(p + 1) % PARTS], down); \
+            NAME(vector) next_ = older.part[(p + 1) % PARTS];                                      \
+            NAME(vector) moved_ = __builtin_shuffle(older.part[p], next_, down);                   \
             x_.part[p] = CHOSEN(entry.part[p], in_, moved_);                                       \
         }                                                                                          \
         LANE_RESULT(true)                                                                          \
@@ -103,8 +106,10 @@ static inline __attribute__((always_inline)) TARGET void NAME(get)(void *to, con
     do {                                                                                           \
         NAME(vector) in_ = {(INPUT)};                                                              \
         NAME(row) x_;                                                                              \
-        EACH_PART                                                                                  \
-            x_.part[p] = __builtin_shuffle(older.part[p], p + 1 < PARTS ? older.part[p + 1] : in_, up); \
+        EACH_PART {                                                                                \
+            NAME(vector) next_ = p + 1 < PARTS ? older.part[(p + 1) % PARTS] : in_;                \
+            x_.part[p] = __builtin_shuffle(older.part[p], next_, up);                              \
+        }                                                                                          \
         LANE_RESULT(false)                                                                         \
     } while (0)
 
@@ -130,7 +135,8 @@ static TARGET void NAME(run)(pw_simulation *sim, int first, int m, REAL *io, siz
     NAME(mask) down;
     const NAME(mask) up = FOLLOWING;
     NAME(load)(sim, first, m, &l);
-    NAME(get)(&b0, l.b0), NAME(get)(&b1, l.b1), NAME(get)(&b2, l.b2), NAME(get)(&a1, l.a1), NAME(get)(&a2, l.a2);
+    NAME(get)(&b0, l.b0), NAME(get)(&b1, l.b1), NAME(get)(&b2, l.b2);
+    NAME(get)(&a1, l.a1), NAME(get)(&a2, l.a2);
     NAME(get)(&s1, l.s1), NAME(get)(&s2, l.s2);
     NAME(get)(&keep, l.keep), NAME(get)(&sign, l.sign), NAME(get)(&entry, l.entry);
     memcpy(&down, next_lane, sizeof down);

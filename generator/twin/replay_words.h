@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Eight direct-form sections in lanes of 64 bits; included once for each instruction set, with NAME,
- * TARGET, the vector type and its operations set.
+/* Eight direct-form sections in lanes of 64 bits; included once for each instruction set, with
+ * NAME, TARGET, the vector type and its operations set.
  *
  * As replay_lanes.h, but each lane is two samples behind the one before it, because an output takes
  * longer to become the next section's output than to become the same section's next one. Every
@@ -10,13 +10,16 @@
  * No include guard: it is a template. */
 
 typedef struct NAME(lanes) {
-    int64_t b0[PW_LANES], b1[PW_LANES], b2[PW_LANES], a1[PW_LANES], a2[PW_LANES], k1[PW_LANES], k2[PW_LANES];
+    int64_t b0[PW_LANES], b1[PW_LANES], b2[PW_LANES], a1[PW_LANES], a2[PW_LANES], k1[PW_LANES],
+        k2[PW_LANES];
     int64_t x1[PW_LANES], x2[PW_LANES], y1[PW_LANES], y2[PW_LANES], e1[PW_LANES], e2[PW_LANES];
-    int64_t right[PW_LANES], left[PW_LANES], near[PW_LANES];   /* of the alignment; near: half a unit */
+    int64_t right[PW_LANES], left[PW_LANES],
+        near[PW_LANES]; /* of the alignment; near: half a unit */
     int64_t fraction[PW_LANES], half[PW_LANES], shaped[PW_LANES];
 } NAME(lanes);
 
-static void NAME(load)(const pw_simulation *sim, int first, int m, const pw_word_rules *rules, NAME(lanes) *l)
+static void NAME(load)(const pw_simulation *sim, int first, int m, const pw_word_rules *rules,
+                       NAME(lanes) * l)
 {
     memset(l, 0, sizeof *l);
     for (int k = 0; k < m; k++) {
@@ -24,8 +27,10 @@ static void NAME(load)(const pw_simulation *sim, int first, int m, const pw_word
         const int64_t *s = sim->state[first + k];
         int i = m - 1 - k, right = w->b_fraction - w->a_fraction;
         bool shaped = w->structure == PW_DIRECT_1_SHAPED;
-        l->b0[i] = w->b[0], l->b1[i] = w->b[1], l->b2[i] = w->b[2], l->a1[i] = w->a[1], l->a2[i] = w->a[2];
-        l->x1[i] = s[0], l->x2[i] = s[1], l->y1[i] = s[2], l->y2[i] = s[3], l->e1[i] = s[4], l->e2[i] = s[5];
+        l->b0[i] = w->b[0], l->b1[i] = w->b[1], l->b2[i] = w->b[2], l->a1[i] = w->a[1],
+        l->a2[i] = w->a[2];
+        l->x1[i] = s[0], l->x2[i] = s[1], l->y1[i] = s[2], l->y2[i] = s[3], l->e1[i] = s[4],
+        l->e2[i] = s[5];
         l->k1[i] = shaped ? w->k1 : 0, l->k2[i] = shaped ? w->k2 : 0;
         l->shaped[i] = shaped ? -1 : 0;
         l->right[i] = right > 0 ? right : 0;
@@ -47,17 +52,21 @@ static void NAME(store)(pw_simulation *sim, int first, int m, const NAME(lanes) 
 }
 
 /* shaped: whether any section is (constant at each call, so that plain cascades do not pay). */
-static inline __attribute__((always_inline)) TARGET void NAME(loop)(NAME(lanes) *l, int m, const pw_word_rules *rules,
-                                                                    bool shaped, bool wrap, int32_t *io, size_t n,
+static inline __attribute__((always_inline)) TARGET void NAME(loop)(NAME(lanes) * l, int m,
+                                                                    const pw_word_rules *rules,
+                                                                    bool shaped, bool wrap,
+                                                                    int32_t *io, size_t n,
                                                                     uint64_t *clipped)
 {
-    const VECTOR b0 = GET(l->b0), b1 = GET(l->b1), b2 = GET(l->b2), a1 = GET(l->a1), a2 = GET(l->a2);
+    const VECTOR b0 = GET(l->b0), b1 = GET(l->b1), b2 = GET(l->b2), a1 = GET(l->a1),
+                 a2 = GET(l->a2);
     const VECTOR k1 = GET(l->k1), k2 = GET(l->k2), shape = GET(l->shaped);
     const VECTOR right = GET(l->right), left = GET(l->left), near = GET(l->near);
     const VECTOR fraction = GET(l->fraction), half = GET(l->half);
     const VECTOR low = ALL(rules->low), high = ALL(rules->high);
     const int spare = rules->high == INT16_MAX ? 48 : 32;
-    VECTOR x1 = GET(l->x1), x2 = GET(l->x2), y1 = GET(l->y1), y2 = GET(l->y2), e1 = GET(l->e1), e2 = GET(l->e2);
+    VECTOR x1 = GET(l->x1), x2 = GET(l->x2), y1 = GET(l->y1), y2 = GET(l->y2), e1 = GET(l->e1),
+           e2 = GET(l->e2);
     VECTOR p1 = ALL(0), p2 = ALL(0), count = ALL(0);
     int64_t entry_lane[PW_LANES] = {0}, active_lane[PW_LANES];
     entry_lane[m - 1] = -1;
@@ -82,10 +91,12 @@ static inline __attribute__((always_inline)) TARGET void NAME(loop)(NAME(lanes) 
             if (shaped) e2 = e1, e1 = e;
         } else {
             for (int i = 0; i < PW_LANES; i++) active_lane[i] = 0;
-            for (int k = 0; k < m; k++) active_lane[m - 1 - k] = t >= 2 * (size_t)k && t - 2 * (size_t)k < n ? -1 : 0;
+            for (int k = 0; k < m; k++)
+                active_lane[m - 1 - k] = t >= 2 * (size_t)k && t - 2 * (size_t)k < n ? -1 : 0;
             VECTOR active = GET(active_lane);
             count = ADD(count, AND(NOT(same), active));
-            x2 = PICK(active, x1, x2), x1 = PICK(active, x, x1), y2 = PICK(active, y1, y2), y1 = PICK(active, y, y1);
+            x2 = PICK(active, x1, x2), x1 = PICK(active, x, x1), y2 = PICK(active, y1, y2),
+            y1 = PICK(active, y, y1);
             if (shaped) e2 = PICK(active, e1, e2), e1 = PICK(active, e, e1);
         }
         if (t >= late) io[t - late] = FIRST(y);

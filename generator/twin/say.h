@@ -19,8 +19,8 @@ typedef struct pw_twin_found {
 /* verbose: every point; else about twelve of them. */
 void pw_twin_text(const pw_twin_found *found, bool verbose, pw_text *out);
 
-/* {"format": "polewright-twin-1", "stage", "rate_hz", "record": {..} | null, "reference": {..} | null,
- *  "points": [..], "worst": {..} | null, "envelope": {..} | null, "calibration": {..} | null,
+/* {"format": "polewright-twin-1", "stage", "rate_hz", "record": {..} | null, "reference": {..} |
+ * null, "points": [..], "worst": {..} | null, "envelope": {..} | null, "calibration": {..} | null,
  *  "verdict": "agrees" | "differs" | "not judged"} */
 void pw_twin_json(const pw_twin_found *found, pw_text *out);
 

@@ -4,8 +4,14 @@
 #include "report/json_value.h"
 #include "twin/say.h"
 
-static void number(json_t *o, const char *key, double value) { pw_json_put(o, key, pw_json_number(value)); }
-static void whole(json_t *o, const char *key, int64_t value) { pw_json_put(o, key, json_integer((json_int_t)value)); }
+static void number(json_t *o, const char *key, double value)
+{
+    pw_json_put(o, key, pw_json_number(value));
+}
+static void whole(json_t *o, const char *key, int64_t value)
+{
+    pw_json_put(o, key, json_integer((json_int_t)value));
+}
 
 static json_t *residual(const pw_residual *r, double lsb, double rate)
 {
@@ -162,13 +168,16 @@ void pw_twin_json(const pw_twin_found *found, pw_text *out)
     pw_json_put(o, "stage", pw_json_text(stage->name));
     number(o, "rate_hz", stage->rate_hz);
     pw_json_put(o, "record", c ? record(c, stage->rate_hz) : json_null());
-    pw_json_put(o, "reference", c && c->reference.given ? reference(&c->reference, c->lsb, stage->rate_hz) : json_null());
+    pw_json_put(o, "reference",
+                c && c->reference.given ? reference(&c->reference, c->lsb, stage->rate_hz)
+                                        : json_null());
     for (int i = 0; found->points && i < found->points->count; i++)
         json_array_append_new(list, point(found->points, &found->points->list[i]));
     pw_json_put(o, "points", list);
     pw_json_put(o, "worst", found->points ? worst(found->points) : json_null());
     pw_json_put(o, "envelope", found->points ? envelope(found->points) : json_null());
-    pw_json_put(o, "calibration", found->fit ? calibration(found->fit, found->written) : json_null());
+    pw_json_put(o, "calibration",
+                found->fit ? calibration(found->fit, found->written) : json_null());
     pw_json_put(o, "verdict", json_string(pw_twin_verdict(found->points)));
     pw_json_write(o, out);
 }

@@ -21,7 +21,8 @@ int pw_spectrum_segment(int64_t samples)
 typedef struct sums { double xx, r, yy, rr, hz; double complex ry; int bins; } sums;
 
 /* Adds a bin with the twin's output made that of like: both responses are known. */
-static void add_bin(const pw_results *results, const pw_roots *like, const pw_welch *w, double delay, int k, sums *s)
+static void add_bin(const pw_results *results, const pw_roots *like, const pw_welch *w,
+                    double delay, int k, sums *s)
 {
     double rate = results->stage->rate_hz, hz = rate * k / w->n;
     double complex twin = pw_realised_response(&results->realisation, rate, hz);
@@ -36,7 +37,8 @@ static void add_bin(const pw_results *results, const pw_roots *like, const pw_we
     s->hz += hz * rr;
 }
 
-static sums gather(const pw_results *results, const pw_roots *like, const pw_welch *w, double delay, int from, int to)
+static sums gather(const pw_results *results, const pw_roots *like, const pw_welch *w, double delay,
+                   int from, int to)
 {
     sums s = {.bins = to - from};
     for (int k = from; k < to; k++) add_bin(results, like, w, delay, k, &s);
@@ -44,7 +46,8 @@ static sums gather(const pw_results *results, const pw_roots *like, const pw_wel
     return s;
 }
 
-static bool is_excited(const pw_welch *w, const sums *s, int middle, double averages, const pw_point *p)
+static bool is_excited(const pw_welch *w, const sums *s, int middle, double averages,
+                       const pw_point *p)
 {
     double by_chance = 1 - pow(0.05, 1 / fmax(1e-9, averages - 1));
     return s->xx > ABOVE_LEAKAGE * s->bins * pw_welch_leakage(w, w->xx, middle)
@@ -52,7 +55,8 @@ static bool is_excited(const pw_welch *w, const sums *s, int middle, double aver
            && averages > 1 && p->coherence > by_chance && p->band_db < WIDEST_BAND;
 }
 
-static pw_point make_point(const pw_results *results, const pw_roots *like, const pw_welch *w, double delay, int from, int to)
+static pw_point make_point(const pw_results *results, const pw_roots *like, const pw_welch *w,
+                           double delay, int from, int to)
 {
     sums s = gather(results, like, w, delay, from, to);
     pw_point p = {.hz = s.hz, .db = NAN, .deg = NAN, .band_db = INFINITY, .band_deg = INFINITY};
@@ -72,11 +76,13 @@ static pw_point make_point(const pw_results *results, const pw_roots *like, cons
     return p;
 }
 
-void pw_spectrum_points(const pw_results *results, const pw_roots *like, const pw_welch *welch, double delay, pw_arena *arena, pw_points *out)
+void pw_spectrum_points(const pw_results *results, const pw_roots *like, const pw_welch *welch,
+                        double delay, pw_arena *arena, pw_points *out)
 {
     const double *band = results->stage->limits.band_hz;
     double step = results->stage->rate_hz / welch->n;
-    int first = (int)fmax(2, ceil(band[0] / step)), last = (int)fmin(welch->bins - 2, floor(band[1] / step));
+    int first = (int)fmax(2, ceil(band[0] / step)),
+        last = (int)fmin(welch->bins - 2, floor(band[1] / step));
     out->list = pw_arena_take(arena, PW_POINTS * sizeof *out->list);
     out->count = 0;
     if (last < first) return;

@@ -35,8 +35,10 @@ static const char *key_of(const pw_part *part)
     return key[part->kind];
 }
 
-/* The path of each circuit of a stage in the order of pw_circuits_of, up to the names of its parts. */
-static void circuit_paths(const pw_analog_spec *spec, const char *path, pw_arena *arena, const char **out, bool *cell, int *n)
+/* The path of each circuit of a stage in the order of pw_circuits_of, up to the names of its
+ * parts. */
+static void circuit_paths(const pw_analog_spec *spec, const char *path, pw_arena *arena,
+                          const char **out, bool *cell, int *n)
 {
     if (spec->kind == PW_ANALOG_CIRCUIT) {
         cell[*n] = false;
@@ -46,7 +48,8 @@ static void circuit_paths(const pw_analog_spec *spec, const char *path, pw_arena
         out[(*n)++] = pw_arena_print(arena, "%s.cell", path);
     } else if (spec->kind == PW_ANALOG_CASCADE)
         for (int i = 0; i < spec->members; i++)
-            circuit_paths(&spec->member[i], pw_arena_print(arena, "%s.cascade.%d", path, i + 1), arena, out, cell, n);
+            circuit_paths(&spec->member[i], pw_arena_print(arena, "%s.cascade.%d", path, i + 1),
+                          arena, out, cell, n);
 }
 
 static pw_status list_parts(pw_trial *t, pw_fit *fit)
@@ -56,7 +59,8 @@ static pw_status list_parts(pw_trial *t, pw_fit *fit)
     bool *cell = pw_arena_take(t->arena, (size_t)(t->study.circuits + 1) * sizeof *cell);
     circuit_paths(&t->results->stage->analog, "analog", t->arena, path, cell, &n);
     if (t->study.n > PW_MOST_FITTED) {
-        fprintf(stderr, "polewright: --calibrate: %d parts have a tolerance; expected up to %d\n", t->study.n, PW_MOST_FITTED);
+        fprintf(stderr, "polewright: --calibrate: %d parts have a tolerance; expected up to %d\n",
+                t->study.n, PW_MOST_FITTED);
         return PW_WRONG;
     }
     for (int i = 0; i < t->study.n; i++) {
@@ -64,11 +68,17 @@ static pw_status list_parts(pw_trial *t, pw_fit *fit)
         const pw_part *part = &t->study.net[v->circuit].circuit->part[v->part];
         double nominal = part->kind == PW_OP_AMP ? part->gain_bandwidth_hz : part->value;
         fit->parameter[fit->count++] = (pw_fitted){
-            .kind = PW_FITTED_PART, .nominal = nominal, .value = nominal,
-            .name = n > 1 ? pw_arena_print(t->arena, "%d.%s", v->circuit + 1, part->name) : pw_arena_copy(t->arena, part->name),
-            .tolerance = v->tolerance * (v->normal ? 1.5 : 1), .normal = v->normal,
-            .path = cell[v->circuit] ? pw_arena_print(t->arena, "%s.%s", path[v->circuit], part->name)
-                                     : pw_arena_print(t->arena, "%s.%s.%s", path[v->circuit], part->name, key_of(part))};
+            .kind = PW_FITTED_PART,
+            .nominal = nominal,
+            .value = nominal,
+            .name = n > 1 ? pw_arena_print(t->arena, "%d.%s", v->circuit + 1, part->name)
+                          : pw_arena_copy(t->arena, part->name),
+            .tolerance = v->tolerance * (v->normal ? 1.5 : 1),
+            .normal = v->normal,
+            .path = cell[v->circuit]
+                        ? pw_arena_print(t->arena, "%s.%s", path[v->circuit], part->name)
+                        : pw_arena_print(t->arena, "%s.%s.%s", path[v->circuit], part->name,
+                                         key_of(part))};
     }
     return PW_OK;
 }
@@ -86,34 +96,52 @@ static void add_parameter(pw_trial *t, pw_fit *fit, pw_fitted p, pw_gain *gain, 
 
 static bool is_pair(const pw_root *r) { return r->double_real || cimag(r->s) != 0; }
 
-static void add_root(pw_trial *t, pw_fit *fit, const char *path, const char *prefix, bool zero, int i, pw_root *r)
+static void add_root(pw_trial *t, pw_fit *fit, const char *path, const char *prefix, bool zero,
+                     int i, pw_root *r)
 {
     const char *what = zero ? "zero" : "pole";
     double size = r->double_real ? sqrt(creal(r->s) * r->s2) : cabs(r->s);
     double damped = r->double_real ? -(creal(r->s) + r->s2) : -2 * creal(r->s);
     const char *at = pw_arena_print(t->arena, "%s.%ss.%d", path, what, i + 1);
     if (size == 0) return;
-    add_parameter(t, fit, (pw_fitted){.kind = PW_FITTED_F0, .nominal = size / (2 * M_PI), .path = at, .root = r,
-                  .name = pw_arena_print(t->arena, "%s%s %d f0", prefix, what, i + 1)}, NULL, zero);
+    add_parameter(t, fit,
+                  (pw_fitted){.kind = PW_FITTED_F0,
+                              .nominal = size / (2 * M_PI),
+                              .path = at,
+                              .root = r,
+                              .name = pw_arena_print(t->arena, "%s%s %d f0", prefix, what, i + 1)},
+                  NULL, zero);
     if (is_pair(r) && damped != 0)
-        add_parameter(t, fit, (pw_fitted){.kind = PW_FITTED_Q, .nominal = size / damped, .path = at, .root = r,
-                      .name = pw_arena_print(t->arena, "%s%s %d q", prefix, what, i + 1)}, NULL, zero);
+        add_parameter(
+            t, fit,
+            (pw_fitted){.kind = PW_FITTED_Q,
+                        .nominal = size / damped,
+                        .path = at,
+                        .root = r,
+                        .name = pw_arena_print(t->arena, "%s%s %d q", prefix, what, i + 1)},
+            NULL, zero);
 }
 
-static void list_roots(pw_trial *t, pw_fit *fit, pw_analog_spec *spec, const char *path, const char *prefix)
+static void list_roots(pw_trial *t, pw_fit *fit, pw_analog_spec *spec, const char *path,
+                       const char *prefix)
 {
     if (spec->kind == PW_ANALOG_CASCADE)
         for (int i = 0; i < spec->members; i++)
-            list_roots(t, fit, &spec->member[i], pw_arena_print(t->arena, "%s.cascade.%d", path, i + 1),
+            list_roots(t, fit, &spec->member[i],
+                       pw_arena_print(t->arena, "%s.cascade.%d", path, i + 1),
                        pw_arena_print(t->arena, "%s%d.", prefix, i + 1));
     if (spec->kind != PW_ANALOG_ROOTS) return;
     const char *at = pw_arena_print(t->arena, "%s.roots", path);
     for (int i = 0; i < spec->poles; i++) add_root(t, fit, at, prefix, false, i, &spec->pole[i]);
     for (int i = 0; i < spec->zeros; i++) add_root(t, fit, at, prefix, true, i, &spec->zero[i]);
     bool factor = spec->gain.kind == PW_GAIN_FACTOR;
-    add_parameter(t, fit, (pw_fitted){.kind = PW_FITTED_GAIN, .nominal = factor ? spec->gain.factor : spec->gain.is,
-                  .path = pw_arena_print(t->arena, "%s.gain.%s", at, factor ? "factor" : "is"),
-                  .name = pw_arena_print(t->arena, "%sgain", prefix)}, &spec->gain, false);
+    add_parameter(
+        t, fit,
+        (pw_fitted){.kind = PW_FITTED_GAIN,
+                    .nominal = factor ? spec->gain.factor : spec->gain.is,
+                    .path = pw_arena_print(t->arena, "%s.gain.%s", at, factor ? "factor" : "is"),
+                    .name = pw_arena_print(t->arena, "%sgain", prefix)},
+        &spec->gain, false);
 }
 
 static void copy_spec(pw_analog_spec *to, const pw_analog_spec *from, pw_arena *arena)
@@ -145,7 +173,8 @@ static void set_roots(pw_trial *t, pw_fit *fit)
         pw_fitted *p = &fit->parameter[i];
         double w = 2 * M_PI * p->value;
         if (p->kind == PW_FITTED_GAIN) {
-            *(t->gain[i]->kind == PW_GAIN_FACTOR ? &t->gain[i]->factor : &t->gain[i]->is) = p->value;
+            *(t->gain[i]->kind == PW_GAIN_FACTOR ? &t->gain[i]->factor : &t->gain[i]->is) =
+                p->value;
         } else if (p->kind == PW_FITTED_F0) {
             bool pair = is_pair(p->root), axis = creal(p->root->s) == 0;
             if (axis) p->root->s = CMPLX(0, w);
@@ -159,13 +188,15 @@ static void set_roots(pw_trial *t, pw_fit *fit)
 
 static pw_status nothing(void)
 {
-    fputs("polewright: --calibrate: nothing may move: expected parts with a tolerance (tolerance: 1 %), or a stage given as "
-          "roots\n", stderr);
+    fputs("polewright: --calibrate: nothing may move: expected parts with a tolerance (tolerance: "
+          "1 %), or a stage given as "
+          "roots\n",
+          stderr);
     return PW_WRONG;
 }
 
-pw_status pw_trial_begin(const pw_results *results, const double *hz, int rows, pw_arena *arena, pw_trial *out, pw_fit *fit,
-                         pw_messages *messages)
+pw_status pw_trial_begin(const pw_results *results, const double *hz, int rows, pw_arena *arena,
+                         pw_trial *out, pw_fit *fit, pw_messages *messages)
 {
     pw_circuit_list list;
     *out = (pw_trial){.results = results, .hz = hz, .rows = rows, .arena = arena};
@@ -189,11 +220,13 @@ static bool parts_at(pw_trial *t, const pw_fit *fit, double *log_size, double *p
 {
     double x[PW_MOST_FITTED];
     for (int i = 0; i < fit->count; i++)
-        x[i] = (fit->parameter[i].value / fit->parameter[i].nominal - 1) / t->study.varied[i].tolerance;
+        x[i] = (fit->parameter[i].value / fit->parameter[i].nominal - 1)
+               / t->study.varied[i].tolerance;
     if (!pw_bench_set(&t->bench, x)) return false;
     for (int row = 0; row < t->rows; row++) {
         pw_change change = pw_bench_at(&t->bench, row);
-        pw_roots_log_at(&t->results->analog, CMPLX(0, 2 * M_PI * t->hz[row]), &log_size[row], &phase[row]);
+        pw_roots_log_at(&t->results->analog, CMPLX(0, 2 * M_PI * t->hz[row]), &log_size[row],
+                        &phase[row]);
         log_size[row] += change.log_ratio;
         phase[row] += change.degrees * M_PI / 180;
     }
@@ -202,7 +235,8 @@ static bool parts_at(pw_trial *t, const pw_fit *fit, double *log_size, double *p
 
 bool pw_trial_at(pw_trial *trial, pw_fit *fit, const double *u, double *log_size, double *phase)
 {
-    for (int i = 0; i < fit->count; i++) fit->parameter[i].value = value_at(&fit->parameter[i], u[i]);
+    for (int i = 0; i < fit->count; i++)
+        fit->parameter[i].value = value_at(&fit->parameter[i], u[i]);
     if (trial->parts) return parts_at(trial, fit, log_size, phase);
     pw_messages unheard = {0};
     pw_roots roots;

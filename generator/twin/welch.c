@@ -71,7 +71,8 @@ void pw_welch_add(pw_welch *welch, double x, double y, double r)
     add_segment(welch);
     welch->filled = welch->n / 2;
     for (int i = 0; i < 3; i++)
-        memcpy(welch->ring[i], welch->ring[i] + welch->n / 2, (size_t)welch->filled * sizeof(double));
+        memcpy(welch->ring[i], welch->ring[i] + welch->n / 2,
+               (size_t)welch->filled * sizeof(double));
 }
 
 void pw_welch_end(pw_welch *welch) { pw_arena_free(&welch->arena); }

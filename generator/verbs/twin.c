@@ -12,16 +12,20 @@
 enum { RECORD, RESPONSE, SAMPLES, PLAY, CALIBRATE, REFERENCE, HOLD, DRAWS, SEED, SHARD, MERGE };
 
 static const pw_option options[] = {
-    {"record", "FILE", "compare with a measured record: columns input,output, or a WAV file of two channels"},
+    {"record", "FILE",
+     "compare with a measured record: columns input,output, or a WAV file of two channels"},
     {"response", "FILE", "compare with a measured response: columns hz,db and perhaps deg"},
     {"samples", NULL, "a record holds the samples that the C sees, not volts"},
-    {"play", "IN", "run the emitted arithmetic over the record IN and write what comes out to -o FILE"},
-    {"calibrate", NULL, "fit the parts (or f0, q and gain of roots) and write a stage file with them"},
+    {"play", "IN",
+     "run the emitted arithmetic over the record IN and write what comes out to -o FILE"},
+    {"calibrate", NULL,
+     "fit the parts (or f0, q and gain of roots) and write a stage file with them"},
     {"reference", NULL, "with --record: set the exact analog stage beside the twin"},
     {"hold", "zero|linear", "the input of --reference between samples (default zero)"},
     {"draws", "N", "boards that are drawn for the envelope, as spread.draws"},
     {"seed", "N", "of the draws, as spread.seed"},
-    {"shard", "I/N", "draw only share I of N of the tolerances; -o FILE takes it (default <stage>.I-of-N.spread)"},
+    {"shard", "I/N",
+     "draw only share I of N of the tolerances; -o FILE takes it (default <stage>.I-of-N.spread)"},
     {"merge", "FILES", "join shards: a directory of *.spread files, or files divided by commas"},
     {NULL, NULL, NULL},
 };
@@ -38,19 +42,26 @@ static pw_status check_task(const pw_call *call)
 {
     const char *const *x = call->extra;
     int tasks = !!x[RECORD] + !!x[RESPONSE] + !!x[PLAY] + !!x[SHARD] + !!x[MERGE];
-    if (tasks != 1) return wrong("exactly one of --record, --response, --play, --shard and --merge is expected");
+    if (tasks != 1)
+        return wrong(
+            "exactly one of --record, --response, --play, --shard and --merge is expected");
     if (x[REFERENCE] && !x[RECORD]) return wrong("--reference goes with --record");
     if (x[HOLD] && !x[REFERENCE]) return wrong("--hold goes with --reference");
-    if (x[CALIBRATE] && !x[RECORD] && !x[RESPONSE]) return wrong("--calibrate goes with --record or --response");
-    if (x[SAMPLES] && !x[RECORD] && !x[PLAY]) return wrong("--samples goes with --record or --play");
-    if (x[PLAY] && !call->directory) return wrong("--play needs -o FILE, where the output goes (.csv or .wav)");
+    if (x[CALIBRATE] && !x[RECORD] && !x[RESPONSE])
+        return wrong("--calibrate goes with --record or --response");
+    if (x[SAMPLES] && !x[RECORD] && !x[PLAY])
+        return wrong("--samples goes with --record or --play");
+    if (x[PLAY] && !call->directory)
+        return wrong("--play needs -o FILE, where the output goes (.csv or .wav)");
     return PW_OK;
 }
 
 static pw_status check_hold(const pw_call *call, pw_hold *hold)
 {
     const char *word = call->extra[HOLD];
-    *hold = !call->extra[REFERENCE] ? PW_HOLD_NONE : word && !strcmp(word, "linear") ? PW_HOLD_LINEAR : PW_HOLD_ZERO;
+    *hold = !call->extra[REFERENCE]           ? PW_HOLD_NONE
+            : word && !strcmp(word, "linear") ? PW_HOLD_LINEAR
+                                              : PW_HOLD_ZERO;
     if (!word || !strcmp(word, "zero") || !strcmp(word, "linear")) return PW_OK;
     return wrong("--hold knows zero and linear");
 }
@@ -60,23 +71,28 @@ static pw_status check_calibrate(const pw_call *call)
 {
     if (!call->extra[CALIBRATE]) return PW_OK;
     if (!strcmp(call->stage, "-"))
-        return call->directory ? wrong("--calibrate needs the stage file by name, not from standard input") : PW_OK;
+        return wrong("--calibrate needs the stage file by name, not from standard input");
     for (int i = 0; i < call->sets; i++)
-        if (!strncmp(call->set[i], "analog", 6)) return wrong("--calibrate writes a new stage file; put what --set changes "
-                                                              "in 'analog' into the file first");
+        if (!strncmp(call->set[i], "analog", 6))
+            return wrong("--calibrate writes a new stage file; put what --set changes "
+                         "in 'analog' into the file first");
     return PW_OK;
 }
 
 /* --draws and --seed as the --set options that they stand for. */
 static pw_call with_draws(const pw_call *call, pw_arena *arena)
 {
-    static const struct { int extra; const char *path; } as_set[] = {{DRAWS, "spread.draws"}, {SEED, "spread.seed"}};
+    static const struct {
+        int extra;
+        const char *path;
+    } as_set[] = {{DRAWS, "spread.draws"}, {SEED, "spread.seed"}};
     pw_call with = *call;
     with.set = pw_arena_take(arena, (size_t)(call->sets + 2) * sizeof *with.set);
     for (int i = 0; i < call->sets; i++) with.set[i] = call->set[i];
     for (int i = 0; i < 2; i++)
         if (call->extra[as_set[i].extra])
-            with.set[with.sets++] = pw_arena_print(arena, "%s=%s", as_set[i].path, call->extra[as_set[i].extra]);
+            with.set[with.sets++] =
+                pw_arena_print(arena, "%s=%s", as_set[i].path, call->extra[as_set[i].extra]);
     return with;
 }
 
@@ -84,7 +100,9 @@ static pw_call with_draws(const pw_call *call, pw_arena *arena)
 
 static pw_status play(const pw_call *call, const pw_results *results)
 {
-    pw_play play = {.in = call->extra[PLAY], .out = call->directory, .samples = call->extra[SAMPLES],
+    pw_play play = {.in = call->extra[PLAY],
+                    .out = call->directory,
+                    .samples = call->extra[SAMPLES],
                     .quiet = call->quiet};
     pw_text out = {0};
     pw_status status = pw_play_run(results, &play);
@@ -97,9 +115,11 @@ static pw_status play(const pw_call *call, const pw_results *results)
 /* <stage>.fitted.yaml beside the stage file. */
 static const char *fitted_path(const pw_call *call, pw_arena *arena)
 {
-    const char *slash = strrchr(call->stage, '/'), *name = slash ? slash + 1 : call->stage, *dot = strrchr(name, '.');
+    const char *slash = strrchr(call->stage, '/'), *name = slash ? slash + 1 : call->stage,
+               *dot = strrchr(name, '.');
     size_t n = dot && dot > name ? (size_t)(dot - call->stage) : strlen(call->stage);
-    return call->directory ? call->directory : pw_arena_print(arena, "%.*s.fitted.yaml", (int)n, call->stage);
+    return call->directory ? call->directory
+                           : pw_arena_print(arena, "%.*s.fitted.yaml", (int)n, call->stage);
 }
 
 /* One fit; *model: of the stage file as it leaves it in *edited. */
@@ -108,15 +128,16 @@ static pw_status fit_once(const pw_call *call, pw_analysis *analysis, const pw_t
 {
     bool delay = found->comparison != NULL;
     pw_text_free(edited);
-    pw_status status = pw_fit_run(&analysis->results, found->points, delay, arena, fit, &analysis->messages);
+    pw_status status =
+        pw_fit_run(&analysis->results, found->points, delay, arena, fit, &analysis->messages);
     if (!status) status = pw_fit_edit(call->stage, fit, edited);
     return status ? status : pw_fit_model(call->stage, edited, model);
 }
 
-/* A record's response is estimated again with the fitted model for the board's, then fitted again: what
- * the window smears cancels the better the nearer the model is. */
-static pw_status fit_all(const pw_call *call, pw_analysis *analysis, pw_twin_found *found, pw_arena *arena,
-                         pw_fit *fit, pw_text *edited, pw_comparison *comparison)
+/* A record's response is estimated again with the fitted model for the board's, then fitted again:
+ * what the window smears cancels the better the nearer the model is. */
+static pw_status fit_all(const pw_call *call, pw_analysis *analysis, pw_twin_found *found,
+                         pw_arena *arena, pw_fit *fit, pw_text *edited, pw_comparison *comparison)
 {
     pw_roots model;
     pw_points first = *found->points;
@@ -134,8 +155,8 @@ static pw_status fit_all(const pw_call *call, pw_analysis *analysis, pw_twin_fou
     return status;
 }
 
-static pw_status calibrate(const pw_call *call, pw_analysis *analysis, pw_arena *arena, pw_twin_found *found,
-                           pw_fit *fit, pw_comparison *comparison)
+static pw_status calibrate(const pw_call *call, pw_analysis *analysis, pw_arena *arena,
+                           pw_twin_found *found, pw_fit *fit, pw_comparison *comparison)
 {
     pw_text edited = {0};
     pw_status status = fit_all(call, analysis, found, arena, fit, &edited, comparison);
@@ -146,17 +167,19 @@ static pw_status calibrate(const pw_call *call, pw_analysis *analysis, pw_arena 
     return status;
 }
 
-static pw_status measure(const pw_call *call, pw_analysis *analysis, pw_hold hold, pw_arena *arena, pw_twin_found *found,
-                         pw_comparison *comparison, pw_points *points)
+static pw_status measure(const pw_call *call, pw_analysis *analysis, pw_hold hold, pw_arena *arena,
+                         pw_twin_found *found, pw_comparison *comparison, pw_points *points)
 {
     pw_flow flow;
     if (call->extra[RESPONSE]) {
         found->points = points;
-        return pw_compare_response(&analysis->results, call->extra[RESPONSE], call->quiet, arena, points, &analysis->messages);
+        return pw_compare_response(&analysis->results, call->extra[RESPONSE], call->quiet, arena,
+                                   points, &analysis->messages);
     }
     found->comparison = comparison;
     found->points = &comparison->points;
-    pw_status status = pw_flow_open(&analysis->results, call->extra[RECORD], call->extra[SAMPLES], call->quiet, &flow);
+    pw_status status = pw_flow_open(&analysis->results, call->extra[RECORD], call->extra[SAMPLES],
+                                    call->quiet, &flow);
     if (!status) status = pw_compare_record(&flow, hold, arena, comparison, &analysis->messages);
     pw_flow_close(&flow);
     return status;
@@ -171,7 +194,8 @@ static pw_status compare(const pw_call *call, pw_analysis *analysis, pw_hold hol
     pw_text out = {0};
     pw_twin_found found = {.results = &analysis->results};
     pw_status status = measure(call, analysis, hold, &arena, &found, &comparison, &points);
-    if (!status && call->extra[CALIBRATE]) status = calibrate(call, analysis, &arena, &found, &fit, &comparison);
+    if (!status && call->extra[CALIBRATE])
+        status = calibrate(call, analysis, &arena, &found, &fit, &comparison);
     status = pw_analysis_tell(call, analysis, status);
     if (!status) {
         if (call->json) pw_twin_json(&found, &out);
@@ -209,8 +233,11 @@ static pw_status run(const pw_call *call)
 }
 
 const pw_verb pw_verb_twin = {
-    .name = "twin", .summary = "run the stage over a measured record or response, compare, and fit the parts",
-    .run = run, .needs_stage = true, .option = options,
+    .name = "twin",
+    .summary = "run the stage over a measured record or response, compare, and fit the parts",
+    .run = run,
+    .needs_stage = true,
+    .option = options,
     .examples = "  polewright twin stage.yaml --record bench.csv\n"
                 "  polewright twin stage.yaml --record bench.wav --reference --hold linear\n"
                 "  polewright twin stage.yaml --response analyser.csv --calibrate -o board7.yaml\n"

@@ -1,9 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The twin's parts for tests and for the bench:
- *     probe_twin speed STAGE N [KIND]   realises STAGE, prints its sections "b0 b1 b2 a1 a2" and an empty
- *         line; then for every line read replays N samples of noise and prints seconds and clips
- *     probe_twin exact STAGE zero|linear   the analog stage's exact output for the inputs read, one a line
- *     probe_twin welch N   averaged spectra of lines "x y r": segments, then a bin a line
+ *     probe_twin speed STAGE N [KIND]   realises STAGE, prints its sections "b0 b1 b2 a1 a2" and an
+ * empty line; then for every line read replays N samples of noise and prints seconds and clips
+ *     probe_twin exact STAGE zero|linear   the analog stage's exact output for the inputs read, one
+ * a line probe_twin welch N   averaged spectra of lines "x y r": segments, then a bin a line
  *     probe_twin decimal   each line read as a number, printed with 17 digits
  *     probe_twin exponential N   exp of the N by N matrix read, row by row */
 #define _GNU_SOURCE
@@ -32,9 +32,11 @@ static pw_status read_stage(const char *path, bool words)
     pw_status status = pw_file_read(path, 1 << 20, &yaml);
     if (!status) status = pw_stage_read(&yaml, NULL, 0, &stage, &messages);
     if (!status) status = pw_analog_build(&stage.analog, &analog, &messages);
-    if (!status && words) status = pw_target_read(stage.target, stage.target_at, &target, &messages);
+    if (!status && words)
+        status = pw_target_read(stage.target, stage.target_at, &target, &messages);
     if (!status && words) status = pw_discretise(&stage, &analog, &digital, &messages);
-    if (!status && words) status = pw_realise(&stage, &analog, &digital, &target, &realisation, &messages);
+    if (!status && words)
+        status = pw_realise(&stage, &analog, &digital, &target, &realisation, &messages);
     pw_messages_print(&messages, stderr, true);
     pw_text_free(&yaml);
     return status;
@@ -64,7 +66,9 @@ static void fill(void *in, size_t n)
         double v = 0.5 * (double)(int64_t)seed / 9223372036854775808.0;
         if (realisation.sample == PW_FLOAT32) ((float *)in)[i] = (float)v;
         else if (realisation.sample == PW_FLOAT64) ((double *)in)[i] = v;
-        else ((int32_t *)in)[i] = (int32_t)(v * (realisation.sample == PW_Q15 ? 32768.0 : 2147483648.0));
+        else
+            ((int32_t *)in)[i] =
+                (int32_t)(v * (realisation.sample == PW_Q15 ? 32768.0 : 2147483648.0));
     }
 }
 
@@ -75,8 +79,8 @@ static int speed(size_t n)
     void *in = calloc(n, 8), *out = calloc(n, 8);
     for (int k = 0; k < realisation.count; k++) {
         const pw_words *w = &realisation.section[k];
-        printf("%.17g %.17g %.17g %.17g %.17g\n", w->realised_b[0], w->realised_b[1], w->realised_b[2], w->realised_a[1],
-               w->realised_a[2]);
+        printf("%.17g %.17g %.17g %.17g %.17g\n", w->realised_b[0], w->realised_b[1],
+               w->realised_b[2], w->realised_a[1], w->realised_a[2]);
     }
     printf("%s\n\n", pw_replay_kind());
     fill(in, n);
@@ -114,8 +118,9 @@ static int welch(int n)
     while (scanf("%lf %lf %lf", &x, &y, &r) == 3) pw_welch_add(&w, x, y, r);
     printf("%ld\n", w.segments);
     for (int k = 0; k < w.bins; k++)
-        printf("%.17g %.17g %.17g %.17g %.17g %.17g %.17g %.17g\n", w.xx[k], w.yy[k], w.rr[k], creal(w.xy[k]), cimag(w.xy[k]),
-               creal(w.ry[k]), cimag(w.ry[k]), pw_welch_leakage(&w, w.xx, k));
+        printf("%.17g %.17g %.17g %.17g %.17g %.17g %.17g %.17g\n", w.xx[k], w.yy[k], w.rr[k],
+               creal(w.xy[k]), cimag(w.xy[k]), creal(w.ry[k]), cimag(w.ry[k]),
+               pw_welch_leakage(&w, w.xx, k));
     pw_welch_end(&w);
     return 0;
 }

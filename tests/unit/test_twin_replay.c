@@ -22,7 +22,10 @@ static double uniform(void)      /* -1 .. 1 */
     return (double)(int64_t)seed / 9223372036854775808.0;
 }
 
-static int whole(int from, int to) { return from + (int)floor((uniform() + 1) / 2 * (to - from + 1) * 0.999999); }
+static int whole(int from, int to)
+{
+    return from + (int)floor((uniform() + 1) / 2 * (to - from + 1) * 0.999999);
+}
 
 /* A stable pair, or a real pole, with b that make about one clip in twenty samples. */
 static void random_section(pw_words *w, bool fixed, bool wide)
@@ -40,7 +43,9 @@ static void random_section(pw_words *w, bool fixed, bool wide)
     w->structure = whole(0, 2) ? PW_DIRECT_1 : PW_DIRECT_1_SHAPED;
     w->a_fraction = wide ? 30 : 14;
     w->b_fraction = w->a_fraction + whole(-2, 4);
-    for (int i = 0; i < 3; i++) w->b[i] = (int32_t)fmax(-2147483647, fmin(2147483647, rint(ldexp(8 * b[i], w->b_fraction))));
+    for (int i = 0; i < 3; i++)
+        w->b[i] =
+            (int32_t)fmax(-2147483647, fmin(2147483647, rint(ldexp(8 * b[i], w->b_fraction))));
     if (!wide)
         for (int i = 0; i < 3; i++) w->b[i] = (int32_t)fmax(-32767, fmin(32767, w->b[i]));
     w->a[1] = (int32_t)rint(ldexp(a1, w->a_fraction));
@@ -56,15 +61,22 @@ static void random_cascade(pw_realisation *r, pw_sample sample)
     r->truncate = whole(0, 2) == 0;
     r->wrap = whole(0, 3) == 0;
     r->count = whole(1, 10);
-    bool full = whole(0, 2) == 0;        /* eight sections of second order take a way of their own */
+    bool full = whole(0, 2) == 0; /* eight sections of second order take a way of their own */
     if (full) r->count = whole(8, 10);
     for (int k = 0; k < r->count; k++)
         do random_section(&r->section[k], fixed, sample == PW_Q31);
         while (full && r->section[k].order != 2);
     if (full) return;
     if (fixed && whole(0, 4) == 0)
-        r->section[r->count / 2] = (pw_words){.structure = PW_COUPLED, .order = 2, .sigma = 20000, .omega = 15000,
-                                              .g = 9000, .c1 = 8000, .c2 = -7000, .d = 3000, .a_fraction = 15,
+        r->section[r->count / 2] = (pw_words){.structure = PW_COUPLED,
+                                              .order = 2,
+                                              .sigma = 20000,
+                                              .omega = 15000,
+                                              .g = 9000,
+                                              .c1 = 8000,
+                                              .c2 = -7000,
+                                              .d = 3000,
+                                              .a_fraction = 15,
                                               .c_fraction = 14};
     if (!fixed && whole(0, 4) == 0) r->section[r->count / 2].structure = PW_DIRECT_1;
     if (!fixed && whole(0, 4) == 0) r->section[r->count / 3].order = 0;
