@@ -23,7 +23,8 @@ static void manual_options(pw_text *out, const pw_option *option)
 
 static void manual_verb(pw_text *out, const pw_verb *verb)
 {
-    pw_text_print(out, ".It Cm %s %s\n", verb->name, verb->needs_stage ? "Ar stage.yaml" : "Op Ar stage.yaml");
+    pw_text_print(out, ".It Cm %s%s\n", verb->name,
+                  verb->needs_stage ? " Ar stage.yaml" : verb->takes_stage ? " Op Ar stage.yaml" : "");
     pw_roff_add(out, verb->summary);
     pw_text_add(out, ".\n");
     if (!verb->option) return;

@@ -29,7 +29,8 @@ static const phrase phrases[] = {
     {NULL, "mapping values are not allowed in this context", false,
      "a ':' where no key can stand; expected one 'key: value' a line, each key as far in as its "
      "neighbours, or quotes around the text"},
-    {"while scanning a simple key", NULL, true, "a key without its ':'; expected 'key: value'"},
+    {"while scanning a simple key", NULL, true, 
+     "a key without its ':'; expected 'key: value', with a space after the ':'"},
     {"while parsing a block mapping", NULL, false,
      "this line is not a key of the map before it; expected 'key: value', as far in as its "
      "neighbours"},
@@ -38,9 +39,8 @@ static const phrase phrases[] = {
     {NULL, "block sequence entries are not allowed in this context", false,
      "a '- ' where no list item can stand; expected the list on lines of its own, or in [ ]"},
     {"while scanning for the next token", "found character that cannot start any token", false,
-     "a character that cannot begin a value (a tab indents nothing, @ ` and % need quotes); "
-     "expected "
-     "spaces to indent, or quotes around the text"},
+     "a character that cannot begin a value (@, ` and % need quotes); expected quotes around the "
+     "text"},
     {"while scanning a block scalar", "found a tab character", false,
      "a tab where spaces indent; expected spaces"},
     {"while scanning an alias", NULL, false,
@@ -60,9 +60,21 @@ static bool begins(const char *text, const char *start)
     return !start || (text && !strncmp(text, start, strlen(start)));
 }
 
+/* libyaml calls a tab that indents a character like another. */
+static bool is_tab(const yaml_parser_t *parser, const char *problem)
+{
+    return begins(problem, "found character that cannot start any token")
+           && parser->buffer.pointer < parser->buffer.last && *parser->buffer.pointer == '\t';
+}
+
 void pw_tree_tell_fault(const yaml_parser_t *parser, pw_where every, pw_messages *messages)
 {
     const char *problem = parser->problem ? parser->problem : "it cannot be read";
+    if (is_tab(parser, problem)) {
+        pw_where tab = {(int)parser->problem_mark.line + 1, (int)parser->problem_mark.column + 1};
+        pw_error(messages, every.line ? every : tab, "a tab where spaces indent; expected spaces");
+        return;
+    }
     for (size_t i = 0; i < sizeof phrases / sizeof phrases[0]; i++) {
         const phrase *p = &phrases[i];
         if (!begins(parser->context, p->context) || !begins(problem, p->problem)) continue;

@@ -217,13 +217,19 @@ static bool is_known(const char *name)
     return found;
 }
 
+pw_status pw_target_check(const char *name, pw_where at, pw_messages *messages)
+{
+    return is_known(name) ? PW_OK : unknown_target(name, at, messages);
+}
+
 pw_status pw_target_read(const char *name, pw_where at, pw_target *out, pw_messages *messages)
 {
     char path[PATH_MAX], inside[NAME_MAX + 64];
     *out = (pw_target){0};
-    if (!is_known(name)) return unknown_target(name, at, messages);
+    pw_status status = pw_target_check(name, at, messages);
+    if (status) return status;
     snprintf(inside, sizeof inside, "targets/%.255s/settings.yaml", name);
-    pw_status status = pw_data_path(inside, path, sizeof path);
+    status = pw_data_path(inside, path, sizeof path);
     if (status) return status;
     pw_text text = {0};
     status = pw_file_read(path, MAX_SETTINGS_BYTES, &text);

@@ -32,6 +32,9 @@ typedef struct pw_target {
     pw_arena arena;
 } pw_target;
 
+/* A message where there is no such target, and PW_WRONG. */
+PW_CHECKED pw_status pw_target_check(const char *name, pw_where at, pw_messages *messages);
+
 /* Reads targets/<name>/. PW_WRONG with a message (nearest known name) where there is no such one;
  * PW_FAILED where the settings file itself is at fault (a line on stderr says where). */
 PW_CHECKED pw_status pw_target_read(const char *name, pw_where at, pw_target *out, pw_messages *messages);

@@ -36,6 +36,9 @@ pw_status pw_analysis_read(const pw_call *call, pw_analysis *analysis)
         }
         status = pw_stage_read(&yaml, sets, n, &analysis->stage, &analysis->messages);
         free(sets);
+        const pw_stage *stage = &analysis->stage;
+        if (stage->target && pw_target_check(stage->target, stage->target_at, &analysis->messages) && !status)
+            status = PW_WRONG;
     }
     pw_text_free(&target);
     pw_text_free(&yaml);

@@ -63,8 +63,8 @@ static void print_help(void)
 
 static void print_verb_help(const pw_verb *verb)
 {
-    printf("Usage: polewright %s %s [options]\n\n%s\n", verb->name,
-           verb->needs_stage ? "STAGE.yaml" : "[STAGE.yaml]", verb->summary);
+    printf("Usage: polewright %s%s [options]\n\n%s\n", verb->name,
+           verb->needs_stage ? " STAGE.yaml" : verb->takes_stage ? " [STAGE.yaml]" : "", verb->summary);
     if (verb->option) puts("\nOptions of this verb:");
     print_options(verb->option);
     puts("");
@@ -181,11 +181,13 @@ static const pw_verb *find_verb(const char *word)
     return NULL;
 }
 
-/* Output that did not arrive is a failure, however well the work went. */
+/* Output that did not arrive is a failure, however well the work went; a reader that has seen enough and
+ * went away (head) needs no message. */
 static pw_status finish(pw_status status)
 {
     if (fflush(stdout) || ferror(stdout)) {
-        fprintf(stderr, "polewright: cannot write to standard output: %s\n", strerror(errno));
+        if (errno != EPIPE)
+            fprintf(stderr, "polewright: cannot write to standard output: %s\n", strerror(errno));
         return PW_FAILED;
     }
     return status;

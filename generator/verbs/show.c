@@ -49,7 +49,7 @@ static pw_status run(const pw_call *call)
 
 const pw_verb pw_verb_show = {
     .name = "show", .summary = "print the analog model: poles, zeros, gain and a table of the response; writes nothing",
-    .run = run, .needs_stage = false, .option = options,
+    .run = run, .takes_stage = true, .option = options,
     .examples = "  polewright show stage.yaml\n"
                 "  polewright show stage.yaml --plot\n"
                 "  polewright show --cells\n"

@@ -31,7 +31,7 @@ typedef struct pw_call {
 typedef struct pw_verb {
     const char *name, *summary;
     pw_status (*run)(const pw_call *call);
-    bool needs_stage;            /* STAGE.yaml must be there; otherwise it may be left out */
+    bool needs_stage, takes_stage;     /* STAGE.yaml must be there; it may be there */
     const pw_option *option;     /* own options, ended by a null name; null: none */
     const char *examples;        /* for --help, whole lines */
 } pw_verb;
