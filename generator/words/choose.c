@@ -74,7 +74,9 @@ static pw_status complain(pw_job *job)
     else
         pw_error(job->messages, at,
                  "no coefficient words of up to 32 bits hold the poles of section %d; expected "
-                 "structure: coupled, float samples or a lower rate", section);
+                 "%sfloat samples or a lower rate", section,
+                 pw_coupled_suits(&job->format, &job->out->ideal[section - 1]) ? "structure: coupled, "
+                                                                               : "");
     return PW_WRONG;
 }
 
