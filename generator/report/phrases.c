@@ -225,10 +225,8 @@ static void add_first_clip(const pw_realisation *r, bool now, pw_text *out)
 
 static void add_fullest(const pw_realisation *r, pw_text *out)
 {
-    int order[PW_MAX_NODES];
-    pw_nodes_by_headroom(r, order);
-    pw_text_print(out, "; the fullest is %s at %.3g of full scale", r->node[order[0]].name,
-                  r->node[order[0]].bound);
+    const pw_node *fullest = &r->node[r->worst_node];
+    pw_text_print(out, "; the fullest is %s at %.3g of full scale", fullest->name, fullest->bound);
 }
 
 static void add_integrators(int integrating, int clipping, pw_text *out)
