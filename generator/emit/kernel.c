@@ -329,6 +329,14 @@ bool pw_kernel_choose(const pw_realisation *realisation, int section, const pw_t
     return true;
 }
 
+bool pw_kernel_same(const pw_kernel *a, const pw_kernel *b)
+{
+    if (strcmp(a->kernel, b->kernel) || a->values.rows != b->values.rows) return false;
+    for (int i = 0; i < a->values.rows; i++)
+        if (strcmp(a->values.row[i].name, b->values.row[i].name) || strcmp(a->values.row[i].text, b->values.row[i].text)) return false;
+    return true;
+}
+
 pw_status pw_kernel_text(const pw_kernel *kernel, const char *name, const char *form, pw_text *out)
 {
     pw_template_values values = kernel->values;

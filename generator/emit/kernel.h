@@ -32,6 +32,9 @@ bool pw_kernel_choose(const pw_realisation *realisation, int section, const pw_t
 /* The C form of the same section: always plain C. */
 bool pw_kernel_form(const pw_realisation *realisation, int section, pw_arena *arena, pw_kernel *out);
 
+/* Whether both are the same text but for its name. */
+bool pw_kernel_same(const pw_kernel *a, const pw_kernel *b);
+
 /* The text of the function, named so; form: the name of its C form, where it needs one. */
 PW_CHECKED pw_status pw_kernel_text(const pw_kernel *kernel, const char *name, const char *form, pw_text *out);
 

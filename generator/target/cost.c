@@ -52,7 +52,7 @@ static int state_words(const pw_words *w)
 }
 
 /* The columns of a row of the model. */
-enum { SECTION, PROVED, RIGHT, FIRST, CASCADE, FLASH_SECTION, FLASH_REST, STACK, COLUMNS };
+enum { SECTION, PROVED, RIGHT, BOTH, FIRST, CASCADE, FLASH_SECTION, FLASH_PROVED, FLASH_KERNEL, FLASH_REST, STACK, COLUMNS };
 
 /* The row of this name; false where the model has none. Values of a list stand as rows of one name. */
 static bool row_of(const pw_cost_model *model, const char *name, double row[COLUMNS])
@@ -73,6 +73,7 @@ static const char *row_name(const pw_stage *stage, const pw_realisation *r, int 
     pw_kernel form;
     if (!is_fixed(r) || structure != PW_DIRECT_1)
         return pw_arena_print(arena, "%s%s-%s", code, pw_sample_word(r->sample), pw_structure_word(structure));
+    if (r->wrap && r->sample == PW_Q15 && stage->arithmetic.standalone) return "q15-wrap-direct-1";
     bool narrow = r->coefficient_bits == 16 && (r->sample == PW_Q31 || !stage->arithmetic.standalone
                                                 || (pw_kernel_form(r, section, arena, &form) && form.narrow));
     return pw_arena_print(arena, "%s%s-%d-%s", code, pw_sample_word(r->sample), narrow ? 16 : 32, pw_structure_word(structure));
@@ -82,23 +83,35 @@ static double section_cycles(const pw_words *w, const double row[COLUMNS])
 {
     double total = row[SECTION];
     if (w->order == 0) return fmax(1, total / 2 + row[FIRST]);
+    bool right = w->structure != PW_COUPLED && w->b_fraction > w->a_fraction;
     if (w->cannot_clip) total += row[PROVED];
-    if (w->structure != PW_COUPLED && w->b_fraction > w->a_fraction) total += row[RIGHT];
+    if (right) total += row[RIGHT] + (w->cannot_clip ? row[BOTH] : 0);
     return w->order == 1 ? total + row[FIRST] : total;
 }
 
-static void from_model(const pw_stage *stage, const pw_realisation *r, const pw_cost_model *model, pw_cost *out)
+/* Whether an earlier section has the same kernel, so that this one needs no code of its own. */
+static bool same_kernel(const pw_realisation *r, int section, const pw_target *target, pw_arena *arena)
+{
+    pw_kernel mine, other;
+    if (!pw_kernel_choose(r, section, target, arena, &mine)) return true;
+    for (int i = 0; i < section; i++)
+        if (pw_kernel_choose(r, i, target, arena, &other) && pw_kernel_same(&mine, &other)) return true;
+    return false;
+}
+
+static void from_model(const pw_stage *stage, const pw_realisation *r, const pw_target *target, pw_cost *out)
 {
     pw_arena arena = {0};
     double total = 0, cascade = 0, flash = 0, rest = 0, stack = 0, row[COLUMNS];
     for (int i = 0; i < r->count; i++) {
-        if (!row_of(model, row_name(stage, r, i, &arena), row)) {
+        if (!row_of(target->cost, row_name(stage, r, i, &arena), row)) {
             pw_arena_free(&arena);
             return;
         }
         total += section_cycles(&r->section[i], row);
         if (i == 0) cascade = row[CASCADE];
-        flash += row[FLASH_SECTION];
+        flash += row[FLASH_SECTION] + (r->section[i].cannot_clip ? row[FLASH_PROVED] : 0);
+        if (stage->arithmetic.standalone && !same_kernel(r, i, target, &arena)) flash += row[FLASH_KERNEL];
         rest = fmax(rest, row[FLASH_REST]);
         stack = fmax(stack, row[STACK]);
     }
@@ -121,5 +134,5 @@ void pw_cost_estimate(const pw_stage *stage, const pw_realisation *realisation, 
     out->ram_bytes = (long)words * sample_bytes(r) + (is_fixed(r) ? 4 : 0);
     for (int i = 0; i < r->count; i++)
         if (r->section[i].structure == PW_DIRECT_1_SHAPED) out->ram_bytes += 8;      /* two errors, 32 bits each */
-    if (target->cost) from_model(stage, r, target->cost, out);
+    if (target->cost) from_model(stage, r, target, out);
 }

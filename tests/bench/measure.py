@@ -60,6 +60,7 @@ def emit(target, folder, name, sample, sections, bits=None, **more):
     ran = subprocess.run([PROBE], input=json.dumps(stage) + "\n", capture_output=True, text=True)
     if ran.returncode:
         raise RuntimeError(ran.stderr)
+    return json.loads(ran.stdout)
 
 
 def yard(sample, sections):

@@ -4,9 +4,9 @@
  * truncate, wrap, length, seed, peak, rate, target, input and output (low high zero bits rails),
  * sections: list of {structure, order, b, a, bf, af, k} or {sigma, omega, g, c1, c2, d, af, cf},
  * with cannot_clip and fits_32, or for floats {structure, order, b, a}; state: list of six numbers
- * a section. Prints for each: the clips of every signal, or the tolerance, as JSON, and "plays":
- * for each of the list "settle" what the simulation gives for the inputs "x", a list, after
- * settling there (null: from rest), with its clips. */
+ * a section. Prints for each: the clips of every signal, the tolerance and the estimate of cost, as
+ * JSON, and "plays": for each of the list "settle" what the simulation gives for the inputs "x", a
+ * list, after settling there (null: from rest), with its clips. */
 #include <jansson.h>
 #include <math.h>
 #include <stdio.h>
@@ -17,6 +17,7 @@
 #include "emit/signals.h"
 #include "emit/vectors.h"
 #include "simulate/simulate.h"
+#include "target/cost.h"
 
 static double number(json_t *o, const char *key, double otherwise)
 {
@@ -185,9 +186,13 @@ static json_t *tell(const pw_results *results)
                             json_integer((json_int_t)v[s].clipped));
     }
     double shift = pw_contraction_shift(results, v, PW_SIGNALS);
+    pw_cost cost;
+    pw_cost_estimate(results->stage, &results->realisation, &results->target, &cost);
     double tolerance = pw_float_tolerance(results, v, PW_SIGNALS, shift);
     for (int s = 0; s < PW_SIGNALS; s++) pw_vector_free(&v[s]);
-    return json_pack("{s:o, s:f}", "clips", clips, "tolerance", tolerance);
+    return json_pack("{s:o, s:f, s:f, s:I, s:I, s:I}", "clips", clips, "tolerance", tolerance, "cycles",
+                     isfinite(cost.cycles_per_sample) ? cost.cycles_per_sample : 0.0, "flash", (json_int_t)cost.flash_bytes,
+                     "ram", (json_int_t)cost.ram_bytes, "stack", (json_int_t)cost.stack_bytes);
 }
 
 int main(void)
