@@ -52,7 +52,7 @@ static int state_words(const pw_words *w)
 }
 
 /* The columns of a row of the model. */
-enum { SECTION, PROVED, RIGHT, BOTH, FIRST, CASCADE, FLASH_SECTION, FLASH_PROVED, FLASH_KERNEL, FLASH_REST, STACK, COLUMNS };
+enum { SECTION, PROVED, RIGHT, BOTH, FIRST, CASCADE, FLASH_SECTION, FLASH_KERNEL, PROVED_SECTION, PROVED_KERNEL, FLASH_REST, STACK, COLUMNS };
 
 /* The row of this name; false where the model has none. Values of a list stand as rows of one name. */
 static bool row_of(const pw_cost_model *model, const char *name, double row[COLUMNS])
@@ -99,6 +99,15 @@ static bool same_kernel(const pw_realisation *r, int section, const pw_target *t
     return false;
 }
 
+/* Whether an earlier section has the same row: what a cascade of that kind costs as such counts once. */
+static bool row_seen(const pw_stage *stage, const pw_realisation *r, int section, pw_arena *arena)
+{
+    const char *mine = row_name(stage, r, section, arena);
+    for (int i = 0; i < section; i++)
+        if (!strcmp(mine, row_name(stage, r, i, arena))) return true;
+    return false;
+}
+
 static void from_model(const pw_stage *stage, const pw_realisation *r, const pw_target *target, pw_cost *out)
 {
     pw_arena arena = {0};
@@ -109,9 +118,11 @@ static void from_model(const pw_stage *stage, const pw_realisation *r, const pw_
             return;
         }
         total += section_cycles(&r->section[i], row);
-        if (i == 0) cascade = row[CASCADE];
-        flash += row[FLASH_SECTION] + (r->section[i].cannot_clip ? row[FLASH_PROVED] : 0);
-        if (stage->arithmetic.standalone && !same_kernel(r, i, target, &arena)) flash += row[FLASH_KERNEL];
+        if (!row_seen(stage, r, i, &arena)) cascade += row[CASCADE];
+        bool proved = r->section[i].cannot_clip;
+        flash += row[proved ? PROVED_SECTION : FLASH_SECTION];
+        if (stage->arithmetic.standalone && !same_kernel(r, i, target, &arena))
+            flash += row[proved ? PROVED_KERNEL : FLASH_KERNEL];
         rest = fmax(rest, row[FLASH_REST]);
         stack = fmax(stack, row[STACK]);
     }

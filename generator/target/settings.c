@@ -5,7 +5,7 @@
 #include <yaml.h>
 
 #define MAX_DEPTH 4
-#define MAX_ROWS 256
+#define MAX_ROWS 2048
 
 typedef struct level { bool list; const char *key; } level;   /* key: of this map or list; "" the top */
 
@@ -33,7 +33,10 @@ static void add_row(reader *r, const char *key, const char *text, pw_where at)
 {
     for (int i = 0; i < r->out->rows && !r->stack[r->depth - 1].list; i++)
         if (!strcmp(r->out->row[i].key, key)) pw_error(r->messages, at, "'%s' stands twice; once is enough", key);
-    if (r->out->rows == MAX_ROWS) return;
+    if (r->out->rows == MAX_ROWS) {
+        pw_error(r->messages, at, "more than %d values; what is all this?", MAX_ROWS);
+        return;
+    }
     r->out->row[r->out->rows++] = (pw_setting){key, pw_arena_copy(r->arena, text), at, false};
 }
 

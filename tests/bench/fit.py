@@ -4,8 +4,8 @@ targets/<name>/settings.yaml. Usage: fit.py [TARGET ...]; tests/bench/test_cost.
 
 A row is [a section, what a proof against clipping changes, what a right shift of b changes, what
 both change together besides, what first order changes, a cascade as such]: instructions (AVR: cycles)
-a sample, in blocks of 64; [a section, what a proof changes, each further kernel, all else]: bytes of
-flash; and bytes of stack, which floats of the library make deeper."""
+a sample, in blocks of 64; bytes of flash [a section, a kernel, a proved section, its kernel, all
+else]; and bytes of stack, which floats of the library make deeper."""
 import os
 import re
 import sys
@@ -72,12 +72,14 @@ def row(target, key, shape):
     right = other(shift=2) if shifts else four
     both = other(shift=2, proved=1) if shifts else proved
     first = other(order=1) if direct else four
-    mixed = other(shift=[0, 2, 0, 2]) if shifts else four
+    mixed = other(shift=[0, 2, 0, 2])[1] - (four[1] + right[1]) / 2 if shifts else 0
+    mixed_proved = other(shift=[0, 2, 0, 2], proved=1)[1] - (proved[1] + both[1]) / 2 if shifts else 0
+    one_proved = measured(target, shape, 1, key, proved=1)[1] if fixed else got[1][1]
     cycles = [section, *((v[0] - four[0]) / 4 for v in (proved, right)), (both[0] - proved[0] - right[0] + four[0]) / 4,
               (first[0] - four[0]) / 4, cascade]
-    per_section = (four[1] - got[1][1]) / 3
-    kernel = max(0, mixed[1] - (four[1] + right[1]) / 2)
-    return cycles, [per_section, (proved[1] - four[1]) / 4, kernel, got[1][1] - per_section - kernel, four[2]]
+    flash = [(four[1] - got[1][1]) / 3, max(0, mixed), (proved[1] - one_proved) / 3, max(0, mixed_proved)]
+    rest = (got[1][1] - flash[0] - flash[1] + one_proved - flash[2] - flash[3]) / 2
+    return cycles, [*flash, rest, four[2]]
 
 
 def write(target, rows):

@@ -46,8 +46,8 @@ def section(k, sample, proved, shift=0, structure=None, bits=None, order=2):
     if structure == "coupled":
         radius, angle = POLES[k]
         sigma, omega = radius * math.cos(angle), radius * math.sin(angle)
-        return dict({name: round(v * 2.0 ** f) for name, v in dict(sigma=sigma, omega=omega, g=0.1, c1=0.3, c2=-0.2,
-                                                                  d=0.1).items()},
+        return dict({name: round(v * 2.0 ** f) for name, v in dict(sigma=sigma, omega=omega, g=0.2 + 0.013 * k,
+                                                                  c1=0.83 - 0.07 * k, c2=-0.71 + 0.05 * k, d=0.37 - 0.03 * k).items()},
                     structure="coupled", order=2, af=f, cf=f, cannot_clip=int(proved))
     return {"structure": structure or "direct-1", "order": order, "b": [round(v * 2.0 ** (f + shift)) for v in b],
             "a": [round(v * 2.0 ** f) for v in a], "bf": f + shift, "af": f, "cannot_clip": int(proved),
