@@ -141,6 +141,23 @@ static bool choose_armv7(const facts *given, pw_kernel *k)
     return true;
 }
 
+/* The vector unit takes four taps at once. It adds both roundings before the shift of b, or none. */
+static bool choose_vector(const facts *given, pw_kernel *k)
+{
+    facts f = *given;
+    int32_t b[3];
+    fold_left(&f, b);
+    if (f.q15 || f.wrap || f.left || f.right > 32 || f.F == 0 || (f.right && f.half && !folds(&f))) return false;
+    *k = (pw_kernel){.file = "armv8.1-m", .kernel = "vector", .values = k->values, .multiple = 2, .clamps = f.clips,
+                     .needs_form = f.clips, .why = "64-bit sum by multiply and add across a vector"};
+    set_common(&k->values, &f);
+    take_words(k, b, f.w->a);
+    uint64_t added = f.right ? (uint64_t)f.right_half + ((uint64_t)f.half << f.right) : (uint64_t)f.half;
+    set_bits(&k->values, "round_low", "round_low2", (uint32_t)added);
+    set_bits(&k->values, "round_high", "round_high2", (uint32_t)(added >> 32));
+    return true;
+}
+
 static bool choose_armv6(const facts *given, pw_kernel *k)
 {
     facts f = *given;
@@ -314,6 +331,7 @@ bool pw_kernel_choose(const pw_realisation *realisation, int section, const pw_t
     case PW_ARMV7E_M:
     case PW_ARMV8_1_M:
         if (fits_32(&f)) return choose_narrow(&f, target, out);
+        if (target->has_vector && choose_vector(&f, out)) return true;
         if (choose_armv7(&f, out)) return true;
         break;
     case PW_ARMV6_M:

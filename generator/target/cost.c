@@ -52,7 +52,7 @@ static int state_words(const pw_words *w)
 }
 
 /* The columns of a row of the model. */
-enum { SECTION, PROVED, RIGHT, BOTH, FIRST, CASCADE, FLASH_SECTION, FLASH_KERNEL, PROVED_SECTION, PROVED_KERNEL, FLASH_REST, STACK, COLUMNS };
+enum { SECTION, PROVED, RIGHT, BOTH, FIRST, ONE_ERROR, CASCADE, FLASH_SECTION, FLASH_KERNEL, PROVED_SECTION, PROVED_KERNEL, FLASH_REST, STACK, COLUMNS };
 
 /* The row of this name; false where the model has none. Values of a list stand as rows of one name. */
 static bool row_of(const pw_cost_model *model, const char *name, double row[COLUMNS])
@@ -86,6 +86,7 @@ static double section_cycles(const pw_words *w, const double row[COLUMNS])
     bool right = w->structure != PW_COUPLED && w->b_fraction > w->a_fraction;
     if (w->cannot_clip) total += row[PROVED];
     if (right) total += row[RIGHT] + (w->cannot_clip ? row[BOTH] : 0);
+    if (w->structure == PW_DIRECT_1_SHAPED && w->k2 == 0) total += row[ONE_ERROR];
     return w->order == 1 ? total + row[FIRST] : total;
 }
 

@@ -3,7 +3,8 @@
 targets/<name>/settings.yaml. Usage: fit.py [TARGET ...]; tests/bench/test_cost.py checks the result.
 
 A row is [a section, what a proof against clipping changes, what a right shift of b changes, what
-both change together besides, what first order changes, a cascade as such]: instructions (AVR: cycles)
+both change together besides, what first order changes, what feedback of one error instead of two
+changes, a cascade as such]: instructions (AVR: cycles)
 a sample, in blocks of 64; bytes of flash [a section, a kernel, a proved section, its kernel, all
 else]; and bytes of stack, which floats of the library make deeper."""
 import os
@@ -41,7 +42,7 @@ def measured(target, shape, n, tag, **how):
     sample, bits, structure, standalone, wrap = shape
     shift = how.get("shift", 0)
     sections = [measure.section(k, sample, how.get("proved", 0), shift[k] if isinstance(shift, list) else shift, structure,
-                                bits or None, how.get("order", 2)) for k in range(n)]
+                                bits or None, how.get("order", 2), how.get("errors", 2)) for k in range(n)]
     got = measure.count(target, sample, sections, tag=f"fit{tag}", bits=bits, standalone=standalone, wrap=wrap)
     return got[0] / 64, got[4], got[3]
 
@@ -72,11 +73,12 @@ def row(target, key, shape):
     right = other(shift=2) if shifts else four
     both = other(shift=2, proved=1) if shifts else proved
     first = other(order=1) if direct else four
+    one_error = other(errors=1) if structure == "direct-1-shaped" else four
     mixed = other(shift=[0, 2, 0, 2])[1] - (four[1] + right[1]) / 2 if shifts else 0
     mixed_proved = other(shift=[0, 2, 0, 2], proved=1)[1] - (proved[1] + both[1]) / 2 if shifts else 0
     one_proved = measured(target, shape, 1, key, proved=1)[1] if fixed else got[1][1]
     cycles = [section, *((v[0] - four[0]) / 4 for v in (proved, right)), (both[0] - proved[0] - right[0] + four[0]) / 4,
-              (first[0] - four[0]) / 4, cascade]
+              (first[0] - four[0]) / 4, (one_error[0] - four[0]) / 4, cascade]
     flash = [(four[1] - got[1][1]) / 3, max(0, mixed), (proved[1] - one_proved) / 3, max(0, mixed_proved)]
     rest = (got[1][1] - flash[0] - flash[1] + one_proved - flash[2] - flash[3]) / 2
     return cycles, [*flash, rest, four[2]]

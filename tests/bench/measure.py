@@ -13,7 +13,7 @@ sys.path.insert(0, os.path.join(HERE, "..", "targets"))
 import harness  # noqa: E402
 from tap import ROOT  # noqa: E402
 
-PROBE = ROOT + "/build/release/outside/probe_emit"
+PROBE = os.environ.get("PW_PROBE", ROOT + "/build/release/outside/probe_emit")
 TYPES = {"q15": "int16_t", "q31": "int32_t", "float32": "float", "float64": "double"}
 
 # Eight generic sections, five different values each; L1 gain below 1, so that none of them can clip.
@@ -34,7 +34,7 @@ def reals(k):
     return [v * 0.9 / total for v in raw], a
 
 
-def section(k, sample, proved, shift=0, structure=None, bits=None, order=2):
+def section(k, sample, proved, shift=0, structure=None, bits=None, order=2, errors=2):
     """A section of this shape; shift: how many fraction bits b has more than a."""
     b, a = reals(k)
     if order == 1:
@@ -51,7 +51,7 @@ def section(k, sample, proved, shift=0, structure=None, bits=None, order=2):
                     structure="coupled", order=2, af=f, cf=f, cannot_clip=int(proved))
     return {"structure": structure or "direct-1", "order": order, "b": [round(v * 2.0 ** (f + shift)) for v in b],
             "a": [round(v * 2.0 ** f) for v in a], "bf": f + shift, "af": f, "cannot_clip": int(proved),
-            "k": [1, 1] if structure == "direct-1-shaped" else [0, 0]}
+            "k": [1, errors - 1] if structure == "direct-1-shaped" else [0, 0]}
 
 
 def emit(target, folder, name, sample, sections, bits=None, **more):
