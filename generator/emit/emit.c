@@ -186,6 +186,21 @@ static const char *member_of(const void *of, const pw_words *w, int k)
     return name ? pw_arena_print(e->arena, "s->%s", name) : NULL;
 }
 
+/* The step in the instructions of the part, or the plain one; floats have both, because a compiler may
+ * be told to pass them in other registers. */
+static pw_status step(const pw_emission *e, const pw_cascade *kernels, pw_code *file)
+{
+    pw_text text = {0};
+    bool done = false, floats = pw_cascade_floats_fit(kernels);
+    pw_status status = e->part_kernels ? pw_kernel_step(e->r, e->target, e->stage, &text, &done)
+                     : floats ? pw_kernel_step_float(e->r, e->target, e->stage, &text, &done) : PW_OK;
+    if (done) pw_raw(file, pw_arena_copy(e->arena, pw_text_string(&text)));
+    if (!done || floats) pw_put(pw_function(file, "@ $_step($_state *s, @ x)"), "return $_cascade(s, x);");
+    if (done && floats) pw_directive(file, "#endif");
+    pw_text_free(&text);
+    return status;
+}
+
 /* Sample by sample: every section has a step. On a part with kernels these make the block. */
 static pw_status stepping(const pw_emission *e, pw_code *file)
 {
@@ -196,8 +211,8 @@ static pw_status stepping(const pw_emission *e, pw_code *file)
         pw_put(pw_section_group(f, k + 1), "x = $_section_#(s, x);");
     pw_put(f, "return x;");
     pw_blank(file);
-    f = pw_function(file, "@ $_step($_state *s, @ x)");
-    pw_put(f, "return $_cascade(s, x);");
+    pw_status status = step(e, &kernels, file);
+    if (status) return status;
     if (pw_cascade_fits(&kernels)) return pw_cascade_emit(&kernels, file);
     pw_blank(file);
     if (pw_cascade_floats_fit(&kernels))

@@ -32,6 +32,17 @@ bool pw_kernel_choose(const pw_realisation *realisation, int section, const pw_t
 /* The C form of the same section: always plain C. */
 bool pw_kernel_form(const pw_realisation *realisation, int section, pw_arena *arena, pw_kernel *out);
 
+/* $_step of a cascade all of whose sections have this family's kernels, as one function with its
+ * words in it; state is s->d. clipped: offset of the counter in the state. False where the part or a
+ * section has none. */
+PW_CHECKED pw_status pw_kernel_step(const pw_realisation *realisation, const pw_target *target, const char *name,
+                                    pw_text *out, bool *done);
+
+/* The same for floats in transposed direct form II on an Arm core with a floating-point unit; ends with
+ * "#else", after which the plain step and "#endif" must follow. State: s1 (and s2) of each section. */
+PW_CHECKED pw_status pw_kernel_step_float(const pw_realisation *realisation, const pw_target *target, const char *name,
+                                          pw_text *out, bool *done);
+
 /* Whether both are the same text but for its name. */
 bool pw_kernel_same(const pw_kernel *a, const pw_kernel *b);
 

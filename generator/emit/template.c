@@ -190,7 +190,7 @@ static void collect(expansion *e, const char *text)
         if (!strncmp(text, "@kernel ", 8)) {
             inside = n - 8 == strlen(e->kernel) && !strncmp(text + 8, e->kernel, n - 8);
             found = found || inside;
-        } else if (inside && *text != '#' && e->lines < MAX_LINES)
+        } else if (inside && (*text != '#' || isalpha((unsigned char)text[1])) && e->lines < MAX_LINES)
             e->line[e->lines++] = pw_arena_print(&e->arena, "%.*s", (int)n, text);
         text += n + (text[n] == '\n');
     }

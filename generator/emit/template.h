@@ -2,7 +2,7 @@
 /* Kernels that are written once, by hand, for one family of parts, stand in runtime/kernels/ as
  * text with a few holes. This fills the holes.
  *
- *   # ..                      a comment for the reader of the kernel file, dropped
+ *   # ..                      a comment for the reader of the kernel file, dropped (#if .. stays)
  *   @kernel NAME              the lines up to the next @kernel
  *   @if NAME / @else / @end   kept where the value NAME is not 0 (@if !NAME: where it is); NAME may be a number
  *   @body NAME p q .. / @end  lines for later use
