@@ -74,7 +74,7 @@ static void write_bash(pw_text *out)
     pw_text_add(out, "--help --version' -- \"$word\"))\n        return\n    fi\n"
                      "    if [ \"$before\" = -o ]; then\n        COMPREPLY=($(compgen -d -- \"$word\"))\n        return\n    fi\n"
                      "    if [ \"$before\" = --target ]; then\n"
-                     "        COMPREPLY=($(compgen -W \"$(polewright targets --quiet 2>/dev/null)\" -- \"$word\"))\n        return\n    fi\n"
+                     "        COMPREPLY=($(compgen -W \"$(polewright targets 2>/dev/null | sed -n 's/^\\([^ ][^ ]*\\).*/\\1/p')\" -- \"$word\"))\n        return\n    fi\n"
                      "    if [ \"$before\" = --color ]; then\n        COMPREPLY=($(compgen -W 'auto always never' -- \"$word\"))\n"
                      "        return\n    fi\n    case $word in\n    -*)\n        local own=\n        case $verb in\n");
     for (int i = 0; i < pw_verb_count; i++) {

@@ -11,6 +11,7 @@
 #include "report/table.h"
 
 #define SCREEN 24             /* lines */
+#define WIDTH 100             /* columns */
 #define MOST_POLES 6          /* rows of them; half as many beside a plot */
 #define MOST_ZEROS 4
 #define MOST_ROWS 13          /* of the response */
@@ -127,14 +128,17 @@ static void put_gain(const pw_roots *analog, const pw_style *style, pw_text *out
 {
     int low = 20 * (zeros_at_origin(analog) - pw_analog_integrators(analog));
     int high = 20 * (analog->zeros - analog->poles);
+    pw_text body = {0};
     pw_text_print(out, "%sGain%s\n  ", style->strong, style->plain);
     if (!low) {
         double complex dc = pw_roots_at(analog, 0);
-        pw_text_print(out, "%.6g (%.3f dB) at 0 Hz", creal(dc), tidy(pw_show_at(analog, 0).db, 3));
-    } else pw_text_add(out, low < 0 ? "without end at 0 Hz" : "none at 0 Hz");
-    add_slope("; towards 0 Hz", low, out);
-    add_slope("; towards infinity", high, out);
-    pw_text_print(out, "; factor %.9Lg\n", analog->factor);
+        pw_text_print(&body, "%.6g (%.3f dB) at 0 Hz", creal(dc), tidy(pw_show_at(analog, 0).db, 3));
+    } else pw_text_add(&body, low < 0 ? "without end at 0 Hz" : "none at 0 Hz");
+    add_slope("; towards 0 Hz", low, &body);
+    add_slope("; towards infinity", high, &body);
+    pw_text_print(&body, "; factor %.9Lg", analog->factor);
+    pw_text_wrap(pw_text_string(&body), 2, WIDTH, out);
+    pw_text_free(&body);
 }
 
 /* ---- response ---- */

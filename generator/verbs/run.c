@@ -29,8 +29,8 @@ const pw_option pw_common_options[] = {
 #define COMMON (OPTION_EXTRA - OPTION_SET)
 
 const char pw_exit_statuses[] =
-    "0 done and every limit met; 1 done, and some limit is not met; 2 the command line or the\n"
-    "stage file is wrong; 3 the work could not be done";
+    "0 done and every limit met; 1 done, and some limit is not met; 2 the command line or\n"
+    "the stage file is wrong; 3 the work could not be done";
 
 static void print_options(const pw_option *option)
 {

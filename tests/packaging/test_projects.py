@@ -81,6 +81,9 @@ def test_completion(root):
     tap.check("--no-plots" not in complete("polewright check stage.yaml --"), "and no option of another")
     tap.check("stage.yaml" in complete("polewright build s"), "a stage file")
     tap.check("cortex-m4f" in complete("polewright build stage.yaml --target cortex-m"), "a target")
+    names = {os.path.basename(os.path.dirname(f)) for f in glob.glob(tap.ROOT + "/targets/*/settings.yaml")}
+    tap.check(complete("polewright build stage.yaml --target ") == names, "and nothing but targets",
+              str(complete("polewright build stage.yaml --target ") ^ names))
     if shutil.which("zsh"):
         ran = sh(f"zsh -n {root}/share/zsh/site-functions/_polewright", tap.ROOT)
         tap.check(ran.returncode == 0, "zsh reads its completion", ran.stderr)
