@@ -275,6 +275,8 @@ void pw_phrase_integrator(const pw_results *results, const pw_node *node, pw_tex
                       " of the other sign", pw_samples(code, node->samples_to_clip_code, rate));
 }
 
+#define CYCLES_RULE 3         /* times the rms: beyond the crest of a noise, more or less */
+
 void pw_phrase_noise(const pw_results *results, pw_text *out)
 {
     const pw_noise *n = &results->realisation.noise;
@@ -291,6 +293,9 @@ void pw_phrase_noise(const pw_results *results, pw_text *out)
     pw_text_print(out, "%.3g LSB rms at the output (%.1f dBFS), offset %.3g LSB, SNR %.1f dB,"
                   " %.1f effective bits", n->output_rms_lsb, n->output_dbfs, offset, n->snr_db,
                   n->effective_bits);
+    /* Rounding passes for white noise only where the words move by many units a sample. */
+    if (results->realisation.limit_cycle.found_lsb > CYCLES_RULE * n->output_rms_lsb)
+        pw_text_add(out, "; quiet or slow inputs add to it, as Cycles says");
 }
 
 void pw_phrase_limit_cycle(const pw_results *results, pw_text *out)
@@ -300,12 +305,13 @@ void pw_phrase_limit_cycle(const pw_results *results, pw_text *out)
         pw_text_add(out, "no figure for floats");
         return;
     }
-    if (isfinite(l->bound_lsb)) pw_text_print(out, "proved at most %.3g LSB; ", l->bound_lsb);
+    if (isfinite(l->bound_lsb))
+        pw_text_print(out, "proved at most %.10g LSB; ", ceil(l->bound_lsb * 10) / 10);
     else pw_text_add(out, "no bound after an integrator; ");
     if (!l->found_period) pw_text_add(out, "the search found none");
     else if (l->found_period == 1)
-        pw_text_print(out, "the search found a constant of %.3g LSB", l->found_lsb);
-    else pw_text_print(out, "the search found %.3g LSB with a period of %d samples", l->found_lsb,
+        pw_text_print(out, "the search found a constant of %.4g LSB", l->found_lsb);
+    else pw_text_print(out, "the search found %.4g LSB with a period of %d samples", l->found_lsb,
                        l->found_period);
 }
 

@@ -81,6 +81,20 @@ static void the_screen_says_what_matters(void **state)
     pw_text_free(&text);
 }
 
+static void cycles_beyond_the_noise_are_told_beside_it(void **state)
+{
+    (void)state;
+    pw_text text = written(false, false);
+    assert_null(strstr(pw_text_string(&text), "quiet or slow inputs"));
+    pw_text_free(&text);
+    results.realisation.limit_cycle.found_lsb = 476;
+    results.realisation.limit_cycle.bound_lsb = 8444.51;
+    text = written(false, false);
+    assert_has(&text, "quiet or slow inputs");
+    assert_has(&text, "proved at most 8444.6 LSB");
+    pw_text_free(&text);
+}
+
 static void fill_to_the_brim(void)
 {
     static pw_spread spread = {.seed = UINT64_MAX, .draws = 1000000, .drawn = 1000000, .parts = 47,
@@ -278,7 +292,8 @@ static void equal_roots_are_one_group(void **state)
 int main(void)
 {
     const struct CMUnitTest tests[] = {
-        TEST(the_screen_says_what_matters), TEST(the_screen_is_a_screen_even_when_there_is_much),
+        TEST(the_screen_says_what_matters), TEST(cycles_beyond_the_noise_are_told_beside_it),
+        TEST(the_screen_is_a_screen_even_when_there_is_much),
         TEST(the_whole_has_every_table), TEST(color_adds_nothing_to_the_words),
         TEST(the_range_says_how_far_it_holds),
         TEST(floats_claim_no_round_off), TEST(the_verdict_counts), TEST(nodes_come_fullest_first),
