@@ -240,7 +240,8 @@ static pw_status solve(fitting *f, double *scatter)
     gsl_vector_free(z);
     gsl_matrix_free(covariance);
     if (good) return PW_OK;
-    fprintf(stderr, "polewright: --calibrate: the fit does not converge\n");
+    fputs("polewright: --calibrate: the fit does not converge; the data may be of another stage, "
+          "or show too little of this one\n", stderr);
     return PW_FAILED;
 }
 

@@ -206,8 +206,10 @@ static void put_fitted(const pw_fitted *f, pw_table *table)
     if (isnan(f->whole_error)) pw_table_cell(table, "%s", "not known");
     else pw_table_cell(table, "+- %.2g %%", 100 * f->whole_error / fabs(f->value));
     if (held) pw_table_cell(table, "%s", "held at nominal");
+    else if (f->at_bound)
+        pw_table_cell(table, "%s", "at the end of its tolerance: the data ask for more");
     else if (f->held > 0.01) pw_table_cell(table, "%.0f %% of it held", 100 * f->held);
-    else pw_table_cell(table, "%s", f->at_bound ? "at the end of its tolerance" : "");
+    else pw_table_cell(table, "%s", "");
 }
 
 /* Directions as relative changes of the values, brought to echelon form (Gauss and Jordan): the
