@@ -2,6 +2,8 @@
 #include "report/response.h"
 
 #include <math.h>
+#include <stdbool.h>
+#include <stdlib.h>
 
 #include "discrete/errors.h"
 #include "discrete/longs.h"
@@ -130,14 +132,61 @@ static void fill_row(const sides *all, double hz, pw_response_row *row)
     row->digital_delay_s = realised_delay(all, hz);
 }
 
+static void add_row(pw_response *out, const double span[2], double hz)
+{
+    if (hz > span[0] && hz < span[1] && out->rows < PW_RESPONSE_ROWS) out->row[out->rows++].hz = hz;
+}
+
+/* What lies between two log-spaced rows would be missing in a plot: the neighbourhood of narrow pairs. */
+static void add_pair(pw_response *out, const double span[2], double complex root)
+{
+    static const double away[] = {-6, -3, -1.5, -0.7, -0.3, 0, 0.3, 0.7, 1.5, 3, 6};
+    double hz = fabs(cimag(root)) / (2 * M_PI), half_width = fabs(creal(root)) / (2 * M_PI);
+    if (cimag(root) <= 0 || half_width > hz / 6) return;
+    bool on_axis = half_width < hz * 1e-3;       /* there the curve is a spike, as high as one looks closely */
+    half_width = fmax(half_width, hz * 1e-3);
+    for (size_t i = 0; i < sizeof away / sizeof *away; i++)
+        if (!on_axis || fabs(away[i]) >= 1) add_row(out, span, hz + away[i] * half_width);
+}
+
+static void add_peaks(pw_response *out, const double span[2])
+{
+    const pw_error_figures *const list[] = {&out->total, &out->quantisation, &out->transform};
+    for (int i = 0; i < 3; i++) {
+        add_row(out, span, list[i]->magnitude_db.at_hz);
+        add_row(out, span, list[i]->phase_deg.at_hz);
+        add_row(out, span, list[i]->delay_s.at_hz);
+    }
+}
+
+static int by_frequency(const void *a, const void *b)
+{
+    double left = ((const pw_response_row *)a)->hz, right = ((const pw_response_row *)b)->hz;
+    return (left > right) - (left < right);
+}
+
+static void add_between(const pw_roots *analog, const double span[2], pw_response *out)
+{
+    add_peaks(out, span);
+    for (int i = 0; i < analog->zeros; i++) add_pair(out, span, analog->zero[i]);
+    for (int i = 0; i < analog->poles; i++) add_pair(out, span, analog->pole[i]);
+    qsort(out->row, (size_t)out->rows, sizeof *out->row, by_frequency);
+    int kept = 1;
+    for (int i = 1; i < out->rows; i++)
+        if (out->row[i].hz > out->row[kept - 1].hz * (1 + 1e-9)) out->row[kept++].hz = out->row[i].hz;
+    out->rows = kept;
+}
+
 static void fill_table(const sides *all, pw_response *out)
 {
     double high = fmin(2 * out->band_hz[1], 0.495 * all->rate_hz);
     if (high < out->band_hz[1]) high = out->band_hz[1];
     double low = out->band_hz[0] > 0 ? out->band_hz[0] / 2 : high * 1e-5;
-    out->rows = PW_RESPONSE_ROWS;
+    out->rows = PW_RESPONSE_SPACED;
     for (int i = 0; i < out->rows; i++)
-        fill_row(all, low * pow(high / low, (double)i / (out->rows - 1)), &out->row[i]);
+        out->row[i].hz = low * pow(high / low, (double)i / (PW_RESPONSE_SPACED - 1));
+    add_between(all->analog, (const double[]){low, high}, out);
+    for (int i = 0; i < out->rows; i++) fill_row(all, out->row[i].hz, &out->row[i]);
 }
 
 void pw_response_analyse(const pw_stage *stage, const pw_roots *analog, const pw_digital *digital,

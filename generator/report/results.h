@@ -11,12 +11,14 @@ typedef struct pw_response_row {
     double analog_delay_s, digital_delay_s;
 } pw_response_row;
 
-#define PW_RESPONSE_ROWS 241
+#define PW_RESPONSE_SPACED 241                         /* rows that are log-spaced */
+#define PW_RESPONSE_ROWS 600
 
 typedef struct pw_response {
     double band_hz[2];
     pw_error_figures transform, quantisation, total;   /* over the band, above the floor */
-    pw_response_row row[PW_RESPONSE_ROWS];             /* log-spaced over the band and a little beyond */
+    pw_response_row row[PW_RESPONSE_ROWS];             /* over the band and a little beyond, by frequency: log-spaced,
+                                                          beside narrow roots, and where errors are largest */
     int rows;
 } pw_response;
 

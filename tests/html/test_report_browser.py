@@ -92,7 +92,8 @@ def check_crosshair(page, path, report):
         return [b.left, b.top, b.width, JSON.parse(document.getElementById('rows').textContent).left,
                 JSON.parse(document.getElementById('rows').textContent).right];""")
     wanted = 37
-    x = box[3] + (box[4] - box[3]) * wanted / (len(rows) - 1)
+    hz = [row["hz"] for row in rows]
+    x = box[3] + (box[4] - box[3]) * math.log(hz[wanted] / hz[0]) / math.log(hz[-1] / hz[0])
     page.point(box[0] + x * box[2] / 480, box[1] + 100)
     check_reading(page, rows[int(page.run("return document.getElementById('cursor').value"))], "pointer")
     moved = int(page.run("return document.getElementById('cursor').value"))
