@@ -343,6 +343,8 @@ bool pw_kernel_choose(const pw_realisation *realisation, int section, const pw_t
     default: break;
     }
     if (!pw_kernel_form(realisation, section, arena, out)) return false;
+    /* Inlined, its words would be seen, and multiplied by shifts and additions that cost more. */
+    pw_template_set(&out->values, "attribute", "__attribute__((used, noinline)) ");
     pw_template_set_number(&out->values, "hide", target->instructions != PW_ANY && !out->narrow && f.clips);
     return true;
 }

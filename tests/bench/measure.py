@@ -13,7 +13,7 @@ sys.path.insert(0, os.path.join(HERE, "..", "targets"))
 import harness  # noqa: E402
 from tap import ROOT  # noqa: E402
 
-PROBE = os.environ.get("PW_PROBE", ROOT + "/build/release/outside/probe_emit")
+PROBE = ROOT + "/build/release/outside/probe_emit"
 TYPES = {"q15": "int16_t", "q31": "int32_t", "float32": "float", "float64": "double"}
 
 # Eight generic sections, five different values each; L1 gain below 1, so that none of them can clip.
