@@ -28,6 +28,18 @@ static int clipping_nodes(const pw_realisation *realisation)
     return n;
 }
 
+/* dB. Rounding is taken for white noise, which quiet and slow inputs do not make of it: where the
+ * search found a cycle that is louder than that noise, the cycle's rms counts. Floats have no
+ * round-off figure of the fixed-point kind: nothing to judge. */
+static double round_off_below_full_scale(const pw_realisation *r)
+{
+    if (!r->noise.given) return INFINITY;
+    double lsb = r->sample == PW_Q15 ? 0x1p-15 : 0x1p-31;
+    double cycle = r->limit_cycle.given && r->limit_cycle.found_lsb > 0
+                 ? 20 * log10(r->limit_cycle.found_lsb * lsb) : -INFINITY;   /* a sine of that peak */
+    return -fmax(r->noise.output_dbfs, cycle);
+}
+
 void pw_judge(pw_results *results)
 {
     const pw_limits *limits = &results->stage->limits;
@@ -38,8 +50,7 @@ void pw_judge(pw_results *results)
     at_most(results, "phase", &limits->phase_deg, error->phase_deg.max, "deg");
     at_most(results, "delay", &limits->delay_s, error->delay_s.max, "s");
     if (limits->noise_db.given) {
-        /* Floats have no round-off figure of the fixed-point kind: nothing below full scale to judge. */
-        double below = results->realisation.noise.given ? -results->realisation.noise.output_dbfs : INFINITY;
+        double below = round_off_below_full_scale(&results->realisation);
         bool met = !results->realisation.noise.grows && below >= fabs(limits->noise_db.value);
         add(results, "noise", fabs(limits->noise_db.value), below, "dB below FS", met);
     }

@@ -74,13 +74,14 @@ void pw_phrase_candidate(const pw_candidate *c, pw_text *out)
 
 void pw_phrase_choice(const pw_digital *digital, pw_text *out)
 {
-    char figure[PW_FIGURE_ROOM];
+    char figure[PW_FIGURE_ROOM], phase[PW_FIGURE_ROOM];
     const pw_candidate *next = &digital->candidate[1];
     if (digital->candidates < 2) return;
     pw_text_print(out, "best of %d tried", digital->candidates);
     if (next->possible)
-        pw_text_print(out, ", next %s with %s", pw_method_word(next->method),
-                      pw_figure(figure, next->magnitude_error_db, "dB"));
+        pw_text_print(out, ", next %s with %s and %s", pw_method_word(next->method),
+                      pw_figure(figure, next->magnitude_error_db, "dB"),
+                      pw_figure(phase, next->phase_error_deg, "deg"));
 }
 
 void pw_phrase_arithmetic(const pw_realisation *r, pw_text *out)

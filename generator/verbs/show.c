@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 #include <stdio.h>
+#include <string.h>
 
 #include "analog/cell.h"
 #include "analog/sensitivity.h"
@@ -7,6 +8,8 @@
 #include "verbs/analysis.h"
 
 enum { PLOT, CELLS };
+
+#define SCREEN 40                /* lines */
 
 static const pw_option options[] = {
     {"plot", NULL, "add a small plot of the magnitude"},
@@ -21,6 +24,27 @@ static pw_status list_cells(void)
     pw_say(&out);
     pw_text_free(&out);
     return PW_OK;
+}
+
+static int lines_of(const pw_text *text)
+{
+    int n = 0;
+    for (const char *p = pw_text_string(text); *p; p++) n += *p == '\n';
+    return n;
+}
+
+/* Adds what the schematic says. The tables of a large one would push the rest off the screen: then
+ * only its first lines, up to the tables, and how to see them. */
+static void add_circuit(const pw_call *call, const pw_stage *stage, pw_text *out)
+{
+    pw_text circuit = {0};
+    pw_circuit_show(stage, &circuit);
+    const char *tables = strstr(pw_text_string(&circuit), "  sensitivity to each part");
+    if (tables && !call->verbose && lines_of(out) + lines_of(&circuit) > SCREEN) {
+        pw_text_add_bytes(out, pw_text_string(&circuit), (size_t)(tables - pw_text_string(&circuit)));
+        pw_text_add(out, "  how far each part moves poles, zeros and gain: add --verbose\n");
+    } else pw_text_add(out, pw_text_string(&circuit));
+    pw_text_free(&circuit);
 }
 
 static pw_status run(const pw_call *call)
@@ -38,7 +62,7 @@ static pw_status run(const pw_call *call)
         if (call->json) pw_show_json(&analysis.stage, &analysis.results.analog, &out);
         else {
             pw_show_text(&analysis.stage, &analysis.results.analog, call->extra[PLOT], call->color, &out);
-            pw_circuit_show(&analysis.stage, &out);
+            add_circuit(call, &analysis.stage, &out);
         }
         pw_say(&out);
         pw_text_free(&out);
@@ -52,6 +76,5 @@ const pw_verb pw_verb_show = {
     .run = run, .takes_stage = true, .option = options,
     .examples = "  polewright show stage.yaml\n"
                 "  polewright show stage.yaml --plot\n"
-                "  polewright show --cells\n"
-,
+                "  polewright show --cells\n",
 };

@@ -69,8 +69,9 @@ void pw_line_of_words(const pw_words *words, pw_line *line);
 /* ---- scale.c ---- */
 
 /* Gains of the sections of a realisation: ideal[] monic, words not yet chosen. factor: of the
- * whole, from sample to sample. gain[k] multiplies section k; their product is factor. */
+ * whole, from sample to sample. margin, below 1: what of the largest sample an output may take.
+ * gain[k] multiplies section k; their product is factor. */
 void pw_scale_gains(const pw_format *format, const pw_realisation *r, long double factor,
-                    long double gain[]);
+                    long double margin, long double gain[]);
 
 #endif

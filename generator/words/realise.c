@@ -106,11 +106,10 @@ static void set_up(pw_job *j, const pw_stage *stage, const pw_digital *digital, 
     pw_band_make(stage, &digital->z, &j->band);
 }
 
-pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_digital *digital,
-                     const pw_target *target, pw_realisation *out, pw_messages *messages)
+static pw_status attempt(const pw_stage *stage, const pw_digital *digital, long double margin,
+                         pw_realisation *out, pw_messages *messages)
 {
     pw_job j;
-    (void)analog, (void)target;
     set_up(&j, stage, digital, out, messages);
     pw_sections sections;
     pw_arrange_context context = {
@@ -122,7 +121,7 @@ pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_dig
                       &out->order_why);
     out->count = sections.count;
     memcpy(out->ideal, sections.list, sizeof sections.list);
-    pw_scale_gains(&j.format, out, j.factor, j.gain);
+    pw_scale_gains(&j.format, out, j.factor, margin, j.gain);
     if (j.format.fixed)
         split_gains(&j);
     memcpy(j.start_gain, j.gain, sizeof j.gain);
@@ -137,4 +136,39 @@ pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_dig
     out->enough_bits = pw_job_enough_bits(&j);
     ideal_gains(&j);
     return PW_OK;
+}
+
+#define MARGIN 0.999L            /* room for rounding and for the words' own deviation */
+#define MOST_TIGHTER 1.25        /* beyond it, it is not the words that fill the node */
+
+/* How far the fullest output that scaling was to keep within its word is above it; 1: none is. */
+static double overshoot(const pw_format *format, const pw_realisation *r)
+{
+    double most = 1;
+    for (int k = 0; k + 1 < r->count; k++) {     /* node k is the output of section k */
+        if (r->node[k].integrates)
+            break;
+        double over = r->node[k].bound / format->largest;
+        if (over > most && over < MOST_TIGHTER)
+            most = over;
+    }
+    return most;
+}
+
+pw_status pw_realise(const pw_stage *stage, const pw_roots *analog, const pw_digital *digital,
+                     const pw_target *target, pw_realisation *out, pw_messages *messages)
+{
+    (void)analog, (void)target;
+    pw_format format = pw_format_of(&stage->arithmetic);
+    long double margin = MARGIN;
+    for (int tries = 3;;) {
+        pw_status status = attempt(stage, digital, margin, out, messages);
+        if (status != PW_OK || --tries == 0 || !format.fixed
+            || stage->arithmetic.scaling != PW_SCALING_L1)
+            return status;
+        double over = overshoot(&format, out);
+        if (over <= 1)
+            return status;
+        margin *= 0.9995L / over;    /* short words moved the poles: scale again, a little lower */
+    }
 }

@@ -8,8 +8,6 @@
 #include <stdlib.h>
 #include "base/arena.h"
 
-#define MARGIN 0.999L            /* room for rounding and for the words' own deviation */
-
 static pw_line ideal_line(const pw_section *section)
 {
     pw_line line = {.coupled = false};
@@ -77,7 +75,7 @@ static void spread(int from, int to, long double factor, long double gain[])
 }
 
 void pw_scale_gains(const pw_format *format, const pw_realisation *r, long double factor,
-                    long double gain[])
+                    long double margin, long double gain[])
 {
     long double size[PW_MAX_SECTIONS], left = factor, peak = r->input_peak;
     if (!format->fixed || r->scaling == PW_SCALING_NONE) {
@@ -91,7 +89,7 @@ void pw_scale_gains(const pw_format *format, const pw_realisation *r, long doubl
             norms_of(r, k, stop, size);
         long double before = 1;
         for (; k < stop && k + 1 < r->count; k++) {
-            long double through = MARGIN * format->largest / (size[k] * peak);   /* so far */
+            long double through = margin * format->largest / (size[k] * peak);   /* so far */
             gain[k] = through / before;
             left /= gain[k];
             before = through;

@@ -8,7 +8,7 @@ import numpy as np
 from scipy import signal
 
 import words_probe as wp
-from tap import check, done
+from tap import check, done, report
 
 
 def response(answer, hz, rate):
@@ -231,6 +231,20 @@ def every_pairing():
               f"{found:.3f}; {min(all_of_them):.3f} to {max(all_of_them):.3f}")
 
 
-for case in (low_pass_10_hz, notch, elliptic, ac_coupling, integrator, two_integrators, sixty_decibels, ten_sections, every_order, every_pairing):
+def short_words_keep_the_scale():
+    """16-bit words move the poles of a narrow band-stop by so much that a node scaled to just below
+    its word would clip, and every bound behind it would start from full scale. The last bound must
+    stay near the sum of |h| of the ideal filter (scipy), 3.31."""
+    found = report({"stage": "narrow", "rate": "16 kHz", "arithmetic": {"sample": "q15"}, "analog": {"family": {
+        "approximation": "butterworth", "shape": "bandstop", "order": 3, "corners": ["380 Hz", "420 Hz"]}}})
+    outputs = [n for n in found["nodes"] if n["name"].endswith("output")]
+    check(not any(n["can_clip"] for n in outputs[:-1]), "no output before the last can clip", str(outputs))
+    z, p, k = signal.butter(3, [2 * np.pi * 380, 2 * np.pi * 420], "bandstop", analog=True, output="zpk")
+    sos = signal.zpk2sos(*signal.bilinear_zpk(z, p, k, 16000))
+    h = np.abs(signal.sosfilt(sos, np.r_[1, np.zeros(200000)])).sum()
+    check(abs(outputs[-1]["bound"] / h - 1) < 0.02, "and the last bound is near the sum of |h|", f"{outputs[-1]['bound']:.4f}, {h:.4f}")
+
+
+for case in (short_words_keep_the_scale, low_pass_10_hz, notch, elliptic, ac_coupling, integrator, two_integrators, sixty_decibels, ten_sections, every_order, every_pairing):
     case()
 done()
