@@ -255,6 +255,20 @@ static json_t *bonds(const char *map)
     return all;
 }
 
+static json_t *map_schema(const pw_key_map *map);
+
+/* The map form of a cell's value, its quantity that of a part of this kind. */
+static json_t *cell_value_of(const char *kind)
+{
+    const pw_key_map *map = pw_key_maps;
+    while (strcmp(map->map, "cell-value")) map++;
+    json_t *made = map_schema(map), *any = json_array();
+    json_t *value = json_object_get(json_object_get(made, "properties"), "value");
+    add_quantity(any, pw_key_find("part", kind));
+    json_object_set_new(value, "anyOf", any);
+    return made;
+}
+
 /* Part values of a cell by the first letter of their names. */
 static void add_free_names(json_t *made)
 {
@@ -265,7 +279,7 @@ static void add_free_names(json_t *made)
     for (size_t i = 0; i < sizeof rows / sizeof rows[0]; i++) {
         json_t *any = json_array();
         add_quantity(any, pw_key_find("part", rows[i][1]));
-        json_array_append_new(any, reference("cell-value"));
+        json_array_append_new(any, cell_value_of(rows[i][1]));
         json_object_set_new(patterns, rows[i][0], json_pack("{s:o}", "anyOf", any));
     }
     json_t *any = json_array();
