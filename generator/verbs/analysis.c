@@ -12,6 +12,7 @@
 #include "report/response.h"
 #include "stagefile/read.h"
 #include "target/cost.h"
+#include "target/fits.h"
 
 #define LARGEST_STAGE_FILE (1 << 20)
 
@@ -85,6 +86,8 @@ pw_status pw_analysis_results(const pw_call *call, pw_analysis *analysis)
     pw_results *r = &analysis->results;
     pw_response_analyse(&analysis->stage, &r->analog, &r->digital, &r->realisation, &r->response);
     pw_cost_estimate(&analysis->stage, &r->realisation, &r->target, &r->cost);
+    status = pw_target_fits(&analysis->stage, &r->target, &r->cost, &analysis->messages);
+    if (status) return pw_analysis_tell(call, analysis, status);
     pw_judge(r);
     return PW_OK;
 }

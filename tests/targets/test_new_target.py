@@ -49,6 +49,21 @@ with tempfile.TemporaryDirectory() as data:
         sources = [f"{out}/{f}" for f in ("rudder_feel.c", "rudder_feel_selftest.c", "main.c")]
         ran = target.run(target.build(f"{data}/program", sources, flags=[f"-I{out}"]))
         check(ran.returncode == 0, "and its self-test passes under the emulator", f"{ran.returncode} {ran.stderr[:200]}")
+    def refused(old, new, words):
+        """The same folder with one line changed: the build is refused at the stage's target."""
+        with open(path, encoding="utf-8") as file:
+            before = file.read()
+        with open(path, "w", encoding="utf-8") as file:
+            file.write(before.replace(old, new, 1))
+        ran = polewright("build", "-", "-o", f"{data}/none", "--no-plots", stdin=STAGE, env=env)
+        with open(path, "w", encoding="utf-8") as file:
+            file.write(before)
+        check(ran.returncode == 2 and "stdin:6:9: " in ran.stderr and words in ran.stderr and not os.path.exists(f"{data}/none"),
+              f"refused: {words}", ran.stderr[-300:])
+
+    refused("flash: 512 KiB", "flash: 300", "bytes of flash and rudder-board has 300")
+    refused("ram: 128 KiB", "ram: 32", "bytes of RAM and rudder-board has 32")
+    refused("has: [multiply, ", "has: [", "no multiply instruction")
     with open(path, "a", encoding="utf-8") as file:
         file.write("flahs: 12\n")
     wrong = polewright("targets", env=env)
