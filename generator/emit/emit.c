@@ -24,11 +24,19 @@ static bool has_state(const pw_emission *e)
     return e->counts;
 }
 
+/* 16-bit states that Arm's kernels read as words, with no counter that would align them. */
+static bool read_as_words(const pw_emission *e)
+{
+    return e->part_kernels && e->r->sample == PW_Q15 && !e->counts && e->target->has_dsp;
+}
+
 static void state_struct(const pw_emission *e, pw_code *file)
 {
     pw_code *comment = pw_comment(file);
     pw_prose(comment, "The state of one channel. Reset it, or settle it, before its first sample.");
-    pw_code *members = pw_block(file, "typedef struct", " $_state;");
+    if (read_as_words(e)) pw_prose(comment, "It is read in words of 32 bits, and starts at one.");
+    const char *after = read_as_words(e) ? " __attribute__((aligned(4))) $_state;" : " $_state;";
+    pw_code *members = pw_block(file, "typedef struct", after);
     for (int k = 0; k < e->r->count; k++)
         e->form[k]->fields(e, &e->r->section[k], pw_section_group(members, k + 1));
     if (e->counts)

@@ -10,7 +10,6 @@ typedef struct stepper {
     pw_arena arena;
     pw_kernel kernel[PW_MAX_SECTIONS];
     const char *file, *name;
-    bool aligned;                            /* a 32-bit counter stands in the state */
     pw_text *out;
 } stepper;
 
@@ -27,7 +26,6 @@ static bool choose(stepper *s)
     bool dual = !strcmp(s->kernel[0].kernel, "dual");
     if (!dual && (strcmp(s->kernel[0].kernel, "wide") || s->r->sample != PW_Q31)) return false;
     s->file = s->kernel[0].file;
-    for (int i = 0; i < s->r->count; i++) s->aligned = s->aligned || s->kernel[i].clamps;
     return s->r->count > 0 && s->r->count < 100;
 }
 
@@ -38,8 +36,10 @@ static pw_status part(stepper *s, const char *file, const char *kernel, int sect
     values.arena = &s->arena;
     pw_template_set(&values, "name", s->name);
     pw_template_set(&values, "number", pw_arena_print(&s->arena, "%02d", section));
-    pw_template_set_number(&values, "aligned", s->aligned);
+    pw_template_set_number(&values, "odd", section % 2);
+    pw_template_set_number(&values, "last", section == s->r->count - 1);
     pw_template_set_number(&values, "clipped", 4L * bytes * s->r->count);
+    pw_template_set_number(&values, "clipped_ahead", 4L * bytes * (s->r->count - section / 2 * 2));
     return pw_template_expand(file, kernel, &values, s->out);
 }
 
@@ -55,7 +55,14 @@ static uint32_t packed(int32_t low, int32_t high)
     return ((uint32_t)low & 0xFFFFu) | (uint32_t)high << 16;
 }
 
-/* The words of a section, as its step reads them. */
+static int32_t rounding(const pw_realisation *r, const pw_words *w)
+{
+    int right = w->b_fraction - w->a_fraction;
+    int64_t half = r->truncate || w->a_fraction == 0 ? 0 : INT64_C(1) << (w->a_fraction - 1);
+    return (int32_t)(right > 0 ? (INT64_C(1) << (right - 1)) + (half << right) : half);
+}
+
+/* The words of a section, as its step reads them; of two 16-bit sections the first has both b0. */
 static pw_status words(stepper *s, int section)
 {
     const pw_words *w = &s->r->section[section];
@@ -65,11 +72,11 @@ static pw_status words(stepper *s, int section)
         for (int i = 0; !status && i < 5; i++) status = word(s, k->word[i]);
         return status;
     }
-    int right = w->b_fraction - w->a_fraction;
-    int64_t half = s->r->truncate || w->a_fraction == 0 ? 0 : INT64_C(1) << (w->a_fraction - 1);
-    int64_t round = right > 0 ? (INT64_C(1) << (right - 1)) + (half << right) : half;
-    const int32_t four[4] = {w->b[0], (int32_t)packed(w->b[1], w->b[2]), (int32_t)packed(-w->a[1], -w->a[2]), (int32_t)round};
-    for (int i = 0; !status && i < 4; i++) status = word(s, four[i]);
+    int32_t next = section + 1 < s->r->count ? w[1].b[0] : 0;
+    if (section % 2 == 0) status = word(s, (int32_t)packed(w->b[0], next));
+    const int32_t three[3] = {(int32_t)packed(w->b[1], w->b[2]), (int32_t)packed(-w->a[1], -w->a[2]),
+                              rounding(s->r, w)};
+    for (int i = 0; !status && i < 3; i++) status = word(s, three[i]);
     return status;
 }
 
