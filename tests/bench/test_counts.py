@@ -1,7 +1,6 @@
 # SPDX-License-Identifier: GPL-3.0-or-later
 """Instruction counts under the emulators are exact: four sections in every format must cost what
-tests/bench/counts.json says (written by `make bench-write`), and not more than the issue's targets
-where they are met. With PW_FULL=1 also 1, 2 and 8 sections."""
+tests/bench/counts.json says (written by `make bench-write`). With PW_FULL=1 also 1, 2 and 8 sections."""
 import json
 import os
 import sys
