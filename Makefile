@@ -17,7 +17,7 @@ Q       := $(Q_$(V))
 PACKAGES_BUILD := gcc make pkg-config libgsl-dev libyaml-dev libjansson-dev libmd-dev libsndfile1-dev \
                   libmpc-dev libmpfr-dev libgmp-dev
 PACKAGES_RUN   := gnuplot-nox
-PACKAGES_TEST  := g++ clang libcmocka-dev python3 python3-numpy python3-scipy python3-mpmath python3-yaml \
+PACKAGES_TEST  := g++ clang libclang-rt-dev git dpkg-dev libcmocka-dev python3 python3-numpy python3-scipy python3-mpmath python3-yaml \
                   python3-jsonschema mandoc lintian debootstrap zsh cmake chromium chromium-driver fonts-dejavu-core \
                   $(if $(shell command -v npm),,npm)
 PACKAGES_PART  := gcc-arm-none-eabi libnewlib-arm-none-eabi qemu-system-arm qemu-system-misc \
