@@ -284,6 +284,14 @@ static pw_status refuse_kind(const pw_cell *cell, pw_messages *messages)
     return PW_WRONG;
 }
 
+void pw_cells_check_kinds(const pw_analog_spec *spec, pw_messages *messages)
+{
+    if (spec->kind == PW_ANALOG_CELL && spec->cell.kind && !pw_cell_find(spec->cell.kind))
+        (void)refuse_kind(&spec->cell, messages);
+    for (int i = 0; spec->kind == PW_ANALOG_CASCADE && spec->member && i < spec->members; i++)
+        pw_cells_check_kinds(&spec->member[i], messages);
+}
+
 pw_status pw_cell_expand(const pw_cell *cell, pw_arena *arena, pw_circuit *out,
                          pw_messages *messages)
 {

@@ -36,6 +36,10 @@ const pw_cell_kind *pw_cell_find(const char *name);
 PW_CHECKED pw_status pw_cell_expand(const pw_cell *cell, pw_arena *arena, pw_circuit *out,
                                     pw_messages *messages);
 
+/* Messages for the unknown kinds of a stage that has other mistakes, so that one run tells them all.
+ * The spec may be incomplete: what could not be read is zero or null. */
+void pw_cells_check_kinds(const pw_analog_spec *spec, pw_messages *messages);
+
 /* Every kind with its parts, formula and diagram, for people. */
 void pw_cells_list(pw_text *out);
 

@@ -7,6 +7,7 @@
 #include <string.h>
 
 #include "analog/spread.h"
+#include "analog/cell.h"
 #include "base/files.h"
 #include "report/judge.h"
 #include "report/response.h"
@@ -40,6 +41,7 @@ pw_status pw_analysis_read(const pw_call *call, pw_analysis *analysis)
         const pw_stage *stage = &analysis->stage;
         if (stage->target && pw_target_check(stage->target, stage->target_at, &analysis->messages) && !status)
             status = PW_WRONG;
+        if (status == PW_WRONG) pw_cells_check_kinds(&stage->analog, &analysis->messages);
     }
     pw_text_free(&target);
     pw_text_free(&yaml);

@@ -42,6 +42,15 @@ def test_old_vectors(folder):
     tap.check(set(os.listdir(folder + "/vectors")) == after | {"impulse.csv"}, "those of another stage stay")
 
 
+def test_every_mistake():
+    """A mistyped kind of cell is told beside a mistake that only the reader of the file can see."""
+    ran = tap.polewright("check", "-", stdin="stage: two\nrate: 10 kHz\nanalog:\n  cascade:\n"
+                         "    - cell: {kind: rc-lowpas, R1: 33k, C1: 100n}\n    - cell: {kind: rc-highpass, R1: 33 Hz, C1: 1n}\n")
+    lines = ran.stderr.splitlines()
+    tap.check(ran.returncode == 2 and len(lines) == 2 and lines[0].startswith("stdin:5:20: there is no cell 'rc-lowpas'")
+              and lines[1].startswith("stdin:6:"), "an unknown kind and a wrong unit are told in one run", ran.stderr)
+
+
 def test_noise_verdict():
     """White-noise theory does not see a limit cycle. Where the search found one that is louder, the
     verdict on `noise` goes by the cycle: 0 dBFS is a sine of full scale."""
@@ -62,4 +71,5 @@ with tempfile.TemporaryDirectory() as scratch:
     test_screen()
     test_old_vectors(scratch)
     test_noise_verdict()
+    test_every_mistake()
 tap.done()
